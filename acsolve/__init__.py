@@ -1,0 +1,1 @@
+"""acsolve: exact solutions of linear AC circuits."""

@@ -1,0 +1,1 @@
+"""Exact and numeric algebra: polynomials, determinants, roots, elimination. Knows no circuit."""

@@ -1,0 +1,1 @@
+"""Questions and their answers: transfer, impedance, cutoff, sweep, equations, check."""

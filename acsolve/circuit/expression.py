@@ -1,0 +1,243 @@
+"""Value expressions as immutable trees: what a part's value says, not yet computed.
+
+Numbers are exact fractions. `Name` refers to another named quantity or part value, or
+to a free symbol; `S` is the complex frequency in rad/s. The constructors fold numbers
+and drop neutral elements, and nothing else: this is not a computer-algebra system.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import Literal
+
+FunctionName = Literal["sqrt", "exp", "ln", "log10", "cosh", "sinh"]
+
+
+@dataclass(frozen=True, slots=True)
+class Number:
+    """An exact rational number."""
+
+    value: Fraction
+
+
+@dataclass(frozen=True, slots=True)
+class Name:
+    """A reference to a named quantity, a part's value or a free symbol."""
+
+    name: str
+
+
+@dataclass(frozen=True, slots=True)
+class Pi:
+    """The circle constant."""
+
+
+@dataclass(frozen=True, slots=True)
+class Frequency:
+    """The complex frequency s, in rad/s."""
+
+
+@dataclass(frozen=True, slots=True)
+class Sum:
+    """left + right."""
+
+    left: Expression
+    right: Expression
+
+
+@dataclass(frozen=True, slots=True)
+class Product:
+    """left * right."""
+
+    left: Expression
+    right: Expression
+
+
+@dataclass(frozen=True, slots=True)
+class Quotient:
+    """left / right."""
+
+    left: Expression
+    right: Expression
+
+
+@dataclass(frozen=True, slots=True)
+class Power:
+    """base ** exponent; the exponent is an expression too (often a number)."""
+
+    base: Expression
+    exponent: Expression
+
+
+@dataclass(frozen=True, slots=True)
+class Call:
+    """A function of one argument."""
+
+    function: FunctionName
+    argument: Expression
+
+
+Expression = Number | Name | Pi | Frequency | Sum | Product | Quotient | Power | Call
+
+ZERO = Number(Fraction(0))
+ONE = Number(Fraction(1))
+MINUS_ONE = Number(Fraction(-1))
+S = Frequency()
+PI = Pi()
+
+
+def number(value: int | Fraction) -> Number:
+    """An exact number."""
+    return Number(Fraction(value))
+
+
+def add(left: Expression, right: Expression) -> Expression:
+    """Left + right, numbers folded."""
+    if left == ZERO:
+        return right
+    if right == ZERO:
+        return left
+    if isinstance(left, Number) and isinstance(right, Number):
+        return Number(left.value + right.value)
+    return Sum(left, right)
+
+
+def negate(value: Expression) -> Expression:
+    """-value."""
+    return multiply(MINUS_ONE, value)
+
+
+def subtract(left: Expression, right: Expression) -> Expression:
+    """Left - right."""
+    return add(left, negate(right))
+
+
+def multiply(left: Expression, right: Expression) -> Expression:
+    """Left * right, numbers folded, 0 and 1 absorbed."""
+    if left == ZERO or right == ZERO:
+        return ZERO
+    if left == ONE:
+        return right
+    if right == ONE:
+        return left
+    if isinstance(left, Number) and isinstance(right, Number):
+        return Number(left.value * right.value)
+    if isinstance(left, Number) and isinstance(right, Product) and isinstance(right.left, Number):
+        return multiply(Number(left.value * right.left.value), right.right)
+    return Product(left, right)
+
+
+def divide(left: Expression, right: Expression) -> Expression:
+    """Left / right, numbers folded.
+
+    Raises
+    ------
+    ZeroDivisionError
+        if the divisor is the number zero.
+
+    """
+    if right == ZERO:
+        raise ZeroDivisionError("division by zero in an expression")
+    if left == ZERO or right == ONE:
+        return left
+    if isinstance(left, Number) and isinstance(right, Number):
+        return Number(left.value / right.value)
+    return Quotient(left, right)
+
+
+_LARGEST_FOLDED_POWER = 64  # keeps 10^k literals exact without building huge integers
+
+
+def power(base: Expression, exponent: Expression) -> Expression:
+    """Base ** exponent; a small whole power of a number is folded."""
+    if isinstance(exponent, Number) and exponent.value.denominator == 1:
+        whole = exponent.value.numerator
+        if whole == 0:
+            return ONE
+        if whole == 1:
+            return base
+        if isinstance(base, Number) and abs(whole) <= _LARGEST_FOLDED_POWER:
+            if base.value == 0 and whole < 0:
+                raise ZeroDivisionError("zero to a negative power")
+            return Number(base.value**whole)
+    return Power(base, exponent)
+
+
+def call(function: FunctionName, argument: Expression) -> Expression:
+    """A function of one argument; sqrt of the square of a rational is folded."""
+    if function == "sqrt" and isinstance(argument, Number) and argument.value >= 0:
+        root = exact_root(argument.value)
+        if root is not None:
+            return Number(root)
+    if function == "exp" and argument == ZERO:
+        return ONE
+    if function in ("ln", "log10") and argument == ONE:
+        return ZERO
+    return Call(function, argument)
+
+
+def exact_root(value: Fraction) -> Fraction | None:
+    """The rational square root of a non-negative rational, where there is one."""
+    from math import isqrt
+
+    top, bottom = isqrt(value.numerator), isqrt(value.denominator)
+    exact = top * top == value.numerator and bottom * bottom == value.denominator
+    return Fraction(top, bottom) if exact else None
+
+
+def children(expression: Expression) -> tuple[Expression, ...]:
+    """The direct sub-expressions."""
+    match expression:
+        case Sum(left, right) | Product(left, right) | Quotient(left, right):
+            return (left, right)
+        case Power(base, exponent):
+            return (base, exponent)
+        case Call(_, argument):
+            return (argument,)
+        case _:
+            return ()
+
+
+def walk(expression: Expression) -> Iterator[Expression]:
+    """The expression and every sub-expression, without recursion."""
+    stack: list[Expression] = [expression]
+    while stack:
+        item = stack.pop()
+        yield item
+        stack.extend(children(item))
+
+
+def names(expression: Expression) -> frozenset[str]:
+    """All names that the expression refers to."""
+    return frozenset(item.name for item in walk(expression) if isinstance(item, Name))
+
+
+def depends_on_s(expression: Expression) -> bool:
+    """Whether the complex frequency occurs in the expression."""
+    return any(isinstance(item, Frequency) for item in walk(expression))
+
+
+def rebuild(expression: Expression, replace: Callable[[Name], Expression]) -> Expression:
+    """The expression with each name replaced by `replace(name)`, folded again."""
+    match expression:
+        case Name():
+            return replace(expression)
+        case Sum(left, right):
+            return add(rebuild(left, replace), rebuild(right, replace))
+        case Product(left, right):
+            return multiply(rebuild(left, replace), rebuild(right, replace))
+        case Quotient(left, right):
+            return divide(rebuild(left, replace), rebuild(right, replace))
+        case Power(base, exponent):
+            return power(rebuild(base, replace), rebuild(exponent, replace))
+        case Call(function, argument):
+            return call(function, rebuild(argument, replace))
+        case _:
+            return expression
+
+
+def renamed(expression: Expression, mapping: Mapping[str, str]) -> Expression:
+    """The expression with names replaced by other names."""
+    return rebuild(expression, lambda item: Name(mapping.get(item.name, item.name)))

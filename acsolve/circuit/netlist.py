@@ -1,0 +1,262 @@
+"""The network as pure data: parts, named quantities, ports, questions and variants.
+
+Names are flat: the resistor R in the seventh copy of a cascade N1 is `N1[7].R`. In value
+expressions, `Name("R1")` is the principal value of part R1, `Name("L1.quality")` another
+attribute, `Name("fc")` a named quantity; a name whose value has no expression is a free
+symbol.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, field, replace
+from types import MappingProxyType
+from typing import Literal
+
+from acsolve.circuit.kind import KINDS, Kind
+from acsolve.circuit.value import Quantity, Value
+from acsolve.source import Source, Span
+
+GROUND = "gnd"
+
+#: A pair of nodes, (first, second): the voltage is V(first) - V(second), and current
+#: enters the first. A single node stands against `gnd`.
+Pair = tuple[str, str]
+
+QuantityName = Literal["voltage-ratio", "current-ratio", "transimpedance", "transadmittance"]
+QuestionKind = Literal[
+    "transfer", "cutoff", "impedance", "two-port", "sweep", "step", "noise", "tolerance"
+]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Part:
+    """One part: its kind, the node of each terminal (in the kind's order), its values."""
+
+    name: str
+    kind: str
+    nodes: tuple[str, ...]
+    values: Mapping[str, Value] = field(default_factory=dict)
+    span: Span | None = field(default=None, compare=False, repr=False)
+
+    @property
+    def definition(self) -> Kind:
+        """The kind's row in the table of kinds."""
+        return KINDS[self.kind]
+
+    def node(self, terminal: str) -> str:
+        """The node at a named terminal."""
+        for item, node in zip(self.definition.terminals, self.nodes, strict=True):
+            if item.name == terminal:
+                return node
+        raise KeyError(terminal)
+
+    def value_name(self, attribute: str) -> str:
+        """The name under which an attribute's value is referred to."""
+        return self.name if attribute == self.definition.principal else f"{self.name}.{attribute}"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Coupling:
+    """Mutual inductance between two inductors, by coefficient k; first nodes are dotted."""
+
+    first: str
+    second: str
+    coefficient: Value
+    span: Span | None = field(default=None, compare=False, repr=False)
+
+    @property
+    def name(self) -> str:
+        """The name under which the coefficient is referred to."""
+        return f"k({self.first}, {self.second})"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Band:
+    """A band of frequencies in hertz, as exact expressions."""
+
+    low: Value
+    high: Value
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Level:
+    """A level below the reference: in dB (`decibel`), or half power where that is None."""
+
+    decibel: Value | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Question:
+    """An `ask` line. `source` is None for a driving-point impedance or own sources.
+
+    `options` holds what the line adds: quantity, levels, band, duration, reference
+    resistance, under the words of the format.
+    """
+
+    kind: QuestionKind
+    source: Pair | None = None
+    target: Pair
+    quantity: QuantityName | None = None
+    levels: tuple[Level, ...] = ()
+    band: Band | None = None
+    duration: Value | None = None
+    reference: Value | None = None
+    ammeter: str | None = None  # a named ammeter as the target of a current
+    span: Span | None = field(default=None, compare=False, repr=False)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Goal:
+    """A limit that answers are judged against: below or above a level over a band."""
+
+    source: Pair
+    target: Pair
+    band: Band
+    side: Literal["below", "above"]
+    level: Value
+    span: Span | None = field(default=None, compare=False, repr=False)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Variant:
+    """Other values, parts not fitted and nodes joined, for the same circuit."""
+
+    name: str
+    values: Mapping[str, Value] = field(default_factory=dict)
+    absent: frozenset[str] = frozenset()
+    joins: tuple[tuple[str, ...], ...] = ()
+    span: Span | None = field(default=None, compare=False, repr=False)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Netlist:
+    """A whole circuit. `parts` are in file order, those not fitted left out."""
+
+    title: str | None = None
+    parts: tuple[Part, ...] = ()
+    couplings: tuple[Coupling, ...] = ()
+    quantities: Mapping[str, Quantity] = field(default_factory=dict)
+    ports: Mapping[str, Pair] = field(default_factory=dict)
+    questions: tuple[Question, ...] = ()
+    goals: tuple[Goal, ...] = ()
+    cautions: tuple[str, ...] = ()
+    remarks: tuple[str, ...] = ()  # the comment lines at the head of the file
+    variants: Mapping[str, Variant] = field(default_factory=dict)
+    variant: str | None = None
+    aliases: Mapping[str, str] = field(default_factory=dict)  # joined node -> the one kept
+    source: Source | None = field(default=None, compare=False, repr=False)
+
+    def nodes(self) -> tuple[str, ...]:
+        """All nodes, `gnd` first where it occurs, then in order of first appearance."""
+        seen: dict[str, None] = {}
+        for part in self.parts:
+            for node in part.nodes:
+                seen.setdefault(node)
+        rest = [node for node in seen if node != GROUND]
+        return ((GROUND,) if GROUND in seen else ()) + tuple(rest)
+
+    def part(self, name: str) -> Part | None:
+        """The part of that name, or None."""
+        return next((part for part in self.parts if part.name == name), None)
+
+    def resolve(self, node: str) -> str:
+        """The node that a joined node became."""
+        return self.aliases.get(node, node)
+
+    def values(self) -> Iterator[tuple[str, Value]]:
+        """Every named value of the circuit: quantities, parts, couplings."""
+        for name, quantity in self.quantities.items():
+            yield name, quantity.value
+        for part in self.parts:
+            for attribute, value in part.values.items():
+                yield part.value_name(attribute), value
+        for coupling in self.couplings:
+            yield coupling.name, coupling.coefficient
+
+
+def bindings(netlist: Netlist) -> Mapping[str, Value]:
+    """Every named value by its name: what `Name` in an expression refers to."""
+    return MappingProxyType(dict(netlist.values()))
+
+
+def with_values(netlist: Netlist, values: Mapping[str, Value]) -> Netlist:
+    """A netlist in which the named values are replaced; unknown names are ignored."""
+    parts = tuple(_part_with(part, values) for part in netlist.parts)
+    quantities = {
+        name: replace(item, value=values[name]) if name in values else item
+        for name, item in netlist.quantities.items()
+    }
+    couplings = tuple(
+        replace(item, coefficient=values[item.name]) if item.name in values else item
+        for item in netlist.couplings
+    )
+    return replace(netlist, parts=parts, quantities=quantities, couplings=couplings)
+
+
+def _part_with(part: Part, values: Mapping[str, Value]) -> Part:
+    new: dict[str, Value] = {}
+    for attribute in part.definition.attributes:
+        name = part.value_name(attribute.name)
+        if name in values:
+            new[attribute.name] = values[name]
+    return replace(part, values={**part.values, **new}) if new else part
+
+
+def with_absent(netlist: Netlist, names: frozenset[str]) -> Netlist:
+    """A netlist without the named parts (not fitted) and couplings that need them."""
+    if not names:
+        return netlist
+    parts = tuple(part for part in netlist.parts if part.name not in names)
+    couplings = tuple(item for item in netlist.couplings if not {item.first, item.second} & names)
+    return replace(netlist, parts=parts, couplings=couplings)
+
+
+def with_joins(netlist: Netlist, joins: tuple[tuple[str, ...], ...]) -> Netlist:
+    """A netlist in which each group of nodes is one node, `gnd` kept where it is among them.
+
+    Otherwise the first node of the group, after earlier joins, gives its name.
+    """
+    if not joins:
+        return netlist
+    aliases = dict(netlist.aliases)
+    for group in joins:
+        members = [aliases.get(node, node) for node in group]
+        keep = GROUND if GROUND in members else members[0]
+        moved = set(members) - {keep}
+        for node, target in list(aliases.items()):
+            if target in moved:
+                aliases[node] = keep
+        aliases.update(dict.fromkeys(moved, keep))
+
+    def pair(item: Pair) -> Pair:
+        return aliases.get(item[0], item[0]), aliases.get(item[1], item[1])
+
+    parts = tuple(
+        replace(part, nodes=tuple(aliases.get(node, node) for node in part.nodes))
+        for part in netlist.parts
+    )
+    ports = {name: pair(item) for name, item in netlist.ports.items()}
+    questions = tuple(
+        replace(
+            item,
+            source=None if item.source is None else pair(item.source),
+            target=pair(item.target),
+        )
+        for item in netlist.questions
+    )
+    goals = tuple(
+        replace(item, source=pair(item.source), target=pair(item.target)) for item in netlist.goals
+    )
+    return replace(
+        netlist, parts=parts, ports=ports, questions=questions, goals=goals, aliases=aliases
+    )
+
+
+def with_variant(netlist: Netlist, name: str) -> Netlist:
+    """The netlist as its variant of that name says; KeyError where there is none."""
+    variant = netlist.variants[name]
+    changed = with_joins(
+        with_absent(with_values(netlist, variant.values), variant.absent), variant.joins
+    )
+    return replace(changed, variant=name)

@@ -1,0 +1,1 @@
+"""The modified nodal equations of a circuit, assembled once and run over many fields."""

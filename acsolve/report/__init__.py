@@ -1,0 +1,1 @@
+"""Answers for people and other programs: text, JSON, tables, files and pictures."""
