@@ -1,0 +1,154 @@
+"""A question put to a circuit: where it is driven, what is observed, what ratio is meant."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import Literal
+
+from acsolve.circuit import unit
+from acsolve.circuit.netlist import Netlist, Pair, Part, QuantityName
+from acsolve.circuit.unit import Dimension
+from acsolve.codes import Code
+from acsolve.equations.system import DRIVE, SHORT, Functional, System, always, assemble
+from acsolve.errors import AnalysisError, Diagnostic
+
+AskedQuantity = Literal[
+    "voltage-ratio", "current-ratio", "transimpedance", "transadmittance", "impedance", "response"
+]
+
+_OBSERVES_CURRENT = ("current-ratio", "transadmittance")
+_DRIVEN_BY_VOLTAGE = ("voltage-ratio", "transadmittance")
+_DIMENSIONS: dict[AskedQuantity, Dimension] = {
+    "voltage-ratio": unit.NONE,
+    "current-ratio": unit.NONE,
+    "transimpedance": unit.OHM,
+    "transadmittance": unit.SIEMENS,
+    "impedance": unit.OHM,
+    "response": unit.VOLT,
+}
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Ask:
+    """One question. `source` is None for the response to the file's own sources.
+
+    `impedance` drives and observes the same pair. `ammeter` names the ammeter whose
+    current is observed instead of a short across the target.
+    """
+
+    source: Pair | None
+    target: Pair
+    quantity: AskedQuantity
+    ammeter: str | None = None
+
+    @property
+    def dimension(self) -> Dimension:
+        """Dimension of the answer."""
+        return _DIMENSIONS[self.quantity]
+
+    @property
+    def short(self) -> Pair | None:
+        """The pair that a short is laid across to observe its current, or None."""
+        if self.quantity in _OBSERVES_CURRENT and self.ammeter is None:
+            return self.target
+        return None
+
+    def system(self, netlist: Netlist, *, branch_for: Callable[[Part], bool] = always) -> System:
+        """The equations for this question."""
+        return assemble(netlist, drive=self.source, short=self.short, branch_for=branch_for)
+
+    def observed(self, system: System) -> Functional:
+        """What is observed, as a linear function of the unknowns."""
+        if self.quantity in _OBSERVES_CURRENT:
+            return system.current(self.ammeter or SHORT)
+        return system.voltage(self.target)
+
+    def driven(self, system: System) -> Functional:
+        """What it is divided by, likewise."""
+        if self.source is None:
+            return system.excitation()
+        if self.quantity in _DRIVEN_BY_VOLTAGE:
+            return system.voltage(self.source)
+        return system.current(DRIVE)
+
+
+def transfer_ask(
+    netlist: Netlist,
+    source: Pair | None,
+    target: Pair,
+    *,
+    quantity: QuantityName | None = None,
+    ammeter: str | None = None,
+) -> Ask:
+    """A transfer question, checked against the circuit.
+
+    Raises
+    ------
+    AnalysisError
+        [question.unknown-node] a node does not occur; [question.same-node] a pair is one
+        node; [question.no-reference] no reference joins the observed pair.
+    """
+    chosen: AskedQuantity = quantity or ("current-ratio" if ammeter else "voltage-ratio")
+    ask = Ask(
+        source=source,
+        target=target,
+        quantity=chosen if source is not None else "response",
+        ammeter=ammeter,
+    )
+    _check(netlist, ask)
+    return ask
+
+
+def impedance_ask(netlist: Netlist, into: Pair) -> Ask:
+    """A driving-point impedance question, checked as `transfer_ask` does."""
+    ask = Ask(source=into, target=into, quantity="impedance")
+    _check(netlist, ask)
+    return ask
+
+
+def _check(netlist: Netlist, ask: Ask) -> None:
+    known = set(netlist.nodes()) | {"gnd"}
+    for pair in (ask.source, ask.target):
+        if pair is None or (ask.ammeter and pair is ask.target):
+            continue
+        for node in pair:
+            if node not in known:
+                raise _unknown_node(node, known)
+        if pair[0] == pair[1]:
+            raise _refuse(
+                "question.same-node",
+                f"the pair ({pair[0]}, {pair[1]}) is one node",
+                "Name two different nodes.",
+            )
+
+
+def _unknown_node(node: str, known: set[str]) -> AnalysisError:
+    from difflib import get_close_matches
+
+    near = get_close_matches(node, sorted(known), n=1)
+    hint = f"Did you mean {near[0]}?" if near else f"The nodes are {_some(sorted(known))}."
+    return _refuse("question.unknown-node", f"there is no node {node} in this circuit", hint)
+
+
+def _some(names: list[str]) -> str:
+    return ", ".join(names[:12]) + (", …" if len(names) > 12 else "")
+
+
+def _refuse(code: Code, message: str, hint: str) -> AnalysisError:
+    return AnalysisError(Diagnostic(code=code, message=message, hint=hint))
+
+
+def refuse_unreferenced(system: System, ask: Ask) -> None:
+    """Refuse a question about a voltage between two parts that no reference joins."""
+    if ask.quantity in _OBSERVES_CURRENT:
+        return
+    first, second = ask.target
+    if not system.groups.shares_reference(first, second):
+        raise _refuse(
+            "question.no-reference",
+            f"the voltage between {first} and {second} is not determined: "
+            "no part and no reference joins them",
+            f"Ask between two nodes of the same part of the network, or connect "
+            f"{first} and {second} to a common node.",
+        )

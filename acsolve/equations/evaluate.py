@@ -1,0 +1,226 @@
+"""Value expressions as numbers: floats, NumPy vectors over s, or complex balls."""
+
+from __future__ import annotations
+
+import cmath
+from collections.abc import Mapping
+from fractions import Fraction
+from math import pi
+from typing import Any, Protocol, TypeAlias
+
+import numpy as np
+
+from acsolve.circuit.expression import (
+    Call,
+    Expression,
+    Frequency,
+    Name,
+    Number,
+    Pi,
+    Power,
+    Product,
+    Quotient,
+    Sum,
+)
+from acsolve.circuit.value import Value
+from acsolve.codes import Code
+from acsolve.errors import Diagnostic, EquationError
+
+Scalar: TypeAlias = Any  # float, complex, ndarray or flint.acb
+
+
+class Arithmetic(Protocol):
+    """Constants and functions of one kind of number."""
+
+    def number(self, value: Fraction) -> Scalar:
+        """A rational number in this arithmetic."""
+
+    def pi(self) -> Scalar:
+        """The circle constant."""
+
+    def power(self, base: Scalar, exponent: Scalar) -> Scalar:
+        """base ** exponent, principal branch."""
+
+    def function(self, name: str, argument: Scalar) -> Scalar:
+        """A named function, principal branch."""
+
+
+class FloatArithmetic:
+    """Double precision; arguments may be NumPy arrays, results are real where they can be."""
+
+    def number(self, value: Fraction) -> Scalar:
+        """The nearest double."""
+        return value.numerator / value.denominator
+
+    def pi(self) -> Scalar:
+        """The nearest double to pi."""
+        return pi
+
+    def power(self, base: Scalar, exponent: Scalar) -> Scalar:
+        """base ** exponent, complex where a negative real base asks for it."""
+        if isinstance(base, float) and base < 0 and not float(exponent).is_integer():
+            base = complex(base)
+        return base**exponent
+
+    def function(self, name: str, argument: Scalar) -> Scalar:
+        """Square root, exponential, logarithms and hyperbolic functions."""
+        functions = {"sqrt": np.sqrt, "exp": np.exp, "cosh": np.cosh, "sinh": np.sinh}
+        if name in functions:
+            if name == "sqrt" and isinstance(argument, float) and argument < 0:
+                return cmath.sqrt(argument)
+            result = functions[name](argument)
+            return float(result) if isinstance(argument, float) else result
+        result = np.log(argument)
+        return result / np.log(10.0) if name == "log10" else result
+
+
+class BallArithmetic:
+    """Complex balls of python-flint at its current working precision."""
+
+    def number(self, value: Fraction) -> Scalar:
+        """A ball around a rational number."""
+        from flint import acb, fmpq
+
+        return acb(fmpq(value.numerator, value.denominator))
+
+    def pi(self) -> Scalar:
+        """A ball around pi."""
+        from flint import acb
+
+        return acb.pi()
+
+    def power(self, base: Scalar, exponent: Scalar) -> Scalar:
+        """base ** exponent, principal branch; whole powers are exact products."""
+        exact = exponent.unique_fmpz() if hasattr(exponent, "unique_fmpz") else None
+        return base ** (exact if exact is not None else exponent)
+
+    def function(self, name: str, argument: Scalar) -> Scalar:
+        """Square root, exponential, logarithms and hyperbolic functions."""
+        from flint import acb
+
+        if name == "ln":
+            return argument.log()
+        if name == "log10":
+            return argument.log() / acb(10).log()
+        return getattr(argument, name)()
+
+
+class Evaluator:
+    """Evaluates expressions over the values of a circuit; each name is worked out once.
+
+    `overrides` gives numbers (or arrays of samples) for names, before the circuit's own
+    values: free symbols, a parameter sweep, a random sample.
+    """
+
+    def __init__(
+        self,
+        values: Mapping[str, Value],
+        arithmetic: Arithmetic,
+        *,
+        overrides: Mapping[str, Scalar] | None = None,
+    ) -> None:
+        self._values = values
+        self._arithmetic = arithmetic
+        self._known: dict[str, Scalar] = dict(overrides or {})
+
+    def __call__(self, expression: Expression, s: Scalar | None = None) -> Scalar:
+        """The number an expression stands for at complex frequency s (rad/s).
+
+        Raises
+        ------
+        EquationError
+            [question.no-value] if a name has no value.
+        """
+        arithmetic = self._arithmetic
+        match expression:
+            case Number(value):
+                return arithmetic.number(value)
+            case Name(name):
+                return self.name(name)
+            case Pi():
+                return arithmetic.pi()
+            case Frequency():
+                assert s is not None, "an expression in s was evaluated without s"
+                return s
+            case Sum(left, right):
+                return self(left, s) + self(right, s)
+            case Product(left, right):
+                return self(left, s) * self(right, s)
+            case Quotient(left, right):
+                return self(left, s) / self(right, s)
+            case Power(base, exponent):
+                return arithmetic.power(self(base, s), self(exponent, s))
+            case Call(function, argument):
+                return arithmetic.function(function, self(argument, s))
+
+    def name(self, name: str) -> Scalar:
+        """The number behind a name."""
+        known = self._known.get(name)
+        if known is None:
+            value = self._values.get(name)
+            if value is None or value.expression is None:
+                raise no_value((name,))
+            known = self(value.expression)
+            self._known[name] = known
+        return known
+
+
+def no_value(names: tuple[str, ...]) -> EquationError:
+    """The error for names that have no number."""
+    code: Code = "question.no-value"
+    listed = ", ".join(names)
+    verb = "has" if len(names) == 1 else "have"
+    return EquationError(
+        Diagnostic(
+            code=code,
+            message=f"{listed} {verb} no value, and this question needs numbers",
+            hint=f"Give a value in the file, or with --let {names[0]}=…; "
+            "`transfer` answers with symbols.",
+        )
+    )
+
+
+def polynomial_in_s(
+    expression: Expression, evaluate: Evaluator
+) -> tuple[Scalar, ...] | None:
+    """Coefficients of a polynomial in s by rising power, or None where it is not one."""
+    match expression:
+        case Number() | Name() | Pi():
+            return (evaluate(expression),)
+        case Frequency():
+            return (0.0, 1.0)
+        case Sum(left, right):
+            first, second = polynomial_in_s(left, evaluate), polynomial_in_s(right, evaluate)
+            return None if first is None or second is None else _added(first, second)
+        case Product(left, right):
+            first, second = polynomial_in_s(left, evaluate), polynomial_in_s(right, evaluate)
+            return None if first is None or second is None else _multiplied(first, second)
+        case Quotient(left, right):
+            first, second = polynomial_in_s(left, evaluate), polynomial_in_s(right, evaluate)
+            if first is None or second is None or len(second) > 1:
+                return None
+            return tuple(item / second[0] for item in first)
+        case Power(base, exponent):
+            first, second = polynomial_in_s(base, evaluate), polynomial_in_s(exponent, evaluate)
+            if first is None or second is None or len(first) > 1 or len(second) > 1:
+                return None
+            return (evaluate(expression),)
+        case Call(_, argument):
+            inner = polynomial_in_s(argument, evaluate)
+            return (evaluate(expression),) if inner is not None and len(inner) == 1 else None
+
+
+def _added(first: tuple[Scalar, ...], second: tuple[Scalar, ...]) -> tuple[Scalar, ...]:
+    if len(first) < len(second):
+        first, second = second, first
+    return tuple(
+        item + second[place] if place < len(second) else item for place, item in enumerate(first)
+    )
+
+
+def _multiplied(first: tuple[Scalar, ...], second: tuple[Scalar, ...]) -> tuple[Scalar, ...]:
+    total: list[Scalar] = [0.0] * (len(first) + len(second) - 1)
+    for i, a in enumerate(first):
+        for j, b in enumerate(second):
+            total[i + j] = total[i + j] + a * b
+    return tuple(total)

@@ -1,0 +1,253 @@
+"""The equations over exact polynomials: closed forms from shared minors."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from fractions import Fraction
+
+from acsolve.algebra.cofactor import MinorPlan, minors, plan_minors
+from acsolve.algebra.ring import Polynomial, Ring, common_denominator
+from acsolve.circuit.expression import (
+    S,
+    Call,
+    Expression,
+    Frequency,
+    Name,
+    Number,
+    Power,
+    Product,
+    Quotient,
+    Sum,
+    depends_on_s,
+    rebuild,
+)
+from acsolve.circuit.graph import natural_key
+from acsolve.circuit.value import Value
+from acsolve.equations.leaf import collect, monomial
+from acsolve.equations.system import Functional, System
+
+
+@dataclass(frozen=True, slots=True)
+class Generator:
+    """What a generator of the ring stands for: leaf ** (1/root)."""
+
+    leaf: Expression
+    root: int = 1
+
+    @property
+    def varies(self) -> bool:
+        """Whether it depends on the complex frequency."""
+        return depends_on_s(self.leaf)
+
+
+@dataclass(frozen=True, slots=True)
+class Basis:
+    """A ring together with what its generators stand for."""
+
+    ring: Ring
+    generators: tuple[Generator, ...]
+
+    @property
+    def s_index(self) -> int | None:
+        """The generator that is s or a root of it, or None where s does not occur."""
+        return next(
+            (place for place, item in enumerate(self.generators) if item.leaf == S), None
+        )
+
+    @property
+    def rational_in_s(self) -> bool:
+        """Whether only whole powers of s occur and no other function of s."""
+        return all(
+            item.root == 1 and item.leaf == S for item in self.generators if item.varies
+        )
+
+    @property
+    def free_names(self) -> tuple[str, ...]:
+        """The free symbols, in the order of the ring."""
+        found = {
+            name: None
+            for item in self.generators
+            for name in sorted(_names(item.leaf), key=natural_key)
+        }
+        return tuple(found)
+
+
+def _names(expression: Expression) -> frozenset[str]:
+    from acsolve.circuit.expression import names
+
+    return names(expression)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Symbols:
+    """Which named values stay symbols.
+
+    `symbolic` ignores every plain number; `keep` names those that stay symbols while the
+    others take their values; by default only what has no value is a symbol.
+    """
+
+    symbolic: bool = False
+    keep: frozenset[str] = frozenset()
+
+    def stays(self, name: str, value: Value) -> bool:
+        """Whether the value of that name stays a symbol."""
+        if value.expression is None or name in self.keep:
+            return True
+        return self.symbolic and not _names(value.expression)
+
+
+class Expander:
+    """Replaces names by their values, down to symbols; each name is worked out once."""
+
+    def __init__(self, values: Mapping[str, Value], symbols: Symbols) -> None:
+        self._values = values
+        self._symbols = symbols
+        self._known: dict[str, Expression] = {}
+
+    def __call__(self, expression: Expression) -> Expression:
+        """The expression over free symbols, numbers, pi and s."""
+        return rebuild(expression, self._name)
+
+    def _name(self, item: Name) -> Expression:
+        known = self._known.get(item.name)
+        if known is None:
+            value = self._values.get(item.name)
+            if value is None or value.expression is None or self._symbols.stays(item.name, value):
+                known = item
+            else:
+                known = self(value.expression)
+            self._known[item.name] = known
+        return known
+
+
+@dataclass(frozen=True, slots=True)
+class ExactSystem:
+    """The equations as sparse rows of polynomials, each row scaled free of denominators."""
+
+    basis: Basis
+    rows: tuple[Mapping[int, Polynomial], ...]
+    columns: int
+    plan: MinorPlan
+
+    def directions(self, wanted: frozenset[int]) -> Mapping[int, Polynomial]:
+        """The components of the null direction that are asked for; zeros are left out."""
+        return {
+            column: self.basis.ring.reduced(value)
+            for column, value in minors(self.rows, wanted, self.plan, columns=self.columns).items()
+        }
+
+
+def exact_system(system: System, expand: Expander) -> ExactSystem:
+    """The system over the smallest ring that holds its values."""
+    entries = [
+        {column: expand(entry) for column, entry in law.entries.items()} for law in system.laws
+    ]
+    basis = _basis([entry for row in entries for entry in row.values()])
+    convert = _Converter(basis)
+    rows = tuple(_cleared(convert, row) for row in entries)
+    plan = plan_minors([sorted(row) for row in rows])
+    return ExactSystem(basis, rows, len(system.unknowns), plan)
+
+
+def apply(
+    functional: Functional, directions: Mapping[int, Polynomial], ring: Ring
+) -> Polynomial:
+    """The value of a linear function of the unknowns on the null direction."""
+    total = ring.constant(0)
+    for column, factor in functional.items():
+        if column in directions:
+            total += factor * directions[column]
+    return total
+
+
+def _basis(entries: list[Expression]) -> Basis:
+    roots: dict[Expression, int] = {}
+    seen: set[int] = set()
+    for entry in entries:
+        collect(entry, roots, seen)
+    leaves = sorted(roots, key=_leaf_key)
+    names, squares = [], []
+    for place, leaf in enumerate(leaves):
+        names.append(f"g{place}")
+        if isinstance(leaf, Number):
+            squares.append((place, leaf.value.numerator))
+    ring = Ring(tuple(names), tuple(squares))
+    return Basis(ring, tuple(Generator(leaf, roots[leaf]) for leaf in leaves))
+
+
+def _leaf_key(leaf: Expression) -> tuple[int, object]:
+    """Order of the generators: s, symbols by name, numbers' roots, then functions."""
+    match leaf:
+        case Frequency():
+            return (0, 0)
+        case Name(name):
+            return (1, natural_key(name))
+        case Number(value):
+            return (2, value)
+        case _:
+            return (3, repr(leaf))
+
+
+class _Converter:
+    """Expressions to ratios of polynomials over one basis, each tree once."""
+
+    def __init__(self, basis: Basis) -> None:
+        self._ring = basis.ring
+        self._place = {item.leaf: place for place, item in enumerate(basis.generators)}
+        self._roots = [item.root for item in basis.generators]
+        self._one = basis.ring.constant(1)
+
+    def __call__(self, expression: Expression) -> tuple[Polynomial, Polynomial]:
+        match expression:
+            case Number(value):
+                return self._constant(value)
+            case Sum(left, right):
+                (a, b), (c, d) = self(left), self(right)
+                return (a + c, b) if b == d else (a * d + c * b, b * d)
+            case Product(left, right):
+                (a, b), (c, d) = self(left), self(right)
+                return a * c, b * d
+            case Quotient(left, right):
+                (a, b), (c, d) = self(left), self(right)
+                return a * d, b * c
+            case Power(base, Number(exponent)) if exponent.denominator == 1:
+                return self._whole_power(base, exponent.numerator)
+            case _:
+                return self._monomial(expression)
+
+    def _constant(self, value: Fraction) -> tuple[Polynomial, Polynomial]:
+        ring = self._ring
+        return ring.constant(value.numerator), ring.constant(value.denominator)
+
+    def _whole_power(self, base: Expression, exponent: int) -> tuple[Polynomial, Polynomial]:
+        top, bottom = self(base)
+        if exponent < 0:
+            top, bottom = bottom, top
+        return top ** abs(exponent), bottom ** abs(exponent)
+
+    def _monomial(self, expression: Expression) -> tuple[Polynomial, Polynomial]:
+        item = monomial(expression)
+        assert item is not None, "a sum reached the monomial conversion"
+        top, bottom = self._constant(item.coefficient)
+        for leaf, exponent in item.powers.items():
+            place = self._place[leaf]
+            steps = exponent * self._roots[place]
+            assert steps.denominator == 1, "a root finer than its generator"
+            factor = self._ring.generator(place) ** abs(steps.numerator)
+            if steps > 0:
+                top = top * factor
+            else:
+                bottom = bottom * factor
+        return top, bottom
+
+
+def _cleared(convert: _Converter, row: Mapping[int, Expression]) -> dict[int, Polynomial]:
+    """A row without denominators; a scaled row leaves the null direction as it is."""
+    ratios = {column: convert(entry) for column, entry in row.items()}
+    common = common_denominator(convert._ring, (bottom for _, bottom in ratios.values()))  # noqa: SLF001
+    cleared = {
+        column: top if bottom.is_one() and common.is_one() else top * (common / bottom)
+        for column, (top, bottom) in ratios.items()
+    }
+    return {column: value for column, value in cleared.items() if value != 0}
