@@ -18,6 +18,17 @@ Code = Literal[
     "question.no-value",
     "question.level",
     "question.quantity",
+    # the network as a graph
+    "graph.shorted",
+    "graph.voltage-loop",
+    "graph.two-outputs",
+    "graph.current-cutset",
+    "graph.floating",
+    "graph.dangling",
+    "graph.no-feedback",
+    "graph.positive-feedback",
+    "graph.unreachable",
+    "graph.no-reference",
     "equations.singular",
     "equations.undriven",
     "equations.budget",
@@ -30,4 +41,10 @@ Code = Literal[
     "save.ending",
     "save.failed",
     "variant.unknown",
+    # spelling, found while reading the text
+    "syntax.bracket",
+    "syntax.statement",
+    "limit.brackets",
+    "limit.statement",
+    "limit.problems",
 ]

@@ -54,10 +54,10 @@ class ClosedForm:
     @property
     def symbols(self) -> tuple[str, ...]:
         """The free symbols that occur in numerator or denominator."""
-        present = [item for item, used in zip(self.basis.generators, self._used(), strict=True) if used]
+        present = [item for item, used in zip(self.basis.generators, self.used(), strict=True) if used]
         return Basis(self.basis.ring, tuple(present)).free_names
 
-    def _used(self) -> tuple[bool, ...]:
+    def used(self) -> tuple[bool, ...]:
         """For each generator whether it occurs."""
         both = zip(self.numerator.degrees(), self.denominator.degrees(), strict=True)
         return tuple(first > 0 or second > 0 for first, second in both)[: len(self.basis.generators)]
@@ -121,10 +121,7 @@ class ClosedForm:
 
     def at(self, s: Scalar, evaluate: Evaluator, arithmetic: Arithmetic) -> Scalar:
         """The value at a complex frequency s (rad/s), in the evaluator's arithmetic."""
-        points = [
-            _point(item, s, evaluate, arithmetic) if used else None
-            for item, used in zip(self.basis.generators, self._used(), strict=True)
-        ]
+        points = generator_numbers(self, evaluate, arithmetic, s)
         top = evaluate_polynomial(self.numerator, points, arithmetic)
         bottom = evaluate_polynomial(self.denominator, points, arithmetic)
         return top / bottom
@@ -168,6 +165,16 @@ def evaluate_polynomial(
                 term = term * powers[key]
         total = total + term
     return total
+
+
+def generator_numbers(
+    form: ClosedForm, evaluate: Evaluator, arithmetic: Arithmetic, s: Scalar | None = None
+) -> list[Scalar]:
+    """The number behind each generator that occurs (None for s where none is given)."""
+    return [
+        _point(item, s, evaluate, arithmetic) if used and (s is not None or not item.varies) else None
+        for item, used in zip(form.basis.generators, form.used(), strict=True)
+    ]
 
 
 def _point(item: Generator, s: Scalar, evaluate: Evaluator, arithmetic: Arithmetic) -> Scalar:

@@ -95,11 +95,12 @@ def reference_groups(
 
     Parameters
     ----------
-    netlist : Netlist
-    joined : pairs of nodes
-        joined besides: a drive, a short across the pair that is observed.
-    apart : names of parts that join nothing
-        the current sources of the file where a question sets them to zero.
+    netlist
+        the circuit.
+    joined
+        pairs of nodes that are joined besides: a drive, a short across the pair that is observed.
+    apart
+        names of parts that join nothing: current sources that the question sets to zero.
 
     Returns
     -------
@@ -123,17 +124,20 @@ def reference_groups(
 def _current_paths(netlist: Netlist, apart: Collection[str]) -> Iterator[tuple[str, ...]]:
     """The pairs of nodes between which the parts let current flow."""
     for part in netlist.parts:
-        kind, nodes = part.kind, part.nodes
-        if (kind in _OPEN_AT_ZERO and is_open(netlist, part)) or (apart and part.name in apart):
-            continue
-        places = _CONDUCTING.get(kind)
-        if places is None:
-            yield nodes
-            continue
-        for here, there in places:
-            yield nodes[here], nodes[there]
-        if kind == "opamp" and "input_resistance" in part.values:
-            yield nodes[0], nodes[1]
+        if part.kind not in _CONDUCTING:
+            opening = part.kind in _OPEN_AT_ZERO and is_open(netlist, part)
+            if not opening and part.name not in apart:
+                yield part.nodes
+        elif part.name not in apart:
+            yield from conducting_pairs(part)
+
+
+def conducting_pairs(part: Part) -> Iterator[Pair]:
+    """The pairs of nodes of a part between which current flows, if it is not open."""
+    for here, there in _CONDUCTING.get(part.kind, _FIRST_TWO):
+        yield part.nodes[here], part.nodes[there]
+    if part.kind == "opamp" and "input_resistance" in part.values:
+        yield part.nodes[0], part.nodes[1]
 
 
 class DisjointSets:
@@ -248,18 +252,24 @@ def is_ideal(part: Part) -> bool:
 
 #: What a branch of prescribed voltage or current is: a short or ammeter (`zero`), an
 #: independent `source`, the zero-ohm `sense` branch of a current-controlled part, the
-#: `inputs` of an ideal op-amp (equal, without current), a controlled `output`.
-Role = Literal["zero", "source", "sense", "inputs", "output"]
+#: `inputs` of an ideal op-amp (equal, without current), a controlled `output`, the
+#: `drive` of a question or the `short` that observes a current.
+Role = Literal["zero", "source", "sense", "inputs", "output", "drive", "short"]
 
 
 @dataclass(frozen=True, slots=True)
 class Branch:
-    """A branch of prescribed voltage or current between two nodes; current flows first to second."""
+    """A branch of prescribed voltage or current; its current flows from first to second."""
 
-    part: Part
     role: Role
     first: str
     second: str
+    part: Part | None = None  # None for what a question adds
+
+    @property
+    def name(self) -> str:
+        """Name of the part, or the role of what a question adds."""
+        return self.part.name if self.part else self.role
 
 
 def voltage_branches(netlist: Netlist) -> Iterator[Branch]:
@@ -268,15 +278,15 @@ def voltage_branches(netlist: Netlist) -> Iterator[Branch]:
         nodes = part.nodes
         if part.kind == "voltage_source":
             role: Role = "zero" if is_zero(netlist, part, "amplitude") else "source"
-            yield Branch(part, role, nodes[0], nodes[1])
+            yield Branch(role, nodes[0], nodes[1], part)
         elif is_short(netlist, part):
-            yield Branch(part, "zero", nodes[0], nodes[1])
+            yield Branch("zero", nodes[0], nodes[1], part)
         if part.kind in ("transresistance", "current_amplifier"):
-            yield Branch(part, "sense", nodes[0], nodes[1])
+            yield Branch("sense", nodes[0], nodes[1], part)
         elif is_ideal(part):
-            yield Branch(part, "inputs", nodes[0], nodes[1])
+            yield Branch("inputs", nodes[0], nodes[1], part)
         if _has_stiff_output(netlist, part):
-            yield Branch(part, "output", nodes[2], nodes[3])
+            yield Branch("output", nodes[3], nodes[2], part)
 
 
 def _has_stiff_output(netlist: Netlist, part: Part) -> bool:
@@ -291,9 +301,9 @@ def current_branches(netlist: Netlist) -> Iterator[Branch]:
     for part in netlist.parts:
         nodes = part.nodes
         if part.kind == "current_source":
-            yield Branch(part, "source", nodes[0], nodes[1])
+            yield Branch("source", nodes[0], nodes[1], part)
         elif part.kind in ("transconductance", "current_amplifier"):
-            yield Branch(part, "output", nodes[3], nodes[2])
+            yield Branch("output", nodes[3], nodes[2], part)
 
 
 def sensing_pairs(netlist: Netlist) -> Iterator[tuple[Part, Pair]]:

@@ -1,0 +1,401 @@
+"""The syntax tree: what a statement says, not yet what it means. Every node has a span."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from acsolve.source import Span
+
+
+@dataclass(frozen=True, slots=True)
+class Literal:
+    """A number as written: `100`, `100 nF` (with `unit`), or with letters attached."""
+
+    text: str
+    unit: str | None
+    glued: bool
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Reference:
+    """A name in an expression."""
+
+    path: Path
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class GroundWord:
+    """The word `gnd` where an expression could stand."""
+
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Signed:
+    """Signs in front of a formula."""
+
+    negative: bool
+    formula: Formula
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Terms:
+    """Formulas joined by + and -, or by * and /, from left to right."""
+
+    first: Formula
+    rest: tuple[tuple[str, Formula], ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Raised:
+    """A power."""
+
+    base: Formula
+    exponent: Formula
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Applied:
+    """A function and its argument."""
+
+    function: Path
+    argument: Formula
+    span: Span
+
+
+Formula = Literal | Reference | GroundWord | Signed | Terms | Raised | Applied
+
+
+@dataclass(frozen=True, slots=True)
+class Index:
+    """An index, or a range of indices where `high` is given."""
+
+    low: Formula
+    high: Formula | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Step:
+    """A word of a name with its indices; `joint` stands before it ("", "." or "~")."""
+
+    joint: str
+    word: str
+    indices: tuple[Index, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Path:
+    """A name: words with indices, joined by dots."""
+
+    steps: tuple[Step, ...]
+    span: Span
+
+    @property
+    def plain(self) -> bool:
+        """Whether the name is one word without indices."""
+        return len(self.steps) == 1 and not self.steps[0].indices
+
+
+@dataclass(frozen=True, slots=True)
+class Numbered:
+    """A whole number that stands for a node."""
+
+    text: str
+    span: Span
+
+
+Place = Path | Numbered
+
+
+@dataclass(frozen=True, slots=True)
+class Amount:
+    """One side of a tolerance; `percent` tells that it is a part of the nominal value."""
+
+    formula: Formula
+    percent: bool
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class ToleranceText:
+    """`± amount`, or two signed percentages."""
+
+    amounts: tuple[Amount, ...]
+    spread: str | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class ValueText:
+    """What stands right of an equals sign; no formula means `absent`."""
+
+    formula: Formula | None
+    angle: Formula | None
+    tolerance: ToleranceText | None
+    at: Formula | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Argument:
+    """An argument of a kind or a block; without a path it is the principal value."""
+
+    path: Path | None
+    value: ValueText
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class KindText:
+    """`200 * section(R = 120 ohm)`: count, word, arguments."""
+
+    count: Formula | None
+    word: str
+    word_span: Span
+    arguments: tuple[Argument, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Fitted:
+    """A part standing in a chain, with what the place says about it."""
+
+    path: Path
+    kind: KindText | None
+    value: ValueText | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Arm:
+    """Units joined by + (in series) or || (in parallel); `mixed` marks the second sign."""
+
+    sign: str
+    units: tuple[Item, ...]
+    mixed: Span | None
+    span: Span
+
+
+Item = Path | Numbered | Fitted | Arm
+
+
+@dataclass(frozen=True, slots=True)
+class Chain:
+    """A chain of nodes and arms, by turns."""
+
+    items: tuple[Item, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Assign:
+    """Names and the value given to them."""
+
+    targets: tuple[Path, ...]
+    value: ValueText
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Declare:
+    """Names and the kind stated for them."""
+
+    targets: tuple[Path, ...]
+    kind: KindText
+    value: ValueText | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Let:
+    """Named quantities, or symbols where there is no value."""
+
+    targets: tuple[Path, ...]
+    value: ValueText | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Couple:
+    """Coupled inductors."""
+
+    targets: tuple[Path, ...]
+    value: ValueText | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Join:
+    """Nodes made one."""
+
+    places: tuple[Place, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class LeaveOut:
+    """Parts not fitted."""
+
+    targets: tuple[Path, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class PairText:
+    """One node, or two in brackets."""
+
+    first: Place
+    second: Place | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Port:
+    """A named pair."""
+
+    path: Path
+    pair: PairText
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Title:
+    """The circuit's title."""
+
+    text: str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Caution:
+    """A safety remark."""
+
+    text: str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Flattened:
+    """The mark of a text in which names with dots stand as they are."""
+
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class BlockHead:
+    """The first line of a block."""
+
+    word: str
+    word_span: Span
+    pins: tuple[tuple[str, Span], ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class RepeatHead:
+    """The first line of a repetition."""
+
+    word: str
+    word_span: Span
+    low: Formula
+    high: Formula
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class VariantHead:
+    """The first line of a variant."""
+
+    name: str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class End:
+    """The last line of a block, a repetition or a variant."""
+
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class LevelText:
+    """A level; no formula means half power."""
+
+    formula: Formula | None
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class BandText:
+    """A band of frequencies."""
+
+    low: Formula
+    high: Formula
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Clause:
+    """One part of a question or goal: its word and what follows."""
+
+    word: str
+    content: PairText | BandText | Formula | tuple[LevelText, ...] | str
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Ask:
+    """A question."""
+
+    kind: str
+    clauses: tuple[Clause, ...]
+    span: Span
+
+
+@dataclass(frozen=True, slots=True)
+class Goal:
+    """A limit for an answer."""
+
+    clauses: tuple[Clause, ...]
+    span: Span
+
+
+Plain = (
+    Chain | Assign | Declare | Let | Couple | Join | LeaveOut | Port | Title | Caution
+    | Flattened | Ask | Goal
+)  # fmt: skip
+Head = BlockHead | RepeatHead | VariantHead
+Statement = Plain | Head | End
+
+
+@dataclass(frozen=True, slots=True)
+class Block:
+    """A block with its body."""
+
+    head: BlockHead
+    body: tuple[Nested, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Repeat:
+    """A repetition with its body."""
+
+    head: RepeatHead
+    body: tuple[Nested, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class VariantBody:
+    """A variant with its body."""
+
+    head: VariantHead
+    body: tuple[Nested, ...]
+
+
+Nested = Plain | Block | Repeat | VariantBody
