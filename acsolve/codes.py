@@ -29,6 +29,8 @@ Code = Literal[
     "graph.positive-feedback",
     "graph.unreachable",
     "graph.no-reference",
+    "graph.unstable",
+    "graph.feedback-sign",
     "equations.singular",
     "equations.undriven",
     "equations.budget",

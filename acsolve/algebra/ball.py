@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from contextlib import contextmanager
-from math import inf
+from math import inf, isnan
 from typing import Any
 
 
@@ -31,5 +31,5 @@ def relative_difference(first: Any, second: Any) -> float:
     gap = (first - second).abs_upper()
     if size > 0:
         bound = float(gap / size)
-        return bound if bound == bound else inf
+        return inf if isnan(bound) else bound
     return 0.0 if gap < 1e-40 else inf

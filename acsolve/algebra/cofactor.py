@@ -64,9 +64,11 @@ def plan_minors(pattern: Sequence[Collection[int]]) -> MinorPlan:
             closed += not rows_of[column]
         width = max(width, open_now + new)
         open_now += new - closed
-        candidates = {
-            other for column in opened for other in rows_of[column]
-        } if len(left) < _SMALL else _near(pattern[row], rows_of, opened)
+        candidates = (
+            {other for column in opened for other in rows_of[column]}
+            if len(left) < _SMALL
+            else _near(pattern[row], rows_of, opened)
+        )
     return MinorPlan(tuple(order), width, _parity(order))
 
 

@@ -10,6 +10,7 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import partial
 from typing import Any
 
 from acsolve.algebra.ball import precision
@@ -46,9 +47,10 @@ def exact_crossings(coefficients: Sequence[Fraction]) -> Crossings:
     roots: list[tuple[Isolated, bool]] = []
     for factor, multiplicity in fmpz_poly(whole).factor_squarefree()[1]:
         integers = [int(value) for value in factor.coeffs()]
-        evaluate = _evaluator(lambda factor=factor: arb_poly(factor))
-        for root in positive_roots(integers):
-            roots.append((refined(root, evaluate), multiplicity % 2 == 1))
+        evaluate = _evaluator(partial(arb_poly, factor))
+        roots += [
+            (refined(root, evaluate), multiplicity % 2 == 1) for root in positive_roots(integers)
+        ]
     roots.sort(key=lambda item: item[0].low)
     lowest = next(value for value in whole if value)
     return Crossings(_directed(roots, start_positive=lowest > 0), True)

@@ -146,10 +146,8 @@ def _exact(coefficients: Sequence[Any]) -> bool:
 
 
 def _variations(poly: Any) -> int:
-    """Sign changes of (1+x)^n · p(1/(1+x)): an upper bound of the roots in (0, 1), exact at 0 and 1."""
-    from flint import arb_poly, fmpz_poly
-
-    kind = fmpz_poly if isinstance(poly, fmpz_poly) else arb_poly
+    """Sign changes of (1+x)^n · p(1/(1+x)): a bound of the roots in (0, 1), exact if 0 or 1."""
+    kind: Any = type(poly)
     reverse = kind(list(reversed(_padded(poly))))
     shifted = reverse(kind([1, 1]))
     changes, last = 0, 0
@@ -169,25 +167,20 @@ def _padded(poly: Any) -> list[Any]:
 
 def _halves(poly: Any) -> tuple[Any, Any, bool]:
     """2^n·p(x/2) on (0, 1), the same shifted by one, and whether the middle is a root."""
-    from flint import arb, arb_poly, fmpz_poly
+    from flint import fmpz
 
+    kind: Any = type(poly)
     coefficients = _padded(poly)
     degree = len(coefficients) - 1
-    if isinstance(poly, fmpz_poly):
-        left = fmpz_poly([item << (degree - k) for k, item in enumerate(map(int, coefficients))])
-        right = left(fmpz_poly([1, 1]))
-    else:
-        left = arb_poly([item * arb(2) ** (degree - k) for k, item in enumerate(coefficients)])
-        right = left(arb_poly([1, 1]))
+    left = kind([item * fmpz(2) ** (degree - k) for k, item in enumerate(coefficients)])
+    right = left(kind([1, 1]))
     middle_is_root = _sign(right[0]) == 0
     if middle_is_root:
-        right = type(right)(_padded(right)[1:])
+        right = kind(_padded(right)[1:])
     return left, right, middle_is_root
 
 
-def refined(
-    root: Isolated, polynomial: Callable[[Any], Any], bits: int = 64
-) -> Isolated:
+def refined(root: Isolated, polynomial: Callable[[Any], Any], bits: int = 64) -> Isolated:
     """The interval narrowed by bisection until its relative width is below 2**-bits.
 
     `polynomial` evaluates at a ball, at the precision in force; a sign in doubt is asked
@@ -214,7 +207,7 @@ def _middle(low: Fraction, high: Fraction) -> Fraction:
     if low > 0 and high > 4 * low:
         ratio = high / low
         halves = (ratio.numerator.bit_length() - ratio.denominator.bit_length()) // 2
-        return low * 2 ** max(1, halves)
+        return low * Fraction(2) ** max(1, halves)
     if low == 0:
         return high / 2**16
     return (low + high) / 2

@@ -126,9 +126,7 @@ def _may_share(ring: Ring, numerator: Polynomial, denominator: Polynomial) -> bo
 def _images_share(
     ring: Ring, first: Polynomial, second: Polynomial, index: int, points: Sequence[int]
 ) -> bool:
-    others = {
-        name: points[place] for place, name in enumerate(ring.names) if place != index
-    }
+    others = {name: points[place] for place, name in enumerate(ring.names) if place != index}
     images = [polynomial.subs(others) for polynomial in (first, second)]
     for polynomial, image in zip((first, second), images, strict=True):
         if image.degrees()[index] < polynomial.degrees()[index]:

@@ -54,13 +54,17 @@ class ClosedForm:
     @property
     def symbols(self) -> tuple[str, ...]:
         """The free symbols that occur in numerator or denominator."""
-        present = [item for item, used in zip(self.basis.generators, self.used(), strict=True) if used]
+        present = [
+            item for item, used in zip(self.basis.generators, self.used(), strict=True) if used
+        ]
         return Basis(self.basis.ring, tuple(present)).free_names
 
     def used(self) -> tuple[bool, ...]:
         """For each generator whether it occurs."""
         both = zip(self.numerator.degrees(), self.denominator.degrees(), strict=True)
-        return tuple(first > 0 or second > 0 for first, second in both)[: len(self.basis.generators)]
+        return tuple(first > 0 or second > 0 for first, second in both)[
+            : len(self.basis.generators)
+        ]
 
     def coefficients(self) -> tuple[list[Polynomial], list[Polynomial]]:
         """Coefficients of numerator and denominator by rising power of s."""
@@ -80,9 +84,7 @@ class ClosedForm:
         place = self.basis.s_index
         if not self.rational:
             return None
-        both = [
-            univariate(polynomial, place) for polynomial in (self.numerator, self.denominator)
-        ]
+        both = [univariate(polynomial, place) for polynomial in (self.numerator, self.denominator)]
         if both[0] is None or both[1] is None:
             return None
         return both[0], both[1]
@@ -172,7 +174,9 @@ def generator_numbers(
 ) -> list[Scalar]:
     """The number behind each generator that occurs (None for s where none is given)."""
     return [
-        _point(item, s, evaluate, arithmetic) if used and (s is not None or not item.varies) else None
+        _point(item, s, evaluate, arithmetic)
+        if used and (s is not None or not item.varies)
+        else None
         for item, used in zip(form.basis.generators, form.used(), strict=True)
     ]
 
@@ -219,4 +223,3 @@ def normalised(
         leading = powers[min(powers)]
     top, bottom = positive(top, bottom, leading)
     return ClosedForm(ask, basis, top, bottom, values)
-

@@ -168,7 +168,9 @@ def _numeric(
         form=form,
         reference=basis.shown,
         level_db=level.db,
-        cutoffs=tuple(_cutoff(item.value, item.rises) for item in crossings.found if item.rises is not None),
+        cutoffs=tuple(
+            _cutoff(item.value, item.rises) for item in crossings.found if item.rises is not None
+        ),
         touches=tuple(_touch(item.value) for item in crossings.found if item.rises is None),
         complete=crossings.complete,
         method=method if crossings.complete else method + ", undecided at 4096 bits",
@@ -199,9 +201,7 @@ def _reference(size: Magnitude, asked: ReferenceName | Fraction | None) -> _Basi
     squared = low if name == "dc" else high
     word = "at 0 Hz" if name == "dc" else "at infinite frequency"
     if squared is None or squared == 0:
-        raise _no_reference(
-            f"the gain {word} is {'infinite' if squared is None else 'zero'}"
-        )
+        raise _no_reference(f"the gain {word} is {'infinite' if squared is None else 'zero'}")
 
     def again() -> Any:
         return size.at_zero() if name == "dc" else size.at_infinity()
@@ -314,5 +314,3 @@ def _no_reference(message: str) -> AnalysisError:
 
 def _refuse(code: Code, message: str, hint: str) -> AnalysisError:
     return AnalysisError(Diagnostic(code=code, message=message, hint=hint))
-
-

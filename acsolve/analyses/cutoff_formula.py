@@ -199,9 +199,7 @@ def _all_positive(polynomial: Polynomial) -> bool:
     return polynomial != 0 and all(value > 0 for value in polynomial.coeffs())
 
 
-def _solve(
-    form: ClosedForm, poly: list[Polynomial], direction: Direction | None
-) -> list[Formula]:
+def _solve(form: ClosedForm, poly: list[Polynomial], direction: Direction | None) -> list[Formula]:
     """Roots of c + b·x + a·x² = 0 with x = ω²; a (or b) has been made positive-leading."""
     spelling = form.spelled(safe=True)
     if len(poly) == 2:
@@ -220,7 +218,9 @@ def _first_degree(
     text = f"sqrt({_ratio(form, -c, b, spelling)})"
     root = _root_of_square(form, -c, b, spelling)
     certain = _all_positive(b) and _all_negative(c)
-    condition = None if certain else f"{root or text} holds where what stands under the root is positive"
+    condition = (
+        None if certain else f"{root or text} holds where what stands under the root is positive"
+    )
     return [Formula(root or text, (c, b), 0, condition, direction)]
 
 
@@ -260,7 +260,9 @@ def _second_degree(
     lead = "" if b == 0 else f"{minus_b} "
 
     def text(sign: str) -> str:
-        first = f"{lead}{sign} sqrt({discriminant})" if lead or sign == "-" else f"sqrt({discriminant})"
+        first = (
+            f"{lead}{sign} sqrt({discriminant})" if lead or sign == "-" else f"sqrt({discriminant})"
+        )
         return f"sqrt(({first})/({twice_a}))"
 
     if _all_positive(a) and _all_negative(c):
@@ -288,4 +290,3 @@ def _number(item: Formula, form: ClosedForm, evaluate: Evaluator) -> float | Non
             return None
         x = (-b + item.branch * inside**0.5) / (2 * a)
     return x**0.5 if x > 0 else None
-

@@ -28,9 +28,7 @@ def ball_coefficients(form: ClosedForm, polynomial: Polynomial) -> list[Any]:
             continue
         number = evaluate(item.leaf)
         points.append(number if item.root == 1 else number.root(item.root))
-    powers = (
-        {0: polynomial} if place is None else form.basis.ring.by_power(polynomial, place)
-    )
+    powers = {0: polynomial} if place is None else form.basis.ring.by_power(polynomial, place)
     zero = form.basis.ring.constant(0)
     return [
         evaluate_polynomial(powers.get(power, zero), points, arithmetic).real

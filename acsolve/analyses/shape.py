@@ -64,7 +64,9 @@ def limits(form: ClosedForm) -> tuple[Limit, Limit]:
         return "0", "0"
     low = (_lowest(top), _lowest(bottom))
     high = (len(top) - 1, len(bottom) - 1)
-    return _limit(form, top, bottom, low, rising=False), _limit(form, top, bottom, high, rising=True)
+    return _limit(form, top, bottom, low, rising=False), _limit(
+        form, top, bottom, high, rising=True
+    )
 
 
 def _lowest(coefficients: list[Polynomial]) -> int:

@@ -6,7 +6,9 @@ from dataclasses import dataclass, replace
 
 from acsolve.algebra.ring import Polynomial
 from acsolve.analyses.closed_form import ClosedForm, normalised
+from acsolve.analyses.poles import PolesZeros, poles_zeros
 from acsolve.analyses.question import Ask, refuse_unreferenced
+from acsolve.analyses.shape import Limit, StandardForm, limits, standard_form
 from acsolve.analyses.verify import check_closed_form
 from acsolve.circuit.netlist import Netlist, bindings
 from acsolve.equations.exact import Basis, Expander, Symbols, apply, exact_system
@@ -94,3 +96,28 @@ def _no_answer(ask: Ask, *, singular: bool) -> EquationError:
             hint="Drive another pair, or ask for another quantity.",
         )
     )
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class TransferAnswer:
+    """A checked closed form with what a reader asks of it next."""
+
+    form: ClosedForm
+    at_zero: Limit
+    at_infinity: Limit
+    standard_form: StandardForm | None
+    roots: PolesZeros | None
+
+    @property
+    def order(self) -> int | None:
+        """The degree of the denominator in s, or of the numerator where that is larger."""
+        if not self.form.rational:
+            return None
+        top, bottom = self.form.coefficients()
+        return max(len(top), len(bottom)) - 1
+
+
+def transfer_answer(form: ClosedForm) -> TransferAnswer:
+    """Limits, standard form, poles and zeros of a closed form."""
+    at_zero, at_infinity = limits(form)
+    return TransferAnswer(form, at_zero, at_infinity, standard_form(form), poles_zeros(form))

@@ -98,9 +98,7 @@ def _difference(netlist: Netlist, form: ClosedForm, point: _Point, bits: int) ->
         s = _complex(arithmetic, point)
         here = form.at(s, evaluate, arithmetic)
         system = form.ask.system(netlist, branch_for=lambda part: _is_zero(part, evaluate))
-        there = dense_ratio(
-            system, form.ask.observed(system), form.ask.driven(system), evaluate, s
-        )
+        there = dense_ratio(system, form.ask.observed(system), form.ask.driven(system), evaluate, s)
         return relative_difference(here, there)
 
 

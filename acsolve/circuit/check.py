@@ -15,6 +15,7 @@ from acsolve.circuit.check_loops import (
     Cut,
     current_cuts,
     driven_loop_findings,
+    held_nodes,
     loop_findings,
 )
 from acsolve.circuit.check_signals import (
@@ -238,15 +239,18 @@ def _against(
     pairs = [(branch.first, branch.second) for branch in extra]
     stiff = [branch for branch in extra if voltage or branch.role == "short"]
     drive = None if voltage or not source else extra[0]
-    held = [(branch.first, branch.second) for branch in stiff]
     alone = [(node, node) for node in target]  # known to the groups even where no part is
     groups = reference_groups(netlist, joined=[*pairs, *alone], apart=apart)
-    ways = reach(netlist, joined=alone)
+    holding = [(branch.first, branch.second) for branch in stiff]
+    ways = reach(netlist, joined=[*alone, *holding])
     yield from driven_loop_findings(netlist, stiff)
-    for cut in current_cuts(netlist, held=held, drive=drive, apart=apart):
+    for cut in current_cuts(netlist, held=holding, drive=drive, apart=apart):
         if cut.independent or ways.leads(cut.nodes, target):
             yield _cut_off(cut, "error")
-    yield from floating_in_question(netlist, groups, ways, target)
+    observes_voltage = not any(branch.role == "short" for branch in extra)
+    held = held_nodes(netlist, stiff) if observes_voltage else frozenset()
+    acting = reach(netlist, joined=[*alone, *holding], held=held)
+    yield from floating_in_question(netlist, groups, acting, target)
     undefined = tuple(no_reference_finding(groups, target))
     yield from undefined
     if not undefined and source != target:

@@ -27,7 +27,7 @@ from acsolve.circuit.graph import (
     sensing_pairs,
     voltage_branches,
 )
-from acsolve.circuit.netlist import Netlist, Pair, Part
+from acsolve.circuit.netlist import GROUND, Netlist, Pair, Part
 from acsolve.errors import Diagnostic
 
 #: A loop as branches with the sign in which it runs through them.
@@ -244,6 +244,17 @@ def _prescribed(branch: Branch, others: str, parts: list[Part]) -> Diagnostic:
     return finding("graph.voltage-loop", message, parts, hint=hint, severity="error")
 
 
+def held_nodes(netlist: Netlist, extra: Iterable[Branch]) -> frozenset[str]:
+    """The nodes whose potential against `gnd` sources, shorts and a drive prescribe."""
+    sets = DisjointSets([GROUND])
+    for branch in (*voltage_branches(netlist), *extra):
+        if branch.role in ("zero", "source", "sense", "drive", "short"):
+            sets.add(branch.first, branch.second)
+            sets.join(branch.first, branch.second)
+    ground = sets.root(GROUND)
+    return frozenset(node for node in sets.parent if sets.root(node) == ground)
+
+
 @dataclass(frozen=True, slots=True)
 class Cut:
     """Nodes that only branches of prescribed current join to the rest of their group.
@@ -292,10 +303,10 @@ def current_cuts(
         known = {node for cut in cuts for node in cut.nodes}
         for node in references.of:
             sets.add(node)
+        fixed = {sets.root(node) for node in references.references}
         for node in references.of:
-            root = sets.root(node)
-            if root != sets.root(references.reference(node)):
-                rest.setdefault(root, []).append(node)
+            if sets.root(node) not in fixed:
+                rest.setdefault(sets.root(node), []).append(node)
         for nodes in rest.values():
             if known.isdisjoint(nodes):
                 inside = set(nodes)
@@ -315,14 +326,13 @@ def _held_together(netlist: Netlist, held: Iterable[Pair], independent: bool) ->
     for part in netlist.parts:
         if part.kind == "current_source" or is_open(netlist, part):
             continue
-        output = part.nodes[2:] if not independent and _drives_current(part) else None
-        sets.join_all(pair for pair in conducting_pairs(part) if pair != output)
+        pairs = list(conducting_pairs(part))
+        if not independent and part.kind in ("transconductance", "current_amplifier"):
+            pairs.pop()  # the output comes last
+        sets.join_all(pairs)
     more = [*held] if independent else [*held, *(pair for _, pair in sensing_pairs(netlist))]
     for first, second in more:
         sets.add(first, second)
         sets.join(first, second)
     return sets
 
-
-def _drives_current(part: Part) -> bool:
-    return part.kind in ("transconductance", "current_amplifier")

@@ -37,22 +37,24 @@ def _floating(part: Part, pair: Pair, severity: Severity) -> Diagnostic:
 
 
 def floating_in_question(
-    netlist: Netlist, groups: Groups, reach: Reach, target: Collection[str]
+    netlist: Netlist, groups: Groups, reach: Reach, target: Pair
 ) -> Iterator[Diagnostic]:
     """Sensing pairs without a common level that act on what is observed.
 
     One amplifier that senses a floating set of nodes makes the answer depend on a level
-    that nothing sets: an error. Where several sense it, the level may cancel (two input
-    followers before a difference amplifier): a warning that says which node counts as zero.
+    that nothing sets: an error. Where several sense it, or where it acts on both observed
+    nodes, the level may cancel (two input followers before a difference amplifier): a
+    warning that says which node counts as zero.
     """
     loose = [
         (part, pair) for part, pair in sensing_pairs(netlist) if not groups.shares_reference(*pair)
     ]
     users = Counter(frozenset(groups.of[node] for node in pair) for _, pair in loose)
     for part, pair in loose:
-        if not reach.leads(part.nodes[2:], target):
+        ends = reach.led_to(part.nodes[2:], target)
+        if not ends:
             continue
-        if users[frozenset(groups.of[node] for node in pair)] == 1:
+        if ends == 1 and users[frozenset(groups.of[node] for node in pair)] == 1:
             yield _floating(part, pair, "error")
         else:
             yield _taken_as_zero(part, pair, groups)

@@ -8,7 +8,7 @@ rather than too few: what it calls out of reach has the answer zero exactly.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Collection, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 
 from acsolve.circuit.graph import DisjointSets, constant, is_open
@@ -58,11 +58,17 @@ class Reach:
 
     def leads(self, source: Iterable[str], target: Iterable[str]) -> bool:
         """Whether a signal at some of the first nodes gets to any of the second ones."""
+        return self.led_to(source, target) > 0
+
+    def led_to(self, source: Iterable[str], target: Iterable[str]) -> int:
+        """The number of second nodes that a signal at some of the first nodes gets to."""
         found = self.reached(source)
-        return any(self.islands.get(node) in found for node in target)
+        return sum(self.islands.get(node) in found for node in target)
 
 
-def reach(netlist: Netlist, *, joined: Iterable[Pair] = ()) -> Reach:
+def reach(
+    netlist: Netlist, *, joined: Iterable[Pair] = (), held: Collection[str] = frozenset()
+) -> Reach:
     """The islands and links of a network, its current sources taken as open.
 
     Parameters
@@ -71,19 +77,22 @@ def reach(netlist: Netlist, *, joined: Iterable[Pair] = ()) -> Reach:
         the circuit.
     joined
         pairs of nodes between which signals go both ways besides.
+    held
+        nodes whose potential is prescribed: like `gnd`, they let nothing through.
 
     """
+    still = {GROUND, *held}
     sets = DisjointSets(node for part in netlist.parts for node in part.nodes)
     for cluster in (*_clusters(netlist), *joined):
         sets.add(*cluster)
-        inner = [node for node in cluster if node != GROUND]
+        inner = [node for node in cluster if node not in still]
         for node in inner[1:]:
             sets.join(inner[0], node)
     numbers: dict[str, int] = {}
     islands = {
         node: numbers.setdefault(sets.root(node), len(numbers))
         for node in sets.parent
-        if node != GROUND
+        if node not in still
     }
     onward = _links(netlist, islands, len(numbers))
     return Reach(islands, onward, _loops(onward))

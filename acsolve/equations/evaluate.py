@@ -44,6 +44,9 @@ class Arithmetic(Protocol):
     def function(self, name: str, argument: Scalar) -> Scalar:
         """A named function, principal branch."""
 
+    def rotation(self, degrees: Scalar) -> Scalar:
+        """exp(j·angle) for an angle in degrees."""
+
 
 class FloatArithmetic:
     """Double precision; arguments may be NumPy arrays, results are real where they can be."""
@@ -72,6 +75,10 @@ class FloatArithmetic:
             return float(result) if isinstance(argument, float) else result
         result = np.log(argument)
         return result / np.log(10.0) if name == "log10" else result
+
+    def rotation(self, degrees: Scalar) -> Scalar:
+        """exp(j·angle) for an angle in degrees."""
+        return np.exp(1j * np.deg2rad(degrees))
 
 
 class BallArithmetic:
@@ -103,6 +110,12 @@ class BallArithmetic:
         if name == "log10":
             return argument.log() / acb(10).log()
         return getattr(argument, name)()
+
+    def rotation(self, degrees: Scalar) -> Scalar:
+        """exp(j·angle) for an angle in degrees."""
+        from flint import acb
+
+        return (acb(0, 1) * acb.pi() * degrees / 180).exp()
 
 
 class Evaluator:
@@ -161,8 +174,15 @@ class Evaluator:
             if value is None or value.expression is None:
                 raise no_value((name,))
             known = self(value.expression)
+            if angle_name(name) in self._values:  # a source: its phasor
+                known = known * self._arithmetic.rotation(self.name(angle_name(name)))
             self._known[name] = known
         return known
+
+
+def angle_name(source: str) -> str:
+    """The name under which a source's angle, in degrees, is referred to."""
+    return f"{source}.angle"
 
 
 def no_value(names: tuple[str, ...]) -> EquationError:
@@ -180,9 +200,7 @@ def no_value(names: tuple[str, ...]) -> EquationError:
     )
 
 
-def polynomial_in_s(
-    expression: Expression, evaluate: Evaluator
-) -> tuple[Scalar, ...] | None:
+def polynomial_in_s(expression: Expression, evaluate: Evaluator) -> tuple[Scalar, ...] | None:
     """Coefficients of a polynomial in s by rising power, or None where it is not one."""
     match expression:
         case Number() | Name() | Pi():

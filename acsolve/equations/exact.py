@@ -9,8 +9,6 @@ from fractions import Fraction
 from acsolve.algebra.cofactor import MinorPlan, minors, plan_minors
 from acsolve.algebra.ring import Polynomial, Ring, common_denominator
 from acsolve.circuit.expression import (
-    S,
-    Call,
     Expression,
     Frequency,
     Name,
@@ -18,12 +16,14 @@ from acsolve.circuit.expression import (
     Power,
     Product,
     Quotient,
+    S,
     Sum,
     depends_on_s,
     rebuild,
 )
 from acsolve.circuit.graph import natural_key
 from acsolve.circuit.value import Value
+from acsolve.equations.evaluate import angle_name
 from acsolve.equations.leaf import collect, monomial
 from acsolve.equations.system import Functional, System
 
@@ -51,16 +51,12 @@ class Basis:
     @property
     def s_index(self) -> int | None:
         """The generator that is s or a root of it, or None where s does not occur."""
-        return next(
-            (place for place, item in enumerate(self.generators) if item.leaf == S), None
-        )
+        return next((place for place, item in enumerate(self.generators) if item.leaf == S), None)
 
     @property
     def rational_in_s(self) -> bool:
         """Whether only whole powers of s occur and no other function of s."""
-        return all(
-            item.root == 1 and item.leaf == S for item in self.generators if item.varies
-        )
+        return all(item.root == 1 and item.leaf == S for item in self.generators if item.varies)
 
     @property
     def free_names(self) -> tuple[str, ...]:
@@ -113,7 +109,13 @@ class Expander:
         known = self._known.get(item.name)
         if known is None:
             value = self._values.get(item.name)
-            if value is None or value.expression is None or self._symbols.stays(item.name, value):
+            phasor = angle_name(item.name) in self._values  # complex: it stays a symbol
+            if (
+                phasor
+                or value is None
+                or value.expression is None
+                or self._symbols.stays(item.name, value)
+            ):
                 known = item
             else:
                 known = self(value.expression)
@@ -150,9 +152,7 @@ def exact_system(system: System, expand: Expander) -> ExactSystem:
     return ExactSystem(basis, rows, len(system.unknowns), plan)
 
 
-def apply(
-    functional: Functional, directions: Mapping[int, Polynomial], ring: Ring
-) -> Polynomial:
+def apply(functional: Functional, directions: Mapping[int, Polynomial], ring: Ring) -> Polynomial:
     """The value of a linear function of the unknowns on the null direction."""
     total = ring.constant(0)
     for column, factor in functional.items():
@@ -245,7 +245,7 @@ class _Converter:
 def _cleared(convert: _Converter, row: Mapping[int, Expression]) -> dict[int, Polynomial]:
     """A row without denominators; a scaled row leaves the null direction as it is."""
     ratios = {column: convert(entry) for column, entry in row.items()}
-    common = common_denominator(convert._ring, (bottom for _, bottom in ratios.values()))  # noqa: SLF001
+    common = common_denominator(convert._ring, (bottom for _, bottom in ratios.values()))
     cleared = {
         column: top if bottom.is_one() and common.is_one() else top * (common / bottom)
         for column, (top, bottom) in ratios.items()

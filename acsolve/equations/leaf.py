@@ -8,7 +8,7 @@ the generator is then the root of the quantity.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 
@@ -121,9 +121,7 @@ def square_free(value: Fraction) -> tuple[Fraction, tuple[int, ...]]:
     return outside, tuple(roots)
 
 
-def collect(
-    expression: Expression, roots: dict[Expression, int], seen: set[int]
-) -> None:
+def collect(expression: Expression, roots: dict[Expression, int], seen: set[int]) -> None:
     """Note every leaf of an expression with the root (1, 2, …) its generator must be."""
     if id(expression) in seen:
         return
@@ -148,5 +146,3 @@ def _note(roots: dict[Expression, int], leaf: Expression, root: int) -> None:
     from math import lcm
 
     roots[leaf] = lcm(roots.get(leaf, 1), root)
-
-

@@ -47,9 +47,7 @@ def slope(expression: Expression) -> Expression:
 def _of_power(item: Power) -> Expression:
     """(u^v)' = v·u^(v-1)·u' + u^v·ln(u)·v'."""
     base, exponent = item.base, item.exponent
-    first = multiply(
-        multiply(exponent, power(base, add(exponent, MINUS_ONE))), slope(base)
-    )
+    first = multiply(multiply(exponent, power(base, add(exponent, MINUS_ONE))), slope(base))
     if not depends_on_s(exponent):
         return first
     return add(first, multiply(multiply(item, call("ln", base)), slope(exponent)))
@@ -73,5 +71,3 @@ def _of_call(item: Call) -> Expression:
             return multiply(call("sinh", argument), inner)
         case "sinh":
             return multiply(call("cosh", argument), inner)
-
-

@@ -12,7 +12,6 @@ out of the part into the node at `out`.
 from __future__ import annotations
 
 from collections.abc import Callable
-from fractions import Fraction
 from typing import Protocol
 
 from acsolve.circuit.expression import (
@@ -22,7 +21,6 @@ from acsolve.circuit.expression import (
     ZERO,
     Expression,
     Name,
-    Number,
     S,
     add,
     call,
@@ -33,8 +31,6 @@ from acsolve.circuit.expression import (
     power,
 )
 from acsolve.circuit.netlist import Coupling, Part
-
-
 
 
 class Board(Protocol):
@@ -109,14 +105,16 @@ def through(board: Board, part: Part, first: str, second: str, suffix: str = "")
     return branch
 
 
-def across(board: Board, law: int, first: str, second: str, factor: Expression = ONE) -> None:
+def across(board: Board, law: int, pair: tuple[str, ...], factor: Expression = ONE) -> None:
     """Add factor · (V(first) - V(second)) to a law."""
+    first, second = pair
     board.voltage(law, first, factor)
     board.voltage(law, second, negate(factor))
 
 
-def conductance(board: Board, first: str, second: str, admittance: Expression) -> None:
+def conductance(board: Board, pair: tuple[str, ...], admittance: Expression) -> None:
     """A two-terminal admittance between two nodes."""
+    first, second = pair
     minus = negate(admittance)
     board.conduct(first, first, admittance)
     board.conduct(first, second, minus)
@@ -131,7 +129,7 @@ def _series(
     top, bottom = ratio
     branch = through(board, part, nodes[0], nodes[1])
     law = board.law(part, f"law of {part.name}")
-    across(board, law, nodes[0], nodes[1], bottom)
+    across(board, law, nodes, bottom)
     board.current(law, branch, negate(top))
 
 
@@ -140,7 +138,7 @@ def _resistor(board: Board, part: Part) -> None:
     resistance = _needed(part, "value")
     inductance = value(part, "series_inductance")
     if inductance is None and not board.wants_branch(part):
-        conductance(board, *part.nodes, divide(ONE, resistance))
+        conductance(board, part.nodes, divide(ONE, resistance))
         return
     if inductance is not None:
         resistance = add(resistance, multiply(S, inductance))
@@ -176,7 +174,7 @@ def _capacitor(board: Board, part: Part) -> None:
         omega = multiply(multiply(number(2), PI), _at(part, "quality"))
         extra = add(extra, divide(S, multiply(omega, quality)))
     if extra == ZERO:
-        conductance(board, *part.nodes, susceptance)
+        conductance(board, part.nodes, susceptance)
     else:
         _series(board, part, part.nodes, (add(ONE, extra), susceptance))
 
@@ -188,13 +186,13 @@ def _impedance(board: Board, part: Part) -> None:
 
 @_stamp("admittance")
 def _admittance(board: Board, part: Part) -> None:
-    conductance(board, *part.nodes, _needed(part, "value"))
+    conductance(board, part.nodes, _needed(part, "value"))
 
 
 @_stamp("constant_phase")
 def _constant_phase(board: Board, part: Part) -> None:
     admittance = multiply(_needed(part, "coefficient"), power(S, _needed(part, "exponent")))
-    conductance(board, *part.nodes, admittance)
+    conductance(board, part.nodes, admittance)
 
 
 @_stamp("voltage_source")
@@ -202,7 +200,7 @@ def _voltage_source(board: Board, part: Part) -> None:
     """The source raises the potential from left to right: V(b) - V(a) = E."""
     through(board, part, *part.nodes)
     law = board.law(part, f"voltage of {part.name}")
-    across(board, law, part.nodes[1], part.nodes[0])
+    across(board, law, part.nodes[::-1])
     if board.is_drive(part):
         board.unity(law, negate(_needed(part, "amplitude")))
 
@@ -220,7 +218,7 @@ def _current_source(board: Board, part: Part) -> None:
 def _ammeter(board: Board, part: Part) -> None:
     through(board, part, *part.nodes)
     law = board.law(part, f"no voltage across {part.name}")
-    across(board, law, *part.nodes)
+    across(board, law, part.nodes)
 
 
 def _output(board: Board, part: Part) -> int:
@@ -236,18 +234,18 @@ def _opamp(board: Board, part: Part) -> None:
     if input_resistance is not None:
         branch = through(board, part, plus, minus, suffix=" input")
         law = board.law(part, f"input resistance of {part.name}")
-        across(board, law, plus, minus)
+        across(board, law, (plus, minus))
         board.current(law, branch, negate(input_resistance))
     branch = _output(board, part)
     gain, bandwidth = value(part, "open_loop_gain"), value(part, "gain_bandwidth")
     if gain is None and bandwidth is None:
         law = board.law(part, f"equal inputs of {part.name}")
-        across(board, law, plus, minus)
+        across(board, law, (plus, minus))
         return
     law = board.law(part, f"gain of {part.name}")
     top, bottom = opamp_gain(gain, bandwidth)
-    across(board, law, part.node("out"), part.node("ref"), bottom)
-    across(board, law, plus, minus, negate(top))
+    across(board, law, (part.node("out"), part.node("ref")), bottom)
+    across(board, law, (plus, minus), negate(top))
     output_resistance = value(part, "output_resistance")
     if output_resistance is not None:
         board.current(law, branch, multiply(bottom, output_resistance))
@@ -273,8 +271,8 @@ def opamp_gain(
 def _voltage_amplifier(board: Board, part: Part) -> None:
     _output(board, part)
     law = board.law(part, f"gain of {part.name}")
-    across(board, law, part.node("out"), part.node("ref"))
-    across(board, law, part.node("plus"), part.node("minus"), negate(_needed(part, "gain")))
+    across(board, law, (part.node("out"), part.node("ref")))
+    across(board, law, (part.node("plus"), part.node("minus")), negate(_needed(part, "gain")))
 
 
 @_stamp("transconductance")
@@ -290,7 +288,7 @@ def _sensed_current(board: Board, part: Part) -> int:
     plus, minus = part.node("plus"), part.node("minus")
     branch = through(board, part, plus, minus, suffix=" input")
     law = board.law(part, f"no voltage across the input of {part.name}")
-    across(board, law, plus, minus)
+    across(board, law, (plus, minus))
     return branch
 
 
@@ -299,7 +297,7 @@ def _transresistance(board: Board, part: Part) -> None:
     sensed = _sensed_current(board, part)
     _output(board, part)
     law = board.law(part, f"gain of {part.name}")
-    across(board, law, part.node("out"), part.node("ref"))
+    across(board, law, (part.node("out"), part.node("ref")))
     board.current(law, sensed, negate(_needed(part, "gain")))
 
 
@@ -319,8 +317,8 @@ def _transformer(board: Board, part: Part) -> None:
     board.leave(s1, branch, negate(ratio))
     board.leave(s2, branch, ratio)
     law = board.law(part, f"ratio of {part.name}")
-    across(board, law, p1, p2)
-    across(board, law, s1, s2, negate(ratio))
+    across(board, law, (p1, p2))
+    across(board, law, (s1, s2), negate(ratio))
 
 
 @_stamp("gyrator")
@@ -344,13 +342,13 @@ def _line(board: Board, part: Part) -> None:
     near, far, near_ref, far_ref = part.nodes
     first = through(board, part, near, near_ref, suffix=" near")
     second = through(board, part, far, far_ref, suffix=" far")
-    ends = ((near, near_ref, first), (far, far_ref, second))
-    for here, there in (ends, ends[::-1]):
+    ends = (((near, near_ref), first), ((far, far_ref), second))
+    for (here, out), (there, into) in (ends, ends[::-1]):
         law = board.law(part, f"wave out of {part.name} at {here[0]}")
-        across(board, law, here[0], here[1])
-        board.current(law, here[2], negate(z0))
-        across(board, law, there[0], there[1], negate(travel))
-        board.current(law, there[2], negate(multiply(z0, travel)))
+        across(board, law, here)
+        board.current(law, out, negate(z0))
+        across(board, law, there, negate(travel))
+        board.current(law, into, negate(multiply(z0, travel)))
 
 
 def propagation(part: Part) -> Expression:
@@ -385,7 +383,7 @@ def _crystal(board: Board, part: Part) -> None:
             "shunt_capacitance",
         )
     )
-    conductance(board, *part.nodes, multiply(S, shunt))
+    conductance(board, part.nodes, multiply(S, shunt))
     susceptance = multiply(S, capacitance)
     arm = add(resistance, multiply(S, inductance))
     _series(board, part, part.nodes, (add(ONE, multiply(susceptance, arm)), susceptance))

@@ -18,7 +18,7 @@ from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
-from acsolve.circuit.expression import MINUS_ONE, ONE, ZERO, Expression, add, multiply, negate, S
+from acsolve.circuit.expression import MINUS_ONE, ONE, ZERO, Expression, S, add, multiply, negate
 from acsolve.circuit.graph import Groups, natural_key, reference_groups
 from acsolve.circuit.netlist import Netlist, Pair, Part
 from acsolve.equations.stamp import STAMPS, mutual_inductance

@@ -119,14 +119,15 @@ def _power_text(base: str, power: Fraction, spelling: Spelling) -> str:
 def item_text(expression: Expression, spelling: Spelling) -> str:
     """An expression that stands as one factor, in brackets where it must."""
     text = expression_text(expression, spelling)
-    return f"({text})" if isinstance(expression, Sum | Quotient | Product) else text
+    simple = not isinstance(expression, Sum | Quotient | Product) and text[0] != "-"
+    return text if simple and "/" not in text else f"({text})"
 
 
 def expression_text(expression: Expression, spelling: Spelling) -> str:
     """A value expression as text."""
     match expression:
         case Number(value):
-            return str(value) if value.denominator == 1 and value >= 0 else f"({value})"
+            return str(value)
         case Name(name):
             return spelling.name(name)
         case Pi():
@@ -134,23 +135,28 @@ def expression_text(expression: Expression, spelling: Spelling) -> str:
         case Frequency():
             return "s"
         case Sum(left, right):
-            return f"{expression_text(left, spelling)} + {expression_text(right, spelling)}"
+            first, second = expression_text(left, spelling), expression_text(right, spelling)
+            return f"{first} - {second[1:]}" if second[0] == "-" else f"{first} + {second}"
+        case Product(Number(value), right) if value == -1:
+            return f"-{_factor(right, spelling)}"
         case Product(left, right):
-            return f"{_bracketed(left, spelling)}*{_bracketed(right, spelling)}"
+            return f"{_factor(left, spelling)}*{_factor(right, spelling)}"
         case Quotient(left, right):
-            return f"{_bracketed(left, spelling)}/{item_text(right, spelling)}"
+            return f"{_factor(left, spelling)}/{item_text(right, spelling)}"
         case Power(base, exponent):
             return f"{item_text(base, spelling)}{spelling.power}{item_text(exponent, spelling)}"
-        case Call("ln", argument):
-            return f"log({expression_text(argument, spelling)})"
-        case Call("log10", argument):
-            return f"(log({expression_text(argument, spelling)})/log(10))"
-        case Call(function, argument):
-            return f"{function}({expression_text(argument, spelling)})"
+        case Call():
+            return _call_text(expression, spelling)
 
 
-def _bracketed(expression: Expression, spelling: Spelling) -> str:
+def _call_text(expression: Call, spelling: Spelling) -> str:
+    argument = expression_text(expression.argument, spelling)
+    if expression.function == "log10":
+        return f"(log({argument})/log(10))"
+    return f"{'log' if expression.function == 'ln' else expression.function}({argument})"
+
+
+def _factor(expression: Expression, spelling: Spelling) -> str:
+    """An expression as a factor of a product or the top of a quotient."""
     text = expression_text(expression, spelling)
-    return f"({text})" if isinstance(expression, Sum) else text
-
-
+    return f"({text})" if isinstance(expression, Sum) or text[0] == "-" else text

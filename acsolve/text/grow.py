@@ -8,53 +8,150 @@ from typing import Any
 
 from acsolve.source import Span
 from acsolve.text import tree
-from acsolve.text.scan import Script, Token
+from acsolve.text.scan import Tokens
 from acsolve.text.syntax import Template
 
 _SHIELDED = re.compile(r'\\(["\\])')
 
 Grower = Callable[["Grown"], Any]
+Recipe = Callable[[Tokens], Any]
 
 
 class Grown:
     """One node on its way: its parts already grown, its tokens at hand."""
 
-    __slots__ = ("letters", "parts", "source", "span", "tokens")
+    __slots__ = ("kind", "parts", "source", "span", "text", "tokens")
 
-    def __init__(self, script: Script, tokens: list[Token], span: Span, parts: list[Any]) -> None:
-        self.source = script.source
-        self.letters = script.text
+    def __init__(self, tokens: Tokens, span: Span, parts: list[Any]) -> None:
         self.tokens = tokens
+        self.source = tokens.script.source
+        self.text = tokens.text
+        self.kind = tokens.kinds.__getitem__
         self.span = span
         self.parts = parts  # grown nodes, and token numbers
 
-    def text(self, number: int) -> str:
-        """The text of a token, look-alike signs replaced."""
-        _, start, end = self.tokens[number]
-        return self.letters[start:end]
-
     def quoted(self, number: int) -> str:
         """The words inside double quotes; a backslash shields a quote or a backslash."""
-        _, start, end = self.tokens[number]
-        return _SHIELDED.sub(r"\1", self.source.text[start + 1 : end - 1])
-
-    def kind(self, number: int) -> str:
-        """The terminal of a token."""
-        return self.tokens[number][0]
+        return _SHIELDED.sub(r"\1", self.place(number).text[1:-1])
 
     def place(self, number: int) -> Span:
         """The span of a token."""
-        _, start, end = self.tokens[number]
-        return Span(self.source, start, end)
+        return self.tokens.span(number, number)
 
 
-def grow(template: Template, script: Script, tokens: list[Token]) -> Any:
-    """The syntax tree of a statement; depth is bounded by the limit on brackets."""
-    parts = [
-        part if isinstance(part, int) else grow(part, script, tokens) for part in template.parts
-    ]
-    span = Span(script.source, tokens[template.first][1], tokens[template.last][2])
-    return _GROWERS[template.rule](Grown(script, tokens, span, parts))
+def recipe(template: Template) -> Recipe:
+    """How to make the syntax tree of a statement from its tokens.
+
+    Depth is bounded by the limit on brackets.
+    """
+    quick = _QUICK.get(template.rule)
+    ready = quick(template) if quick else None
+    if ready is not None:
+        return ready
+    parts = tuple(part if isinstance(part, int) else recipe(part) for part in template.parts)
+    grower, first, last = _GROWERS[template.rule], template.first, template.last
+
+    def grown(tokens: Tokens) -> Any:
+        made = [part if isinstance(part, int) else part(tokens) for part in parts]
+        return grower(Grown(tokens, tokens.span(first, last), made))
+
+    return grown
+
+
+# ---------------------------------------------------------------- the most usual rules
+
+
+def _quick_path(template: Template) -> Recipe | None:
+    """A word, or a word with whole numbers as indices."""
+    numbers = _plain_indices(template)
+    if numbers is None:
+        return None
+    word, last = template.first, template.last
+    slow = _slow(template)
+
+    def path(tokens: Tokens) -> tree.Path:
+        name = tokens.text(word)
+        if numbers:
+            indices = [tokens.text(number) for number in numbers]
+            for digits in indices:
+                if not digits.isdigit() or digits[0] == "0" and digits != "0":
+                    return slow(tokens)  # type: ignore[no-any-return]
+            name = f"{name}[{','.join(indices)}]"
+        return tree.Path(name, (), tokens.span(word, last))
+
+    return path
+
+
+def _plain_indices(template: Template) -> list[int] | None:
+    """The token numbers of plain indices; None where the name is more than that."""
+    if len(template.parts) == 1:
+        return []
+    if len(template.parts) > 2:
+        return None
+    group = template.parts[1]
+    if isinstance(group, int) or group.rule != "indices":
+        return None
+    numbers = []
+    for index in group.parts:
+        inner = index.parts if isinstance(index, Template) else ()
+        if len(inner) != 1 or not isinstance(inner[0], Template) or inner[0].rule != "literal":
+            return None
+        if inner[0].first != inner[0].last:
+            return None
+        numbers.append(inner[0].first)
+    return numbers
+
+
+def _quick_literal(template: Template) -> Recipe:
+    first, last = template.first, template.last
+
+    def literal(tokens: Tokens) -> tree.Literal:
+        unit = tokens.text(last) if last > first else None
+        glued = tokens.kinds[first] == "GLUED"
+        return tree.Literal(tokens.text(first), unit, glued, tokens.span(first, last))
+
+    return literal
+
+
+def _quick_value(template: Template) -> Recipe | None:
+    if len(template.parts) > 1 or isinstance(template.parts[0], int):
+        return None
+    formula, first, last = recipe(template.parts[0]), template.first, template.last
+
+    def value(tokens: Tokens) -> tree.ValueText:
+        return tree.ValueText(formula(tokens), None, None, None, tokens.span(first, last))
+
+    return value
+
+
+def _quick_valued(template: Template) -> Recipe:
+    path, value = (recipe(part) for part in template.parts if isinstance(part, Template))
+    first, last = template.first, template.last
+
+    def valued(tokens: Tokens) -> tree.Fitted:
+        return tree.Fitted(path(tokens), None, value(tokens), tokens.span(first, last))
+
+    return valued
+
+
+def _quick_chain(template: Template) -> Recipe:
+    items = [recipe(part) for part in template.parts if isinstance(part, Template)]
+    first, last = template.first, template.last
+
+    def chain(tokens: Tokens) -> tree.Chain:
+        return tree.Chain(tuple([item(tokens) for item in items]), tokens.span(first, last))
+
+    return chain
+
+
+def _slow(template: Template) -> Recipe:
+    parts = tuple(part if isinstance(part, int) else recipe(part) for part in template.parts)
+
+    def grown(tokens: Tokens) -> Any:
+        made = [part if isinstance(part, int) else part(tokens) for part in parts]
+        return _path(Grown(tokens, tokens.span(template.first, template.last), made))
+
+    return grown
 
 
 # ---------------------------------------------------------------- names
@@ -71,7 +168,7 @@ def _path(node: Grown) -> tree.Path:
             steps.append(tree.Step(joint, word, indices))
             (joint, word), indices = suffix, ()
     steps.append(tree.Step(joint, word, indices))
-    return tree.Path(tuple(steps), node.span)
+    return tree.Path(None, tuple(steps), node.span)
 
 
 def _indices(node: Grown) -> tuple[tree.Index, ...]:
@@ -96,16 +193,10 @@ def _numbered(node: Grown) -> tree.Numbered:
 
 
 def _ground_place(node: Grown) -> tree.Path:
-    return tree.Path((tree.Step("", "gnd", ()),), node.span)
+    return tree.Path("gnd", (), node.span)
 
 
 # ---------------------------------------------------------------- formulas
-
-
-def _literal(node: Grown) -> tree.Literal:
-    first = node.parts[0]
-    unit = node.text(node.parts[1]) if len(node.parts) > 1 else None
-    return tree.Literal(node.text(first), unit, node.kind(first) == "GLUED", node.span)
 
 
 def _reference(node: Grown) -> tree.Reference:
@@ -218,7 +309,7 @@ def _count(node: Grown) -> Any:
     span = node.place(part)
     if node.kind(part) == "NUMBER":
         return tree.Literal(node.text(part), None, False, span)
-    return tree.Reference(tree.Path((tree.Step("", node.text(part), ()),), span), span)
+    return tree.Reference(tree.Path(node.text(part), (), span), span)
 
 
 def _positional(node: Grown) -> tree.Argument:
@@ -227,10 +318,6 @@ def _positional(node: Grown) -> tree.Argument:
 
 def _named(node: Grown) -> tree.Argument:
     return tree.Argument(node.parts[0], node.parts[1], node.span)
-
-
-def _valued(node: Grown) -> tree.Fitted:
-    return tree.Fitted(node.parts[0], None, node.parts[1], node.span)
 
 
 def _stated(node: Grown) -> tree.Fitted:
@@ -243,10 +330,6 @@ def _arm(node: Grown) -> tree.Arm:
     kinds = [node.kind(sign) for sign in signs]
     mixed = next((node.place(s) for s, k in zip(signs, kinds, strict=True) if k != kinds[0]), None)
     return tree.Arm("+" if kinds[0] == "PLUS" else "||", tuple(units), mixed, node.span)
-
-
-def _chain(node: Grown) -> tree.Chain:
-    return tree.Chain(tuple(node.parts), node.span)
 
 
 # ---------------------------------------------------------------- other statements
@@ -392,7 +475,6 @@ _GROWERS: dict[str, Grower] = {
     "joint": _joint,
     "index": _index,
     "numbered": _numbered,
-    "literal": _literal,
     "reference": _reference,
     "bracket": _bracket,
     "signed": _signed,
@@ -410,11 +492,9 @@ _GROWERS: dict[str, Grower] = {
     "count": _count,
     "positional": _positional,
     "named": _named,
-    "valued": _valued,
     "stated": _stated,
     "group": _bracket,
     "arm": _arm,
-    "chain": _chain,
     "targets": _targets,
     "assign": _assign,
     "declare": _declare,
@@ -456,4 +536,12 @@ _GROWERS: dict[str, Grower] = {
     "option_level": _only,
     "option_expression": _only,
     "option_name": _only,
+}
+
+_QUICK: dict[str, Callable[[Template], Recipe | None]] = {
+    "path": _quick_path,
+    "literal": _quick_literal,
+    "value": _quick_value,
+    "valued": _quick_valued,
+    "chain": _quick_chain,
 }

@@ -6,26 +6,16 @@ the tokens the grammar could have gone on with. The first rule that knows the ca
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import dataclass
-
-from acsolve.codes import Code
-from acsolve.source import Span
 from acsolve.text.problems import Problems
-from acsolve.text.scan import Script, Token
-from acsolve.text.syntax import OPEN_TEXT, STRAY, Failure, keywords
+from acsolve.text.scan import Tokens
+from acsolve.text.syntax import OPEN_TEXT, STRAY, Failure
 
 
-def explain(
-    start: str,
-    sheet: Script,
-    statement: list[Token],
-    failure: Failure | None,
-    problems: Problems,
-) -> None:
+def explain(start: str, statement: Tokens, failure: Failure | None, problems: Problems) -> None:
     """Record why a statement cannot be read."""
     if failure is None:
-        number = next(n for n, token in enumerate(statement) if token[0] in (OPEN_TEXT, STRAY))
+        number = next(n for n, kind in enumerate(statement.kinds) if kind in (OPEN_TEXT, STRAY))
         failure = Failure(number, frozenset())
-    _, first, last = statement[min(failure.position, len(statement) - 1)] if statement else ("", 0, 0)
-    problems.add("syntax.statement", "this cannot be read", Span(sheet.source, first, last))
+    last = len(statement.kinds) - 1
+    at = min(failure.position, last)
+    problems.add("syntax.statement", "this cannot be read", statement.span(at, at))

@@ -1,17 +1,12 @@
-"""Text to tokens, and tokens to logical statements."""
+"""Text to tokens."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 from acsolve.source import Source, Span
-from acsolve.text import limits
-from acsolve.text.problems import Problems
-from acsolve.text.syntax import OPEN_TEXT, STRAY, keywords, scanner
-
-#: A token: terminal name, first character, character after the last.
-Token = tuple[str, int, int]
+from acsolve.text.syntax import keywords, scanner
 
 #: Code points that look like a sign of the format, one for one, so that places stay true.
 LOOK_ALIKES = str.maketrans(
@@ -44,154 +39,47 @@ def script(source: Source) -> Script:
     return Script(source, source.text if ascii_only else source.text.translate(LOOK_ALIKES))
 
 
-_OPENING = frozenset(("OPEN", "OPEN_INDEX"))
-_CLOSING = {"CLOSE": "OPEN", "CLOSE_INDEX": "OPEN_INDEX"}
-_GOES_ON = frozenset(("LINK", "COMMA", "PARALLEL", "PLUS"))
-_STOPS_BRACKETS = frozenset(("LINK", "END"))  # signs that no bracket can hold
+@dataclass(slots=True)
+class Tokens:
+    """The tokens of one statement: terminal, first character, character after the last.
 
-
-def tokens(text: str) -> Iterator[Token]:
-    """The tokens of a text, line ends included, blanks and comments left out."""
-    words = keywords()
-    for match in scanner().finditer(text):
-        kind = match.lastgroup
-        assert kind is not None, "every alternative of the scanner is a named group"
-        start, end = match.span(kind)
-        if kind == "NAME":
-            kind = words.get(text[start:end], kind)
-        yield kind, start, end
-
-
-class Splitter:
-    """Cuts a stream of tokens into logical statements and hands them to `emit`.
-
-    A bracket that is never closed would swallow the rest of the file. So where a bracket
-    is open at a sign that no bracket can hold (`--`, `end`) or at the end of the text, its
-    line is reported and dropped, and the lines after it are read again one by one.
+    Places count from `base`, so that lines of one outline can share them.
     """
 
-    def __init__(
-        self, script: Script, problems: Problems, emit: Callable[[list[Token]], None]
-    ) -> None:
-        self._script = script
-        self._problems = problems
-        self._emit = emit
-        self._pending: list[Token] = []
-        self._open: list[Token] = []
-        self._skipping = False
+    script: Script
+    base: int
+    kinds: tuple[str, ...]
+    starts: tuple[int, ...]
+    ends: tuple[int, ...]
 
-    def run(self) -> None:
-        """Split the whole text."""
-        for token in tokens(self._script.text):
-            self.feed(token)
-        self.finish()
+    def text(self, number: int) -> str:
+        """The text of a token, look-alike signs replaced."""
+        base = self.base
+        return self.script.text[base + self.starts[number] : base + self.ends[number]]
 
-    def feed(self, token: Token) -> None:
-        """Take one token."""
-        kind, pending = token[0], self._pending
-        if kind == "NEWLINE":
-            self._skipping = False
-            if self._open:
-                pending.append(token)
-            elif pending and pending[-1][0] not in _GOES_ON:
-                self._flush()
-            return
-        if self._skipping:
-            return
-        if kind in _OPENING:
-            self._open.append(token)
-        elif kind in _CLOSING:
-            if self._open:
-                self._close(token)
-        elif self._open and kind in _STOPS_BRACKETS:
-            pending.append(token)
-            self._unclosed()
-            return
-        pending.append(token)
-        if len(pending) > limits.STATEMENT_TOKENS:
-            self._too_long()
-
-    def finish(self) -> None:
-        """Take the end of the text."""
-        if self._open:
-            self._unclosed(at_end=True)
-        if self._pending:
-            self._flush()
-
-    def _flush(self) -> None:
-        statement = [token for token in self._pending if token[0] != "NEWLINE"]
-        self._pending, self._open = [], []
-        if statement:
-            self._emit(statement)
-
-    def _close(self, token: Token) -> None:
-        opening = self._open.pop()
-        if opening[0] != _CLOSING[token[0]]:
-            wrong, right = self._text(token), ")" if opening[0] == "OPEN" else "]"
-            self._problems.add(
-                "syntax.bracket",
-                f"{wrong} closes a bracket that was opened with {self._text(opening)}",
-                self._span(token),
-                hint=f"Write {right} here.",
-            )
-
-    def _unclosed(self, *, at_end: bool = False) -> None:
-        """Report open brackets, drop their lines, read the other lines one by one."""
-        for opening in self._open:
-            sign = self._text(opening)
-            self._problems.add(
-                "syntax.bracket",
-                f"this {sign} is never closed",
-                self._span(opening),
-                hint=f"Close it with {')' if sign == '(' else ']'}.",
-            )
-        marked = set(self._open)
-        lines = _lines(self._pending)
-        self._pending, self._open = [], []
-        current = [] if at_end else lines.pop()
-        for line in lines:
-            self._take_line(line, spoiled=not marked.isdisjoint(line))
-        if not marked.isdisjoint(current):
-            self._spoil(current)
-            self._skipping = True
-            return
-        for token in current:
-            self.feed(token)
-
-    def _take_line(self, line: list[Token], *, spoiled: bool) -> None:
-        """Hand over a line as a statement of its own, or drop it."""
-        if spoiled:
-            self._spoil(line)
-        elif line:
-            self._emit(line)
-
-    def _spoil(self, line: list[Token]) -> None:
-        """Remember the names of a dropped line, so that nobody misses them later."""
-        self._problems.broken_words.update(self._text(token) for token in line)
-
-    def _too_long(self) -> None:
-        first = self._pending[0]
-        self._problems.refuse(
-            "limit.statement",
-            f"this statement is longer than {limits.STATEMENT_TOKENS:,} words and signs",
-            self._span(first),
-            hint="Cut the chain at a node and go on in a new line.",
-        )
-
-    def _text(self, token: Token) -> str:
-        return self._script.text[token[1] : token[2]]
-
-    def _span(self, token: Token) -> Span:
-        return Span(self._script.source, token[1], token[2])
+    def span(self, first: int, last: int) -> Span:
+        """The characters from the first token to the last."""
+        base = self.base
+        return Span(self.script.source, base + self.starts[first], base + self.ends[last])
 
 
-def _lines(tokens_: list[Token]) -> list[list[Token]]:
-    """The tokens line by line, without the line ends."""
-    lines: list[list[Token]] = [[]]
-    for token in tokens_:
-        if token[0] == "NEWLINE":
-            lines.append([])
-        else:
-            lines[-1].append(token)
-    return lines
+Token = tuple[str, int, int]
 
+
+def tokens(text: str, start: int, end: int) -> Iterator[Token]:
+    """The tokens in a stretch of text, line ends included, blanks and comments left out."""
+    words = keywords()
+    for match in scanner().finditer(text, start, end):
+        kind = match.lastgroup
+        assert kind is not None, "every alternative of the scanner is a named group"
+        first, last = match.span(kind)
+        if kind == "NAME":
+            kind = words.get(text[first:last], kind)
+        yield kind, first, last
+
+
+def gathered(script: Script, found: list[Token]) -> Tokens:
+    """Loose tokens as one statement, line ends left out."""
+    kept = [token for token in found if token[0] != "NEWLINE"]
+    kinds, starts, ends = zip(*kept, strict=True) if kept else ((), (), ())
+    return Tokens(script, 0, kinds, starts, ends)

@@ -91,15 +91,27 @@ class Step:
 
 @dataclass(frozen=True, slots=True)
 class Path:
-    """A name: words with indices, joined by dots."""
+    """A name: words with indices, joined by dots.
 
+    `name` is the whole name where it is one word with no indices but plain whole numbers
+    (by far the most usual case, so it is kept ready-made); else None, and `steps` tell.
+    """
+
+    name: str | None
     steps: tuple[Step, ...]
     span: Span
 
     @property
-    def plain(self) -> bool:
-        """Whether the name is one word without indices."""
-        return len(self.steps) == 1 and not self.steps[0].indices
+    def word(self) -> str:
+        """The first word, without indices."""
+        return self.steps[0].word if self.name is None else self.name.partition("[")[0]
+
+    @property
+    def indexed(self) -> bool:
+        """Whether an index stands anywhere in the name."""
+        if self.name is not None:
+            return self.name.endswith("]")
+        return any(step.indices for step in self.steps)
 
 
 @dataclass(frozen=True, slots=True)
@@ -366,12 +378,19 @@ class Goal:
     span: Span
 
 
+@dataclass(frozen=True, slots=True)
+class Broken:
+    """A head that could not be read; it keeps its body and its `end` from being misread."""
+
+    span: Span
+
+
 Plain = (
     Chain | Assign | Declare | Let | Couple | Join | LeaveOut | Port | Title | Caution
     | Flattened | Ask | Goal
 )  # fmt: skip
 Head = BlockHead | RepeatHead | VariantHead
-Statement = Plain | Head | End
+Statement = Plain | Head | End | Broken
 
 
 @dataclass(frozen=True, slots=True)

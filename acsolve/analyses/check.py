@@ -1,0 +1,194 @@
+"""Does the circuit make sense: its size, its order, its natural modes, every problem found."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
+from fractions import Fraction
+
+from acsolve.algebra.roots import LARGEST_CERTIFIED
+from acsolve.analyses.closed_form import ClosedForm
+from acsolve.analyses.enclosed import enclosed_roots
+from acsolve.analyses.question import Ask
+from acsolve.analyses.transfer import ratio
+from acsolve.circuit.check import check, check_question
+from acsolve.circuit.expression import Number
+from acsolve.circuit.netlist import Netlist, Pair, Part, bindings
+from acsolve.circuit.value import Value
+from acsolve.equations.exact import Symbols
+from acsolve.errors import Diagnostic, EquationError
+
+_LARGEST_EXACT = 400  # unknowns up to which the exact characteristic polynomial is worked out
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Modes:
+    """Natural modes of the whole network, before anything cancels, for one way of driving it.
+
+    `driven` is the pair held by the ideal drive (None: all sources as in the file, at rest).
+    `order` is their number; `values` are in rad/s, None where parts have no values or
+    there are too many.
+    """
+
+    driven: Pair | None
+    held: str
+    order: int
+    values: tuple[complex, ...] | None
+
+    @property
+    def stable(self) -> bool | None:
+        """Whether every mode decays; None where it is not known."""
+        if self.values is None:
+            return None
+        return all(mode.real < 0 for mode in self.values)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class CheckAnswer:
+    """What `check` found. `problems` are sorted by place; errors refuse the circuit."""
+
+    title: str | None
+    nodes: tuple[str, ...]
+    parts: tuple[Part, ...]
+    modes: tuple[Modes, ...]
+    problems: tuple[Diagnostic, ...]
+
+    @property
+    def ok(self) -> bool:
+        """Whether no error was found."""
+        return all(item.severity != "error" for item in self.problems)
+
+
+def check_answer(netlist: Netlist, remarks: Iterable[Diagnostic] = ()) -> CheckAnswer:
+    """Everything that can be said about a circuit before it is asked anything."""
+    problems = [*remarks, *check(netlist)]
+    for question in netlist.questions:
+        problems += check_question(netlist, question.source, question.target)
+    asks = _ways_of_driving(netlist)
+    refused = any(item.severity == "error" for item in problems)
+    modes = (
+        () if refused else tuple(found for ask in asks if (found := natural_modes(netlist, ask)))
+    )
+    if not refused:
+        problems += _instabilities(netlist, modes)
+        problems += _one_pole_instabilities(netlist, asks, modes)
+    ordered = sorted(_distinct(problems), key=lambda item: item.sort_key)
+    return CheckAnswer(netlist.title, netlist.nodes(), netlist.parts, modes, tuple(ordered))
+
+
+def _distinct(problems: Iterable[Diagnostic]) -> list[Diagnostic]:
+    return list({(item.sort_key, item.severity): item for item in problems}.values())
+
+
+def _ways_of_driving(netlist: Netlist) -> list[Ask]:
+    """One question for each way the file's questions hold the network, else the network at rest."""
+    seen: dict[tuple[Pair | None, str], Ask] = {}
+    for question in netlist.questions:
+        if question.source is None:
+            ask = Ask(source=question.target, target=question.target, quantity="impedance")
+        else:
+            ask = Ask(
+                source=question.source,
+                target=question.source,
+                quantity="impedance"
+                if question.quantity in _DRIVEN_BY_CURRENT
+                else "voltage-ratio",
+            )
+        if ask.target[0] != ask.target[1]:
+            seen.setdefault((ask.source, ask.quantity), ask)
+    if seen:
+        return list(seen.values())
+    nodes = netlist.nodes()
+    if len(nodes) < 2:
+        return []
+    return [Ask(source=None, target=(nodes[1], nodes[0]), quantity="response")]
+
+
+_DRIVEN_BY_CURRENT = ("transimpedance", "current-ratio")
+
+
+def natural_modes(netlist: Netlist, ask: Ask) -> Modes | None:
+    """The roots of the network's characteristic polynomial; None where it is not one."""
+    system = ask.system(netlist)
+    if len(system.unknowns) > _LARGEST_EXACT:
+        return None
+    try:
+        found = ratio(netlist, ask, Symbols())
+    except EquationError:
+        return None
+    form = ClosedForm(
+        ask, found.basis, found.driven, found.basis.ring.constant(1), bindings(netlist)
+    )
+    if not form.rational:
+        return None
+    coefficients = form.coefficients()[0]
+    order = max((k for k, value in enumerate(coefficients) if value != 0), default=0)
+    values = None
+    if not form.symbols and order <= LARGEST_CERTIFIED:
+        values = enclosed_roots(form, found.driven)
+    held = "at rest" if ask.source is None else "open" if ask.quantity == "impedance" else "held"
+    return Modes(ask.source, held, order, values)
+
+
+def _instabilities(netlist: Netlist, modes: Iterable[Modes]) -> list[Diagnostic]:
+    del netlist
+    problems = []
+    for item in modes:
+        growing = [mode for mode in item.values or () if mode.real > 0]
+        if growing:
+            problems.append(
+                Diagnostic(
+                    code="graph.unstable",
+                    severity="warning",
+                    message=f"the network is not stable: {len(growing)} of its {item.order} natural "
+                    f"modes {'grows' if len(growing) == 1 else 'grow'}, so a steady response "
+                    "does not exist",
+                    hint="Look for positive feedback or a negative value.",
+                )
+            )
+    return problems
+
+
+def _one_pole_instabilities(
+    netlist: Netlist, asks: Iterable[Ask], modes: Iterable[Modes]
+) -> list[Diagnostic]:
+    """Ideal op-amps cannot tell plus from minus: try them as fast integrators."""
+    ideal = [part for part in netlist.parts if _is_ideal(part)]
+    if not ideal or any(item.stable is None for item in modes):
+        return []
+    fastest = max((abs(mode) for item in modes for mode in item.values or ()), default=1.0)
+    bandwidth = Value(expression=Number(Fraction(max(1, round(fastest))) * _FASTER))
+    real = replace(
+        netlist,
+        parts=tuple(
+            replace(part, values={**part.values, "gain_bandwidth": bandwidth})
+            if _is_ideal(part)
+            else part
+            for part in netlist.parts
+        ),
+    )
+    for ask, before in zip(asks, modes, strict=False):
+        after = natural_modes(real, ask)
+        if before.stable is False or after is None:
+            continue
+        if any(mode.real > 1e-9 * fastest for mode in after.values or ()):
+            names = ", ".join(part.name for part in ideal)
+            return [
+                Diagnostic(
+                    code="graph.feedback-sign",
+                    severity="warning",
+                    message=f"with real op-amps this network grows without bound ({names} "
+                    "taken as fast integrators)",
+                    span=ideal[0].span,
+                    hint="Are plus and minus of an op-amp swapped? An ideal op-amp cannot "
+                    "tell them apart.",
+                )
+            ]
+    return []
+
+
+_FASTER = 1000  # gain-bandwidth of the trial op-amps over the network's fastest mode
+
+
+def _is_ideal(part: Part) -> bool:
+    return part.kind == "opamp" and not {"open_loop_gain", "gain_bandwidth"} & set(part.values)

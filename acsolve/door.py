@@ -1,0 +1,328 @@
+"""What users import: circuits and the questions that are put to them.
+
+Nothing heavy is imported here: each method loads what it needs.
+"""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field, replace
+from fractions import Fraction
+from typing import TYPE_CHECKING, Any, Literal
+
+from acsolve.circuit.netlist import (
+    Netlist,
+    Pair,
+    QuantityName,
+    Question,
+    with_values,
+    with_variant,
+)
+from acsolve.errors import AnalysisError, CircuitError, Diagnostic
+
+if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import ArrayLike, NDArray
+
+    from acsolve.analyses.check import CheckAnswer
+    from acsolve.analyses.closed_form import ClosedForm
+    from acsolve.analyses.cutoff import CutoffAnswer
+    from acsolve.analyses.equations import Equations
+    from acsolve.analyses.question import Ask
+    from acsolve.analyses.sweep import Sweep
+    from acsolve.analyses.transfer import TransferAnswer
+
+PairLike = str | tuple[str, str]
+ReferenceLike = Literal["dc", "infinity", "peak"] | float | Fraction | str
+
+
+@dataclass(frozen=True, slots=True)
+class Circuit:
+    """A circuit, immutable; changing a value returns a new one that shares the rest.
+
+    Made by `acsolve.read`, `acsolve.parse` or `acsolve.Draft`. `warnings` are what the
+    reader remarked without refusing the file.
+    """
+
+    netlist: Netlist
+    warnings: tuple[Diagnostic, ...] = field(default=(), compare=False, repr=False)
+
+    @property
+    def title(self) -> str | None:
+        """The title that the file gives."""
+        return self.netlist.title
+
+    @property
+    def nodes(self) -> tuple[str, ...]:
+        """All nodes, `gnd` first where it occurs."""
+        return self.netlist.nodes()
+
+    @property
+    def parts(self) -> tuple[str, ...]:
+        """The names of all parts, in the order of the file."""
+        return tuple(part.name for part in self.netlist.parts)
+
+    @property
+    def cautions(self) -> tuple[str, ...]:
+        """The safety remarks that the file carries."""
+        return self.netlist.cautions
+
+    @property
+    def variants(self) -> tuple[str, ...]:
+        """The names of the variants that the file defines."""
+        return tuple(self.netlist.variants)
+
+    @property
+    def questions(self) -> tuple[Question, ...]:
+        """What the file's `ask` lines ask, in order."""
+        return self.netlist.questions
+
+    def path(
+        self,
+        source: PairLike | None,
+        target: PairLike | None = None,
+        *,
+        quantity: QuantityName | None = None,
+        ammeter: str | None = None,
+    ) -> Path:
+        """A question: where the circuit is driven, where it is observed.
+
+        Parameters
+        ----------
+        source : a node (against `gnd`), two nodes ("a,b" or a tuple), or a port's name.
+            None lets the file's own sources act.
+        target : likewise; or leave it out and name an `ammeter`.
+        quantity : `voltage-ratio` (default), `current-ratio`, `transimpedance` or
+            `transadmittance`.
+
+        Raises
+        ------
+        AnalysisError
+            [question.unknown-node], [question.same-node].
+        """
+        from acsolve.analyses.question import transfer_ask
+
+        driven = None if source is None else self.pair(source)
+        if target is None and ammeter is None:
+            raise AnalysisError(
+                Diagnostic(
+                    code="question.no-pair",
+                    message="the question does not say where the answer is observed",
+                    hint='Name a node, two nodes ("a,b") or a port, or an ammeter.',
+                )
+            )
+        observed = self._ammeter_pair(ammeter) if target is None else self.pair(target)
+        ask = transfer_ask(self.netlist, driven, observed, quantity=quantity, ammeter=ammeter)
+        return Path(self, ask)
+
+    def looking_into(self, pair: PairLike) -> Path:
+        """The driving-point impedance of a pair, asked the same ways as a path."""
+        from acsolve.analyses.question import impedance_ask
+
+        return Path(self, impedance_ask(self.netlist, self.pair(pair)))
+
+    def pair(self, text: PairLike) -> Pair:
+        """A pair of nodes from a node's name, "a,b", a tuple or a port's name."""
+        from acsolve.text import parse_pair
+
+        if isinstance(text, tuple):
+            first, second = text
+            return self.netlist.resolve(first), self.netlist.resolve(second)
+        return parse_pair(text, self.netlist)
+
+    def _ammeter_pair(self, name: str | None) -> Pair:
+        part = self.netlist.part(name or "")
+        if part is None or part.kind != "ammeter":
+            raise AnalysisError(
+                Diagnostic(
+                    code="question.unknown-name",
+                    message=f"there is no ammeter {name} in this circuit",
+                    hint="Name a part of kind ammeter.",
+                )
+            )
+        return part.nodes[0], part.nodes[1]
+
+    def with_values(self, values: Mapping[str, Any] | None = None, /, **named: Any) -> Circuit:
+        """A new circuit with other values: `with_values(R1="2k2", C1=10e-9)`.
+
+        A text is read as the file format writes values; a number is in SI units. Names
+        that Python cannot spell go in a mapping: `with_values({"N1[7].C": "2 nF"})`.
+
+        Raises
+        ------
+        AcsolveError
+            [question.unknown-name] no such part or quantity; codes of the text format for
+            a value that does not read or has the wrong unit.
+        """
+        from acsolve.text import value_for
+
+        given = {**(values or {}), **named}
+        changed = {name: value_for(name, value, self.netlist) for name, value in given.items()}
+        return replace(self, netlist=with_values(self.netlist, changed))
+
+    def with_variant(self, name: str | None) -> Circuit:
+        """The circuit as its variant of that name says; None for the circuit as drawn."""
+        if name is None:
+            return self
+        if name not in self.netlist.variants:
+            known = ", ".join(f'"{item}"' for item in self.netlist.variants) or "none"
+            raise CircuitError(
+                Diagnostic(
+                    code="variant.unknown",
+                    message=f'there is no variant "{name}" in this circuit',
+                    hint=f"The variants are: {known}.",
+                )
+            )
+        return replace(self, netlist=with_variant(self.netlist, name))
+
+    def check(self) -> CheckAnswer:
+        """Does the circuit make sense: order, natural modes, every problem found."""
+        from acsolve.analyses.check import check_answer
+
+        return check_answer(self.netlist, self.warnings)
+
+    def equations(
+        self,
+        source: PairLike | None = None,
+        *,
+        symbolic: bool = False,
+        keep: Iterable[str] = (),
+    ) -> Equations:
+        """The modified nodal equations, driven by a voltage E at a pair or by own sources."""
+        from acsolve.analyses.equations import equations
+
+        drive = None if source is None else self.pair(source)
+        return equations(self.netlist, drive=drive, symbols=_symbols(symbolic, keep))
+
+
+@dataclass(frozen=True, slots=True)
+class Path:
+    """A question put to a circuit; its methods are the answers."""
+
+    circuit: Circuit
+    ask: Ask
+
+    def closed_form(self, *, symbolic: bool = False, keep: Iterable[str] = ()) -> ClosedForm:
+        """The exact closed form, checked against an independent numeric solution.
+
+        Parameters
+        ----------
+        symbolic : ignore all numbers: every part is its own symbol.
+        keep : names of parts and quantities that stay symbols, the others take their values.
+
+        Raises
+        ------
+        EquationError
+            [equations.singular], [equations.undriven]: the question has no answer.
+        """
+        from acsolve.analyses.transfer import closed_form
+
+        return closed_form(self.circuit.netlist, self.ask, _symbols(symbolic, keep))
+
+    def transfer(self, *, symbolic: bool = False, keep: Iterable[str] = ()) -> TransferAnswer:
+        """The closed form with its limits, standard form, poles and zeros."""
+        from acsolve.analyses.transfer import transfer_answer
+
+        return transfer_answer(self.closed_form(symbolic=symbolic, keep=keep))
+
+    def cutoffs(
+        self,
+        level: str | float | None = None,
+        *,
+        reference: ReferenceLike | None = None,
+        symbolic: bool = False,
+        keep: Iterable[str] = (),
+    ) -> CutoffAnswer:
+        """Every frequency where the gain crosses a level below its reference.
+
+        Parameters
+        ----------
+        level : in dB relative to the reference, a number or a text ("-6 dB"); None, or
+            -3 dB, is half power, exactly 1/sqrt(2).
+        reference : "dc", "infinity", "peak" or a stated gain; None chooses by the shape.
+
+        Raises
+        ------
+        AnalysisError
+            [question.no-reference], [question.no-value], [equations.not-rational].
+        """
+        from acsolve.analyses.cutoff import cutoffs
+        from acsolve.text import level_of, reference_of
+
+        formula = None
+        form = self.closed_form(symbolic=symbolic, keep=keep)
+        if not form.symbols and self._formula_is_small(form):
+            formula = self.closed_form(symbolic=True)
+        return cutoffs(
+            form, level=level_of(level), reference=reference_of(reference), formula=formula
+        )
+
+    def _formula_is_small(self, form: ClosedForm) -> bool:
+        """Whether a symbolic closed form of the cutoffs can be had at all."""
+        return form.rational and all(len(part) <= 3 for part in form.coefficients())
+
+    def response(self, hertz: ArrayLike) -> NDArray[np.complex128]:
+        """The complex response at frequencies in hertz; any shape in, the same shape out.
+
+        Raises
+        ------
+        EquationError
+            [question.no-value] a part has no value.
+        """
+        from acsolve.analyses.sweep import response
+
+        return response(self.circuit.netlist, self.ask, hertz)
+
+    def sweep(self, hertz: ArrayLike | str, *, points: str | int | None = None) -> Sweep:
+        """Gain, continuous phase, phase delay and group delay over frequency.
+
+        Parameters
+        ----------
+        hertz : increasing frequencies, or a band as text ("10 Hz .. 1 MHz").
+        points : with a band: "50/decade" (default) or a number of points.
+        """
+        from acsolve.analyses.grid import grid
+        from acsolve.analyses.sweep import sweep
+
+        frequencies = grid(hertz, points) if isinstance(hertz, str) else hertz
+        return sweep(self.circuit.netlist, self.ask, frequencies)
+
+
+def _symbols(symbolic: bool, keep: Iterable[str]) -> Any:
+    from acsolve.equations.exact import Symbols
+
+    return Symbols(symbolic=symbolic, keep=frozenset(keep))
+
+
+def read(path: str | os.PathLike[str], *, variant: str | None = None) -> Circuit:
+    """Read a circuit file; "-" reads standard input.
+
+    Raises
+    ------
+    TextError, CircuitError
+        with every problem of the file that can be found in one go.
+    """
+    from acsolve.text import read as read_text
+
+    reading = read_text(path)
+    return Circuit(reading.netlist, reading.warnings).with_variant(variant)
+
+
+def parse(text: str, *, name: str = "text", variant: str | None = None) -> Circuit:
+    """Read a circuit from a string.
+
+    Examples
+    --------
+    >>> import acsolve
+    >>> circuit = acsolve.parse('''
+    ...     in -- R1 -- out
+    ...     out -- C1 -- gnd
+    ... ''')
+    >>> print(circuit.path("in", "out").closed_form())
+    1/(1 + R1*C1*s)
+    """
+    from acsolve.text import parse as parse_text
+
+    reading = parse_text(text, name=name)
+    return Circuit(reading.netlist, reading.warnings).with_variant(variant)

@@ -1,0 +1,228 @@
+"""The equations over numbers: each entry as a function of s, for vectors or for balls.
+
+Nearly every entry is G + s·C, a polynomial in s; lines and constant-phase parts bring other
+functions. Equal entries are kept once, so that a ladder of equal sections evaluates a handful
+of vectors, and entries without s stay scalars.
+"""
+
+from __future__ import annotations
+
+import cmath
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from math import isfinite
+from typing import Any, TypeAlias
+
+from acsolve.circuit.expression import Expression
+from acsolve.circuit.netlist import Netlist, Part, bindings
+from acsolve.equations.evaluate import (
+    Arithmetic,
+    BallArithmetic,
+    Evaluator,
+    FloatArithmetic,
+    Scalar,
+    polynomial_in_s,
+)
+from acsolve.equations.slope import slope
+from acsolve.equations.system import Functional, System
+from acsolve.errors import Diagnostic, EquationError
+
+Element: TypeAlias = Any  # a number, a vector over the points, or a ball
+
+
+@dataclass(frozen=True, slots=True)
+class PolynomialEntry:
+    """An entry by its coefficients, by rising power of s."""
+
+    coefficients: tuple[Scalar, ...]
+
+    def at(self, s: Element) -> Element:
+        """The entry at s; a scalar where it does not depend on s."""
+        return _horner(self.coefficients, s)
+
+    def slope(self, s: Element) -> Element | None:
+        """The derivative by s, or None where it is zero."""
+        if len(self.coefficients) < 2:
+            return None
+        return _horner([power * item for power, item in enumerate(self.coefficients) if power], s)
+
+
+def _horner(coefficients: Sequence[Scalar], s: Element) -> Element:
+    total = coefficients[-1]
+    for item in coefficients[-2::-1]:
+        total = total * s + item if _nonzero(item) else total * s
+    return total
+
+
+def _nonzero(item: Scalar) -> bool:
+    return not (isinstance(item, float) and item == 0.0)
+
+
+@dataclass(frozen=True, slots=True)
+class FunctionEntry:
+    """An entry that is another function of s, with its derivative."""
+
+    value: Expression
+    derivative: Expression
+    evaluate: Evaluator
+
+    def at(self, s: Element) -> Element:
+        """The entry at s."""
+        return self.evaluate(self.value, s)
+
+    def slope(self, s: Element) -> Element | None:
+        """The derivative by s."""
+        return self.evaluate(self.derivative, s)
+
+
+Entry = PolynomialEntry | FunctionEntry
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Numbers:
+    """A square system A(s)·x = b as numbers: the circuit's laws, then "driven = 1".
+
+    Place k of the pattern is (rows[k], columns[k]); its element is `distinct[which[k]]`.
+    The right-hand side is 1 in the last row and 0 elsewhere.
+    """
+
+    size: int
+    rows: tuple[int, ...]
+    columns: tuple[int, ...]
+    distinct: tuple[Entry, ...]
+    which: tuple[int, ...]
+
+    def at(self, s: Element) -> list[Element]:
+        """The elements at s, by place; equal ones are one object."""
+        values = [entry.at(s) for entry in self.distinct]
+        return [values[item] for item in self.which]
+
+    def slopes(self, s: Element) -> list[Element | None]:
+        """The derivatives by s, by place; None where zero."""
+        values = [entry.slope(s) for entry in self.distinct]
+        return [values[item] for item in self.which]
+
+
+def numbers(
+    system: System,
+    driven: Functional,
+    evaluate: Evaluator,
+    *,
+    places: Sequence[tuple[int, int]] | None = None,
+) -> Numbers:
+    """The square system that a question solves, as numbers.
+
+    Parameters
+    ----------
+    system : n-1 laws in n unknowns.
+    driven : what is set to 1 (the denominator of the ratio asked for).
+    evaluate : over floats or balls.
+    places : the pattern to keep to; None leaves out what is zero at every s.
+
+    Raises
+    ------
+    EquationError
+        [question.no-value] a value is a symbol; [equations.evaluation] one is not finite.
+
+    """
+    rows: list[int] = []
+    columns: list[int] = []
+    which: list[int] = []
+    seen: dict[Entry, int] = {}
+    kept = None if places is None else set(places)
+    for row, column, expression in _expressions(system):
+        if kept is not None and (row, column) not in kept:
+            continue
+        entry = _entry(expression, evaluate, exact=kept is not None)
+        if entry is not None:
+            rows.append(row)
+            columns.append(column)
+            which.append(seen.setdefault(entry, len(seen)))
+    for column, factor in driven.items():
+        rows.append(len(system.laws))
+        columns.append(column)
+        which.append(seen.setdefault(PolynomialEntry((float(factor),)), len(seen)))
+    return Numbers(len(system.unknowns), tuple(rows), tuple(columns), tuple(seen), tuple(which))
+
+
+def _expressions(system: System) -> list[tuple[int, int, Expression]]:
+    return [
+        (row, column, expression)
+        for row, law in enumerate(system.laws)
+        for column, expression in law.entries.items()
+    ]
+
+
+def _entry(expression: Expression, evaluate: Evaluator, *, exact: bool) -> Entry | None:
+    """The entry, or None where floats say that it is zero at every s."""
+    try:
+        coefficients = polynomial_in_s(expression, evaluate)
+    except (ZeroDivisionError, OverflowError) as problem:
+        raise _not_finite(expression) from problem
+    if coefficients is None:
+        return FunctionEntry(expression, slope(expression), evaluate)
+    if exact:
+        return PolynomialEntry(coefficients)
+    while coefficients and coefficients[-1] == 0:
+        coefficients = coefficients[:-1]
+    if not all(isfinite(abs(item)) for item in coefficients):
+        raise _not_finite(expression)
+    return PolynomialEntry(coefficients) if coefficients else None
+
+
+def _not_finite(expression: Expression) -> EquationError:
+    from acsolve.circuit.expression import names
+
+    listed = ", ".join(sorted(names(expression))) or "a part"
+    return EquationError(
+        Diagnostic(
+            code="equations.evaluation",
+            message=f"the values of {listed} give a number that is not finite",
+            hint="Look for a division by zero among these values.",
+        )
+    )
+
+
+def float_values(netlist: Netlist, overrides: Mapping[str, Scalar] | None = None) -> Evaluator:
+    """An evaluator of the circuit's values in double precision, sources as phasors."""
+    return _with_phasors(netlist, FloatArithmetic(), overrides)
+
+
+def ball_values(netlist: Netlist) -> Evaluator:
+    """The same in balls, at the working precision of the moment."""
+    return _with_phasors(netlist, BallArithmetic(), None)
+
+
+def _with_phasors(
+    netlist: Netlist, arithmetic: Arithmetic, overrides: Mapping[str, Scalar] | None
+) -> Evaluator:
+    """An evaluator in which the name of a source with an angle is its complex amplitude."""
+    values = bindings(netlist)
+    plain = Evaluator(values, arithmetic, overrides=overrides)
+    phasors: dict[str, Scalar] = dict(overrides or {})
+    for part in netlist.parts:
+        angle = part.values.get("angle")
+        if angle is None or angle.expression is None:
+            continue
+        amplitude = part.values.get("amplitude")
+        if amplitude is not None and amplitude.expression is not None:
+            degrees = plain(angle.expression)
+            phasors.setdefault(part.name, plain(amplitude.expression) * _turned(degrees))
+    return Evaluator(values, arithmetic, overrides=phasors)
+
+
+def _turned(degrees: Scalar) -> Scalar:
+    """exp(j·degrees), exact at whole quarter turns."""
+    if hasattr(degrees, "exp_pi_i"):
+        return (degrees / 180).exp_pi_i()
+    turn = cmath.rect(1.0, cmath.pi * float(degrees) / 180)
+    return complex(round(turn.real), round(turn.imag)) if float(degrees) % 90 == 0 else turn
+
+
+def takes_branch(evaluate: Evaluator, part: Part) -> bool:
+    """Whether a resistor needs a branch current: where its conductance is not finite."""
+    resistance = evaluate.name(part.name)
+    try:
+        return not isfinite(abs(1 / resistance))
+    except ZeroDivisionError:
+        return True

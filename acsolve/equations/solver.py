@@ -1,0 +1,231 @@
+"""A question prepared for numbers: planned once, then solved at as many points as wanted."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+from math import pi
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from acsolve.algebra.plan import Plan, plan_elimination
+from acsolve.circuit.netlist import Netlist
+from acsolve.equations.numeric import Numbers, ball_values, float_values, numbers
+from acsolve.equations.precise import Local, Precise
+from acsolve.equations.replay import Replayed, replay
+from acsolve.equations.result import Solution, Status, empty, finished
+from acsolve.equations.system import Functional, System
+from acsolve.errors import Diagnostic, EquationError
+
+Array = NDArray[Any]
+
+_ACCURATE = 1e-9  # an estimated relative error above this is solved again
+_RANGE = 2.0**800  # answers (or their inverses) beyond this are solved with powers of two
+_WORTH_A_PLAN = 16  # failing points that pay for a plan of their own (empirical)
+_BYTES = 1 << 25  # working set of one block of points (empirical)
+_BLOCK = (64, 4096)  # points in a block, least and most
+_ZEROS_ENOUGH = 3  # exact zeros in a row after which all failing points count as zero
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Solver:
+    """The prepared question; `print(solver.plan)` shows order and cost."""
+
+    numbers: Numbers
+    plan: Plan
+    observed: tuple[Functional, ...]
+    precise: Precise
+
+    def solve(self, hertz: Array) -> Solution:
+        """Answers at frequencies in hertz, shape (points,), each checked.
+
+        Notes
+        -----
+        Points whose estimated error is above 1e-9, or that are not finite, are solved again:
+        with powers of two carried along, then in an order chosen from their own values, and
+        at last in balls, by a limit where the matrix is singular.
+
+        """
+        hertz = np.asarray(hertz, dtype=float)
+        arrays = empty(len(self.observed), len(hertz))
+        length = _block_length(self.plan)
+        for start in range(0, len(hertz), length):
+            here = np.arange(start, min(start + length, len(hertz)))
+            self._attempt(self.plan, hertz, here, arrays, Status.OK)
+        failing = _failing(arrays)
+        for _ in range(2):
+            if len(failing) < _WORTH_A_PLAN:
+                break
+            plan = _plan(self.numbers, _spread(hertz[failing]))
+            if not plan.undetermined:
+                self._attempt(plan, hertz, failing, arrays, Status.RE_SOLVED)
+            failing = _failing(arrays)
+        self._point_by_point(hertz, failing, arrays)
+        return finished(arrays)
+
+    def near_zero(self) -> list[Local | None]:
+        """H near 0 Hz: its order and leading coefficient, for each functional."""
+        arrays = empty(len(self.observed), 1)
+        self._attempt(self.plan, np.zeros(1), np.arange(1), arrays, Status.OK)
+        if np.all(arrays["status"] == Status.OK) and np.all(arrays["mantissa"] != 0):
+            return [
+                Local(0.0, complex(m), int(e), complex(slope))
+                for m, e, slope in zip(
+                    arrays["mantissa"][:, 0],
+                    arrays["exponent"][:, 0],
+                    arrays["slope"][:, 0],
+                    strict=True,
+                )
+            ]
+        return self.precise.beside(Fraction(0))
+
+    def _attempt(
+        self, plan: Plan, hertz: Array, here: Array, arrays: dict[str, Array], status: Status
+    ) -> None:
+        """Solve the points `here`, the ones out of a double's range with powers of two."""
+        s = 2j * pi * hertz[here]
+        plain = replay(self.numbers, plan, self.observed, s, scaled=False)
+        _keep(arrays, here, plain, status)
+        size = np.abs(plain.mantissa)
+        inside = (size > 1 / _RANGE) & (size < _RANGE) | (plain.error == 0)
+        beyond = np.flatnonzero(~inside.all(axis=0))
+        if len(beyond):
+            there = replay(self.numbers, plan, self.observed, s[beyond], scaled=True)
+            _keep(arrays, here[beyond], there, status)
+
+    def _point_by_point(self, hertz: Array, failing: Array, arrays: dict[str, Array]) -> None:
+        zeros = 0
+        for place in failing:
+            if zeros >= _ZEROS_ENOUGH:
+                locals_: Sequence[Local | None] = [_NOTHING] * len(self.observed)
+            else:
+                locals_ = self.precise.at(Fraction(float(hertz[place])))
+                vanish = all(item is not None and item.vanishes for item in locals_)
+                zeros = zeros + 1 if vanish else 0
+            for row, item in enumerate(locals_):
+                if arrays["status"][row, place] == Status.UNDEFINED:
+                    _keep_local(arrays, row, int(place), item)
+
+
+_NOTHING = Local(0.0, 0j, 0, 0j)
+
+
+def prepare(
+    netlist: Netlist,
+    system: System,
+    *,
+    observed: Sequence[Functional],
+    driven: Functional,
+    hertz: Array,
+) -> Solver:
+    """Evaluate the circuit's values and plan the elimination.
+
+    Parameters
+    ----------
+    netlist, system : the circuit and its equations for the question.
+    observed : what is asked for, each a linear function of the unknowns.
+    driven : what is set to 1.
+    hertz : where the solver will be used; a few of these are the samples of the plan.
+
+    Raises
+    ------
+    EquationError
+        [question.no-value] a value is a symbol; [equations.singular] no frequency
+        determines some unknowns.
+
+    """
+    entries = numbers(system, driven, float_values(netlist))
+    plan = _plan(entries, _spread(np.asarray(hertz, dtype=float)))
+    if plan.undetermined:
+        plan = _plan(entries, _GENERIC)
+    if plan.undetermined:
+        raise _singular(system, plan)
+    places = tuple(zip(entries.rows, entries.columns, strict=True))
+    precise = Precise(
+        plan,
+        lambda: numbers(system, driven, ball_values(netlist), places=places),
+        tuple(observed),
+    )
+    return Solver(entries, plan, tuple(observed), precise)
+
+
+_GENERIC = np.array([0.0137, 13.7, 13.7e3, 13.7e6])  # hertz, where nothing better is known
+_OFF_GRID = (0.9713, 1.0171, 1.0373)  # keeps the samples off frequencies that values round to
+
+
+def _spread(hertz: Array) -> Array:
+    """Low, middle and high of the frequencies, slightly moved."""
+    positive = np.sort(hertz[(hertz > 0) & np.isfinite(hertz)])
+    if not len(positive):
+        return _GENERIC
+    middle = positive[len(positive) // 2]
+    return np.array([positive[0], middle, positive[-1]]) * _OFF_GRID
+
+
+def _plan(entries: Numbers, hertz: Array) -> Plan:
+    s = 2j * pi * hertz
+    with np.errstate(all="ignore"):  # a sample out of range only makes a poorer order
+        values = entries.at(s)
+        samples = np.zeros((len(values), len(s)), dtype=complex)
+        for row, value in zip(samples, values, strict=True):
+            row[:] = value
+    samples[~np.isfinite(samples)] = 0
+    return plan_elimination(entries.rows, entries.columns, samples, size=entries.size)
+
+
+def _singular(system: System, plan: Plan) -> EquationError:
+    unknown = str(system.unknowns[plan.undetermined[0]])
+    return EquationError(
+        Diagnostic(
+            code="equations.singular",
+            message=f"the equations do not determine {unknown} at any frequency",
+            hint="Look for a loop of ideal voltage sources or shorts, a node that nothing "
+            "conducts to, or an op-amp without feedback.",
+        )
+    )
+
+
+def _block_length(plan: Plan) -> int:
+    """Points that are solved together: many, but with a working set that caches like."""
+    least, most = _BLOCK
+    return int(np.clip(_BYTES // (16 * (plan.slots + 3 * plan.size)), least, most))
+
+
+def _failing(arrays: dict[str, Array]) -> Array:
+    return np.flatnonzero((arrays["status"] == Status.UNDEFINED).any(axis=0))
+
+
+def _keep(arrays: dict[str, Array], here: Array, answer: Replayed, status: Status) -> None:
+    """Take over the answers that are accurate and not yet known."""
+    good = (answer.error <= _ACCURATE) & np.isfinite(answer.slope) & np.isfinite(answer.mantissa)
+    good &= (np.abs(answer.mantissa) > 1 / _RANGE) & (np.abs(answer.mantissa) < _RANGE) | (
+        answer.error == 0
+    )
+    rows, columns = np.nonzero(good & (arrays["status"][:, here] == Status.UNDEFINED))
+    places = here[columns]
+    zero = answer.mantissa[rows, columns] == 0
+    for name in ("mantissa", "exponent", "slope", "error"):
+        arrays[name][rows, places] = getattr(answer, name)[rows, columns]
+    arrays["status"][rows, places] = np.where(zero, Status.ZERO, status)
+
+
+def _keep_local(arrays: dict[str, Array], row: int, place: int, item: Local | None) -> None:
+    if item is None:
+        return
+    vanishes = item.vanishes or item.order > 0
+    arrays["mantissa"][row, place] = 0 if vanishes else item.mantissa
+    arrays["exponent"][row, place] = 0 if vanishes else item.exponent
+    arrays["slope"][row, place] = item.slope
+    arrays["error"][row, place] = 0.0
+    arrays["status"][row, place] = (
+        Status.ZERO
+        if vanishes
+        else Status.POLE
+        if item.order < 0
+        else Status.LIMIT
+        if item.singular
+        else Status.RE_SOLVED
+    )
