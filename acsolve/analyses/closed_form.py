@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from acsolve.algebra.ring import Polynomial, cancel, positive, univariate
+from acsolve.algebra.ring import Polynomial, cancel, lowest_part, positive, univariate
 from acsolve.analyses.question import Ask
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import Arithmetic, Evaluator, FloatArithmetic, Scalar
@@ -216,10 +216,8 @@ def normalised(
 ) -> ClosedForm:
     """The closed form of a ratio: common factors removed, sign fixed, roots reduced."""
     ring = basis.ring
-    top, bottom = cancel(ring, numerator, denominator)
-    leading = bottom
-    if basis.s_index is not None:
-        powers = ring.by_power(bottom, basis.s_index)
-        leading = powers[min(powers)]
+    top, bottom = cancel(numerator, denominator)
+    place = basis.s_index
+    leading = bottom if place is None else lowest_part(ring, bottom, place)
     top, bottom = positive(top, bottom, leading)
     return ClosedForm(ask, basis, top, bottom, values)

@@ -36,7 +36,7 @@ Limit = Quotient | Literal["0", "oo"] | None
 
 def quotient(form: ClosedForm, top: Polynomial, bottom: Polynomial) -> Quotient:
     """top/bottom in lowest terms, the bottom's leading sign positive."""
-    first, second = cancel(form.basis.ring, top, bottom)
+    first, second = cancel(top, bottom)
     return Quotient(form, *positive(first, second, second))
 
 

@@ -1,7 +1,8 @@
-"""A dense solution in ball arithmetic: slow, plain, and independent of the other engines."""
+"""Dense solutions, exact or in ball arithmetic: slow, plain, independent of the other engines."""
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import Any
 
 from acsolve.equations.evaluate import Evaluator
@@ -26,17 +27,41 @@ def dense_ratio(
     """
     from flint import acb, acb_mat
 
+    found = _solved(system, observed, driven, lambda entry: evaluate(entry, s), (acb, acb_mat))
+    return acb("nan") if found is None else found
+
+
+def exact_ratio(
+    system: System, observed: Functional, driven: Functional, evaluate: Evaluator, s: Any
+) -> Any | None:
+    """The same over exact rationals, s real; None where the matrix is singular there.
+
+    `evaluate` is over `RationalArithmetic`; python-flint solves by p-adic lifting.
+    """
+    from flint import fmpq, fmpq_mat
+
+    return _solved(system, observed, driven, lambda entry: evaluate(entry, s), (fmpq, fmpq_mat))
+
+
+def _solved(
+    system: System,
+    observed: Functional,
+    driven: Functional,
+    value: Callable[[Any], Any],
+    field: tuple[Any, Any],
+) -> Any | None:
+    number, matrix = field
     size = len(system.unknowns)
-    rows = [[acb(0)] * size for _ in range(size)]
+    rows = [[number(0)] * size for _ in range(size)]
     for row, law in zip(rows, system.laws, strict=False):
         for column, entry in law.entries.items():
-            row[column] = evaluate(entry, s)
+            row[column] = value(entry)
     for column, factor in driven.items():
-        rows[-1][column] = acb(factor)
-    right = [[acb(0)] for _ in range(size)]
-    right[-1][0] = acb(1)
+        rows[-1][column] = number(factor)
+    right = [[number(0)] for _ in range(size)]
+    right[-1][0] = number(1)
     try:
-        solution = acb_mat(rows).solve(acb_mat(right))
+        solution = matrix(rows).solve(matrix(right))
     except ZeroDivisionError:
-        return acb("nan")
-    return sum((solution[column, 0] * factor for column, factor in observed.items()), acb(0))
+        return None
+    return sum((solution[column, 0] * factor for column, factor in observed.items()), number(0))

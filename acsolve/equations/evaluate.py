@@ -21,6 +21,7 @@ from acsolve.circuit.expression import (
     Product,
     Quotient,
     Sum,
+    exact_root,
 )
 from acsolve.circuit.value import Value
 from acsolve.codes import Code
@@ -116,6 +117,50 @@ class BallArithmetic:
         from flint import acb
 
         return (acb(0, 1) * acb.pi() * degrees / 180).exp()
+
+
+class RationalArithmetic:
+    """Exact rationals of python-flint; functions only where their value is rational.
+
+    Raises
+    ------
+    InexactError
+        for pi, and for a function or root that is not rational.
+    """
+
+    def number(self, value: Fraction) -> Scalar:
+        """The number itself."""
+        from flint import fmpq
+
+        return fmpq(value.numerator, value.denominator)
+
+    def pi(self) -> Scalar:
+        """Pi is not rational."""
+        raise InexactError("pi")
+
+    def power(self, base: Scalar, exponent: Scalar) -> Scalar:
+        """base ** exponent for whole exponents and exact square roots."""
+        if exponent.q == 1:
+            return base ** int(exponent.p)
+        if exponent.q == 2:
+            return self.function("sqrt", base) ** int(exponent.p)
+        raise InexactError("a root")
+
+    def function(self, name: str, argument: Scalar) -> Scalar:
+        """The square root of a square; any other function is inexact."""
+        root = exact_root(Fraction(int(argument.p), int(argument.q))) if argument >= 0 else None
+        if name != "sqrt" or root is None:
+            raise InexactError(name)
+        return self.number(root)
+
+    def rotation(self, degrees: Scalar) -> Scalar:
+        """A phasor is not rational."""
+        del degrees
+        raise InexactError("a phasor")
+
+
+class InexactError(ArithmeticError):
+    """A value is not rational."""
 
 
 class Evaluator:

@@ -125,32 +125,39 @@ def numbers(
         [question.no-value] a value is a symbol; [equations.evaluation] one is not finite.
 
     """
-    rows: list[int] = []
-    columns: list[int] = []
-    which: list[int] = []
-    seen: dict[Entry, int] = {}
+    table = _Table(exact=places is not None)
     kept = None if places is None else set(places)
-    for row, column, expression in _expressions(system):
-        if kept is not None and (row, column) not in kept:
-            continue
-        entry = _entry(expression, evaluate, exact=kept is not None)
-        if entry is not None:
-            rows.append(row)
-            columns.append(column)
-            which.append(seen.setdefault(entry, len(seen)))
+    for row, law in enumerate(system.laws):
+        for column, expression in law.entries.items():
+            if kept is None or (row, column) in kept:
+                table.put(row, column, _entry(expression, evaluate, exact=table.exact))
     for column, factor in driven.items():
-        rows.append(len(system.laws))
-        columns.append(column)
-        which.append(seen.setdefault(PolynomialEntry((float(factor),)), len(seen)))
-    return Numbers(len(system.unknowns), tuple(rows), tuple(columns), tuple(seen), tuple(which))
+        table.put(len(system.laws), column, PolynomialEntry((float(factor),)))
+    return table.closed(len(system.unknowns))
 
 
-def _expressions(system: System) -> list[tuple[int, int, Expression]]:
-    return [
-        (row, column, expression)
-        for row, law in enumerate(system.laws)
-        for column, expression in law.entries.items()
-    ]
+class _Table:
+    """Entries being gathered; equal ones once, save balls, which do not compare."""
+
+    def __init__(self, *, exact: bool) -> None:
+        self.exact = exact
+        self.places: list[tuple[int, int, int]] = []
+        self.distinct: list[Entry] = []
+        self.known: dict[Entry, int] = {}
+
+    def put(self, row: int, column: int, entry: Entry | None) -> None:
+        if entry is None:
+            return
+        which = len(self.distinct)
+        if not self.exact:
+            which = self.known.setdefault(entry, which)
+        if which == len(self.distinct):
+            self.distinct.append(entry)
+        self.places.append((row, column, which))
+
+    def closed(self, size: int) -> Numbers:
+        rows, columns, which = zip(*self.places, strict=True)
+        return Numbers(size, rows, columns, tuple(self.distinct), which)
 
 
 def _entry(expression: Expression, evaluate: Evaluator, *, exact: bool) -> Entry | None:

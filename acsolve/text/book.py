@@ -10,7 +10,7 @@ from acsolve.source import Source, Span
 from acsolve.text import limits
 from acsolve.text.problems import Problems
 from acsolve.text.scope import Draft, Given, Named, Scope, Turns
-from acsolve.text.tree import Block, Couple, ValueText
+from acsolve.text.tree import Block, Couple, Item, Path, ValueText
 
 
 class Coupled(NamedTuple):
@@ -69,6 +69,8 @@ class Book:
     coupled: list[Coupled] = field(default_factory=list)
     nodes: Nodes = field(default_factory=Nodes)
     used: set[str] = field(default_factory=set)  # full names of quantities in use
+    joins: list[tuple[Scope, tuple[str, ...]]] = field(default_factory=list)
+    suspects: dict[tuple[str, str], list[tuple[Item, Path, Item]]] = field(default_factory=dict)
     steps: int = 0
 
     def step(self, span: Span, count: int = 1) -> None:

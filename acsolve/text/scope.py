@@ -11,7 +11,7 @@ from typing import NamedTuple
 
 from acsolve.circuit.kind import Kind
 from acsolve.source import Span
-from acsolve.text.tree import Block, KindText, Path, ValueText
+from acsolve.text.tree import Block, KindText, Place, ValueText
 
 Turns = Mapping[str, int]  # index names of the repetitions around a statement
 
@@ -79,7 +79,7 @@ class Scope:
     quantities: dict[str, Named] = field(default_factory=dict)
     values: dict[str, Given] = field(default_factory=dict)
     ports: dict[str, Span] = field(default_factory=dict)
-    reached: list[tuple[str, Path]] = field(default_factory=list)  # dotted nodes, to be checked
+    reached: list[tuple[str, Place]] = field(default_factory=list)  # dotted nodes, to be checked
     inner_used: set[str] = field(default_factory=set)  # arguments that found their value
     depth: int = 0
 

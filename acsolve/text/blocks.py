@@ -1,0 +1,305 @@
+"""Blocks and cascades written out: one scope for each copy."""
+
+from __future__ import annotations
+
+from acsolve.circuit.kind import KINDS, LETTERS
+from acsolve.errors import Label
+from acsolve.text import limits
+from acsolve.text.book import Book
+from acsolve.text.scope import NO_TURNS, Draft, Given, Scope, Turns
+from acsolve.text.spell import node_name, spelled, whole
+from acsolve.text.tree import Argument, Block, GroundWord, Literal, Numbered, Path, Reference
+from acsolve.text.tree import KindText, Place
+from acsolve.text.walk import Walker
+from acsolve.text.words import listed, meant
+
+
+def settle(scope: Scope, book: Book, walker: Walker) -> None:
+    """Find the kind of every draft in a scope, and write out the blocks among them."""
+    book.scopes.append(scope)
+    for draft in scope.drafts.values():
+        word = draft.kind.word if draft.kind else LETTERS.get(draft.local[0])
+        if word is None:
+            _unstated(draft, book)
+        elif word in book.blocks and (draft.kind is not None):
+            if word not in book.refused_blocks:
+                _copies(draft, book.blocks[word], book, walker)
+        elif word in KINDS:
+            draft.definition = KINDS[word]
+            book.parts.append(draft)
+            book.by_name[draft.name] = draft
+            if len(book.parts) > limits.PARTS:
+                _too_many(draft, book)
+        else:
+            _unknown(draft, word, book)
+
+
+def _too_many(draft: Draft, book: Book) -> None:
+    book.problems.refuse(
+        "limit.parts",
+        f"written out, this circuit has more than {limits.PARTS:,} parts",
+        draft.span,
+        hint="Use fewer copies, or smaller ranges.",
+    )
+
+
+def _unstated(draft: Draft, book: Book) -> None:
+    book.problems.add(
+        "kind.unstated",
+        f"the kind of {draft.local} is not stated",
+        draft.span,
+        hint=f"State it: {draft.local} : opamp(…); only names that start with R, L or C "
+        "are resistors, inductors and capacitors without a word.",
+    )
+
+
+def _unknown(draft: Draft, word: str, book: Book) -> None:
+    assert draft.kind is not None, "letters lead to kinds that exist"
+    known = [*KINDS, *book.blocks]
+    if word in book.problems.broken_words:
+        return
+    book.problems.add(
+        "kind.unknown",
+        f"{word} is neither a kind of part nor a block",
+        draft.kind.word_span,
+        hint=meant(word, known, f"Kinds are {listed(KINDS)}."),
+    )
+
+
+# ---------------------------------------------------------------- copies
+
+
+def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
+    """Write out the copies of a block that a draft asks for."""
+    scope, kind = draft.scope, draft.kind
+    assert kind is not None, "a block is always stated"
+    if scope.depth >= limits.NESTING:
+        book.problems.refuse(
+            "limit.nesting",
+            f"blocks stand more than {limits.NESTING} deep",
+            kind.word_span,
+            hint="Write the inner blocks flat.",
+        )
+    book.copies[draft.name] = draft
+    count = _count(draft, book)
+    outer = _pin_nodes(draft, block, book)
+    if count is None or outer is None:
+        return
+    arguments, inner = _arguments(kind, block, scope, draft.kind_turns)
+    pins = [pin for pin, _ in block.head.pins]
+    for number in range(1, count + 1):
+        book.step(kind.span)
+        stem = f"{draft.name}[{number}]" if count > 1 else draft.name
+        nodes = dict(outer)
+        if number > 1:
+            nodes[pins[0]] = f"{draft.name}[{number - 1}].{pins[1]}"
+        if number < count:
+            nodes[pins[1]] = f"{stem}.{pins[1]}"
+        for path, given in inner:
+            local = spelled(path, scope, draft.kind_turns, book)
+            if local is not None:
+                book.overrides.setdefault(f"{stem}.{local}", given)
+        child = Scope(
+            prefix=f"{stem}.",
+            parent=scope.file,
+            block=block,
+            pins=nodes,
+            arguments=arguments,
+            depth=scope.depth + 1,
+        )
+        for pin, node in nodes.items():
+            child.nodes[pin] = draft.span
+            if f"{stem}.{pin}" != node:
+                book.nodes.unite((node, f"{stem}.{pin}"))
+        walker.enter(block.body, child)
+        settle(child, book, walker)
+        if number == 1:
+            _check_arguments(draft, block, child, book)
+
+
+def _count(draft: Draft, book: Book) -> int | None:
+    kind = draft.kind
+    if kind is None or kind.count is None:
+        return 1
+    count = whole(kind.count, draft.scope, draft.kind_turns, book, what="the number of copies")
+    if count is None:
+        return None
+    if count > limits.RANGE:
+        book.problems.refuse(
+            "limit.range",
+            f"{count:,} copies are asked for; the limit is {limits.RANGE:,}",
+            kind.count.span,
+            hint="Use fewer copies.",
+        )
+    if count < 1:
+        book.problems.add(
+            "block.count",
+            f"{count} copies of a block cannot stand in a row",
+            kind.count.span,
+            hint="Write 1 or more, or take the block out with absent.",
+        )
+        return None
+    return count
+
+
+def _pin_nodes(draft: Draft, block: Block, book: Book) -> dict[str, str] | None:
+    """The node outside at each pin of a block, or None once a problem is recorded."""
+    pins = [pin for pin, _ in block.head.pins]
+    kind, nodes = draft.kind, {}
+    assert kind is not None, "a block is always stated"
+    if draft.ends is not None:
+        if len(pins) < 2:
+            book.problems.add(
+                "block.pins",
+                f"{block.head.word} has one pin and cannot stand in a chain",
+                draft.span,
+                hint=f"Write {draft.local} : {block.head.word}({pins[0]} = node) by itself.",
+            )
+            return None
+        nodes.update(zip(pins, draft.ends, strict=False))
+    for argument in kind.arguments:
+        if argument.path is None or argument.path.name not in pins:
+            continue
+        pin = argument.path.name
+        if pin in nodes:
+            book.problems.add(
+                "terminal.twice",
+                f"pin {pin} of {draft.local} is connected twice",
+                argument.span,
+                hint="In a chain a block stands between its first two pins; name the others only.",
+            )
+            return None
+        node = terminal_node(argument, draft.scope, draft.kind_turns, book)
+        if node is None:
+            return None
+        nodes[pin] = node
+    missing = [pin for pin in pins if pin not in nodes]
+    if missing:
+        _missing_pins(draft, kind, missing, pins, book)
+        return None
+    if kind.count is not None and len(pins) < 2:
+        book.problems.add(
+            "block.pins",
+            f"{block.head.word} has one pin and cannot be cascaded",
+            kind.span,
+            hint="A cascade joins pin two of each copy to pin one of the next.",
+        )
+        return None
+    return nodes
+
+
+def _missing_pins(
+    draft: Draft, kind: KindText, missing: list[str], pins: list[str], book: Book
+) -> None:
+    wanted = ", ".join(f"{pin} = node" for pin in pins)
+    book.problems.add(
+        "terminal.missing",
+        f"{draft.local} leaves {listed(missing)} of {kind.word} open",
+        kind.span,
+        hint=f"Place it in a chain, or write {draft.local} : {kind.word}({wanted}).",
+    )
+
+
+def terminal_node(argument: Argument, scope: Scope, turns: Turns, book: Book) -> str | None:
+    """The full name of the node that an argument names."""
+    formula, value = argument.value.formula, argument.value
+    place: Place | None = None
+    match formula:
+        case Reference(path):
+            place = path
+        case GroundWord(span):
+            place = Path("gnd", (), span)
+        case Literal(text, None, False, span):
+            place = Numbered(text, span)
+    if place is None or value.angle or value.tolerance or value.at:
+        book.problems.add(
+            "terminal.node",
+            f"{argument.path.span.text if argument.path else 'a terminal'} needs a node, "
+            f"got {value.span.text}",
+            value.span,
+            hint="Write the name of a node, or gnd.",
+        )
+        return None
+    local = node_name(place, scope, turns, book)
+    if local is None:
+        return None
+    if ("." in local or "~" in local) and not book.flattened:
+        scope.reached.append((scope.prefix + local, place))
+        return scope.prefix + local
+    scope.nodes.setdefault(local, place.span)
+    return scope.node(local)
+
+
+def _arguments(
+    kind: KindText, block: Block, scope: Scope, turns: Turns
+) -> tuple[dict[str, Given], list[tuple[Path, Given]]]:
+    """Values for names of the block, and for names deeper inside."""
+    pins = {pin for pin, _ in block.head.pins}
+    plain: dict[str, Given] = {}
+    inner: list[tuple[Path, Given]] = []
+    for argument in kind.arguments:
+        path = argument.path
+        if path is None or path.name in pins:
+            continue
+        given = Given(argument.value, scope, turns, path.span)
+        if path.name is not None:
+            plain.setdefault(path.name, given)
+        else:
+            inner.append((path, given))
+    return plain, inner
+
+
+def _check_arguments(draft: Draft, block: Block, child: Scope, book: Book) -> None:
+    """Report arguments that name nothing in the block, or name it twice."""
+    assert draft.kind is not None, "a block is always stated"
+    known = [*child.drafts, *child.quantities]
+    pins = [pin for pin, _ in block.head.pins]
+    seen: dict[str, Argument] = {}
+    for argument in draft.kind.arguments:
+        path = argument.path
+        name = path.name if path else None
+        if path is None or (name is not None and name not in known and name not in pins):
+            if name in book.problems.broken_words:
+                continue
+            book.problems.add(
+                "block.argument",
+                f"{block.head.word} has no {path.span.text}"
+                if path
+                else f"an argument of the block {block.head.word} must be named",
+                argument.span,
+                hint=meant(name or "", [*known, *pins], "Write name = value")
+                if name
+                else f"Names inside it are {listed(known[:20])}.",
+            )
+        elif name is not None and name in seen:
+            book.problems.add(
+                "value.twice",
+                f"{name} is given two values",
+                argument.span,
+                hint="Keep one.",
+                labels=(Label(seen[name].span, "first given here"),),
+            )
+        elif name is not None:
+            seen[name] = argument
+
+
+# ---------------------------------------------------------------- blocks that contain themselves
+
+
+def refuse_loops(book: Book) -> None:
+    """Find blocks that contain themselves, before any copy is written out."""
+    uses = {word: dict(_used(block.body)) for word, block in book.blocks.items()}
+    for word, block in book.blocks.items():
+        route = _route(word, uses)
+        if route is None:
+            continue
+        book.refused_blocks.add(word)
+        through = "" if len(route) == 1 else f" through {listed(route[:-1])}"
+        book.problems.add(
+            "block.loop",
+            f"the block {word} contains itself{through}",
+            uses[word][route[0]],
+            hint="A block may hold other blocks, but never a copy of itself.",
+            labels=(Label(block.head.word_span, "the block starts here"),),
+        )
+    _ = NO_TURNS
