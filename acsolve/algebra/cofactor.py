@@ -95,8 +95,27 @@ def _parity(order: Sequence[int]) -> int:
     return sign
 
 
+class OverBudgetError(ArithmeticError):
+    """The expansion would hold more terms at once than allowed."""
+
+
+@dataclass(frozen=True, slots=True)
+class _Rules:
+    """What the expansion may leave out, how much it may hold, and whether signs count."""
+
+    wanted: Collection[int]
+    budget: int | None
+    signed: bool
+
+
 def minors(
-    rows: Sequence[SparseRow], wanted: Collection[int], plan: MinorPlan, *, columns: int
+    rows: Sequence[SparseRow],
+    wanted: Collection[int],
+    plan: MinorPlan,
+    *,
+    columns: int,
+    budget: int | None = None,
+    signed: bool = True,
 ) -> dict[int, Element]:
     """Signed maximal minors: for each wanted column j, (-1)^j · det(matrix without column j).
 
@@ -108,6 +127,13 @@ def minors(
     wanted : the columns j asked for; others are not computed.
     plan : from `plan_minors` on the pattern of these rows.
     columns : n, the number of columns.
+    signed : False adds all products without signs (a permanent): used to count terms.
+    budget : the largest number of terms (`len` of the elements) held at once.
+
+    Raises
+    ------
+    OverBudgetError
+        more terms than the budget; raised before they are all computed.
 
     Returns
     -------
@@ -121,13 +147,14 @@ def minors(
     closing: dict[int, list[int]] = {}
     for column, step in last.items():
         closing.setdefault(step, []).append(column)
+    rules = _Rules(wanted, budget, signed)
     state: dict[tuple[int, int], Element] = {(0, missing[0] if missing else -1): None}
     for step, row in enumerate(plan.order):
-        state = _advance(state, rows[row], closing.get(step, ()), wanted)
+        state = _advance(state, rows[row], closing.get(step, ()), rules)
         if not state:
             return {}
     return {
-        left: _signed(value, plan.parity * (-1 if left % 2 else 1))
+        left: _signed(value, plan.parity * (-1 if left % 2 else 1) if signed else 1)
         for (_, left), value in state.items()
         if left >= 0
     }
@@ -137,21 +164,24 @@ def _advance(
     state: Mapping[tuple[int, int], Element],
     row: SparseRow,
     closing: Sequence[int],
-    wanted: Collection[int],
+    rules: _Rules,
 ) -> dict[tuple[int, int], Element]:
     """Expand every state by one row; a state is (columns used, column left out or -1)."""
     following: dict[tuple[int, int], Element] = {}
+    spent = 0
     entries = sorted(row.items())
     for (mask, left), value in state.items():
         for column, entry in entries:
             bit = 1 << column
             if mask & bit or column == left:
                 continue
-            key = _closed(mask | bit, left, closing, wanted)
+            key = _closed(mask | bit, left, closing, rules.wanted)
             if key is None:
                 continue
             term = entry if value is None else value * entry
-            if (mask >> column).bit_count() % 2:
+            if rules.budget is not None and (spent := spent + len(term)) > rules.budget:
+                raise OverBudgetError
+            if rules.signed and (mask >> column).bit_count() % 2:
                 term = -term
             following[key] = following[key] + term if key in following else term
     return {key: value for key, value in following.items() if value != 0}

@@ -1,81 +1,92 @@
 """Vectors of numbers far outside a double's range: a mantissa and a power of two each.
 
 A ladder in deep attenuation passes 1e-308 long before its answer stops meaning something:
--12,000 dB is a gain of 1e-600 with a perfectly good phase.
+-12,000 dB is a gain of 1e-600 with a perfectly good phase. Powers are taken out only after
+several products, and vectors that were scaled together share one exponent object, so that most
+sums need no alignment.
 """
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Any, TypeAlias
 
 import numpy as np
 from numpy.typing import NDArray
 
-Mantissa: TypeAlias = NDArray[Any]  # complex or float, magnitude about 1
+Vector: TypeAlias = NDArray[Any]  # complex or float
 Exponent: TypeAlias = NDArray[np.int64]
 
 _NOTHING = -(1 << 40)  # exponent of zero: below that of every number that occurs
-_GONE = -2000  # a term this many powers of two below another vanishes beside it
+_LOWEST = -1100  # a power of two that a double cannot hold any more
+_PRODUCTS = 6  # products before the powers are taken out: 1e±50 each is within a double
+_POWERS = np.ldexp(1.0, np.arange(_LOWEST, 1024))
+_POWERS.flags.writeable = False
 
 
 class Scaled:
     """mantissa · 2 ** exponent, element by element; shapes (points,) each."""
 
     __array_ufunc__ = None  # lets `vector * scaled` come here
-    __slots__ = ("exponent", "mantissa")
+    __slots__ = ("exponent", "mantissa", "products")
 
-    def __init__(self, mantissa: Mantissa, exponent: Exponent) -> None:
+    def __init__(self, mantissa: Vector, exponent: Exponent, products: int = 0) -> None:
         self.mantissa = mantissa
         self.exponent = exponent
-
-    @staticmethod
-    def of(values: NDArray[Any]) -> Scaled:
-        """A plain vector, with its powers of two taken out."""
-        return _normal(values, np.zeros(len(values), dtype=np.int64))
+        self.products = products
 
     def __neg__(self) -> Scaled:
-        return Scaled(-self.mantissa, self.exponent)
+        return Scaled(-self.mantissa, self.exponent, self.products)
 
-    def __mul__(self, other: Any) -> Scaled:
-        if isinstance(other, Scaled):
-            return _normal(self.mantissa * other.mantissa, self.exponent + other.exponent)
-        return _normal(self.mantissa * other, self.exponent)
+    def __mul__(self, factor: Any) -> Scaled:
+        """Times a plain vector or number."""
+        if self.products < _PRODUCTS:
+            return Scaled(self.mantissa * factor, self.exponent, self.products + 1)
+        return normal(self.mantissa * factor, self.exponent)
 
     __rmul__ = __mul__
 
     def __add__(self, other: Scaled) -> Scaled:
-        top = np.maximum(self.exponent, other.exponent)
-        return _normal(_lowered(self, top) + _lowered(other, top), top)
+        products = max(self.products, other.products)
+        if self.exponent is other.exponent:
+            return Scaled(self.mantissa + other.mantissa, self.exponent, products)
+        (first, second), top = aligned((self, other))
+        return Scaled(first + second, top, products)
 
     def __sub__(self, other: Scaled) -> Scaled:
         return self + (-other)
 
-    def size(self) -> Scaled:
-        """|real part| + |imaginary part|."""
-        return Scaled(np.abs(self.mantissa.real) + np.abs(self.mantissa.imag), self.exponent)
+    def inverse(self) -> Scaled:
+        """1/self."""
+        return normal(1.0 / self.mantissa, -self.exponent)
 
-    def over(self, other: Scaled) -> NDArray[Any]:
-        """The plain quotient, which must lie in a double's range (0 or infinite beyond)."""
-        shift = np.clip(self.exponent - other.exponent, _GONE, -_GONE)
-        return _shifted(self.mantissa / other.mantissa, shift)
-
-
-def _lowered(item: Scaled, top: Exponent) -> Mantissa:
-    return _shifted(item.mantissa, np.maximum(item.exponent - top, _GONE))
+    def plain(self) -> Vector:
+        """As a plain vector: 0 below a double's range, its largest power of two above."""
+        return self.mantissa * power_of_two(self.exponent)
 
 
-def _shifted(mantissa: Mantissa, exponent: Exponent) -> Mantissa:
-    """mantissa · 2 ** exponent, in place of a complex ldexp."""
-    if np.iscomplexobj(mantissa):
-        parts = np.ascontiguousarray(mantissa).view(float).reshape(-1, 2)
-        return np.ldexp(parts, exponent.astype(np.int32)[:, None]).view(complex).reshape(-1)
-    return np.ldexp(mantissa, exponent.astype(np.int32))
-
-
-def _normal(mantissa: Mantissa, exponent: Exponent) -> Scaled:
-    """The same numbers with magnitudes between 1/2 and 2; zeros get the lowest exponent."""
-    largest = np.maximum(np.abs(mantissa.real), np.abs(mantissa.imag))
-    _, shift = np.frexp(largest)
+def normal(mantissa: Vector, exponent: Exponent) -> Scaled:
+    """The same numbers with magnitudes between 1/2 and 1; zeros get the lowest exponent."""
+    size = np.abs(mantissa)
+    _, shift = np.frexp(size)
     moved = exponent + shift
-    moved[largest == 0] = _NOTHING
-    return Scaled(_shifted(mantissa, -shift), moved)
+    moved[size == 0] = _NOTHING
+    return Scaled(mantissa * power_of_two(-shift), moved)
+
+
+def power_of_two(exponent: NDArray[Any]) -> Vector:
+    """2 ** exponent, 0 below a double's range and its largest power above."""
+    return _POWERS.take(exponent - _LOWEST, mode="clip") * (exponent >= _LOWEST)
+
+
+def aligned(items: Sequence[Scaled]) -> tuple[list[Vector], Exponent]:
+    """Plain vectors on one common exponent, the largest of all at each point."""
+    exponents = {id(item.exponent): item.exponent for item in items}
+    distinct = list(exponents.values())
+    top = distinct[0]
+    if len(distinct) == 1:
+        return [item.mantissa for item in items], top
+    for exponent in distinct[1:]:
+        top = np.maximum(top, exponent)
+    shifts = {key: power_of_two(exponent - top) for key, exponent in exponents.items()}
+    return [item.mantissa * shifts[id(item.exponent)] for item in items], top

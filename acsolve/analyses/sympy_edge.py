@@ -22,6 +22,7 @@ from acsolve.equations.naming import safe_names
 if TYPE_CHECKING:
     from acsolve.analyses.closed_form import ClosedForm
     from acsolve.analyses.equations import Equations
+    from acsolve.analyses.nested import NestedForm
 
 
 def expression_to_sympy(expression: Expression, symbols: Mapping[str, Any], s: Any) -> Any:
@@ -107,3 +108,17 @@ def equations_to_sympy(found: Equations) -> tuple[Any, Any, Any]:
     )
     unknowns = sympy.Matrix([sympy.Symbol(name) for name in found.unknowns])
     return matrix, unknowns, sympy.Matrix([convert(entry) for entry in found.excitation])
+
+
+def nested_to_sympy(form: NestedForm) -> tuple[list[tuple[Any, Any]], Any]:
+    """Steps as (symbol, expression) in order, and the result."""
+    import sympy
+
+    s = sympy.Symbol("s")
+    table = symbol_table(form.symbols)
+    spelling = form.spelled(safe=True)
+    steps = []
+    for step in form.steps:
+        table[step.name] = sympy.Symbol(spelling.name(step.name))
+        steps.append((table[step.name], expression_to_sympy(step.expression, table, s)))
+    return steps, expression_to_sympy(form.result, table, s)

@@ -211,6 +211,10 @@ class Evaluator:
             case Call(function, argument):
                 return arithmetic.function(function, self(argument, s))
 
+    def set(self, name: str, number: Scalar) -> None:
+        """Give a name a number: a step of a nested form, worked out before."""
+        self._known[name] = number
+
     def name(self, name: str) -> Scalar:
         """The number behind a name."""
         known = self._known.get(name)

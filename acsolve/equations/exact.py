@@ -132,12 +132,25 @@ class ExactSystem:
     columns: int
     plan: MinorPlan
 
-    def directions(self, wanted: frozenset[int]) -> Mapping[int, Polynomial]:
-        """The components of the null direction that are asked for; zeros are left out."""
-        return {
-            column: self.basis.ring.reduced(value)
-            for column, value in minors(self.rows, wanted, self.plan, columns=self.columns).items()
-        }
+    def directions(
+        self, wanted: frozenset[int], *, budget: int | None = None
+    ) -> Mapping[int, Polynomial]:
+        """The components of the null direction that are asked for; zeros are left out.
+
+        Raises OverBudgetError where more terms than `budget` would be held at once.
+        """
+        found = minors(self.rows, wanted, self.plan, columns=self.columns, budget=budget)
+        return {column: self.basis.ring.reduced(value) for column, value in found.items()}
+
+    def term_count(self, wanted: frozenset[int]) -> int:
+        """How many terms the expansion multiplies out, by counting with whole numbers.
+
+        Equal to the number of terms of the answer where no signs mix (resistors,
+        inductors and capacitors), a bound on it elsewhere.
+        """
+        counts = [{column: len(entry) for column, entry in row.items()} for row in self.rows]
+        found = minors(counts, wanted, self.plan, columns=self.columns, signed=False)
+        return sum(found.values())
 
 
 def exact_system(system: System, expand: Expander) -> ExactSystem:

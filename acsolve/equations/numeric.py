@@ -8,8 +8,10 @@ of vectors, and entries without s stay scalars.
 from __future__ import annotations
 
 import cmath
+from collections import Counter
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from itertools import accumulate
 from math import isfinite
 from typing import Any, TypeAlias
 
@@ -83,6 +85,7 @@ class Numbers:
     """A square system A(s)·x = b as numbers: the circuit's laws, then "driven = 1".
 
     Place k of the pattern is (rows[k], columns[k]); its element is `distinct[which[k]]`.
+    Row i has the places starts[i] to starts[i + 1] - 1.
     The right-hand side is 1 in the last row and 0 elsewhere.
     """
 
@@ -91,6 +94,7 @@ class Numbers:
     columns: tuple[int, ...]
     distinct: tuple[Entry, ...]
     which: tuple[int, ...]
+    starts: tuple[int, ...]
 
     def at(self, s: Element) -> list[Element]:
         """The elements at s, by place; equal ones are one object."""
@@ -157,7 +161,9 @@ class _Table:
 
     def closed(self, size: int) -> Numbers:
         rows, columns, which = zip(*self.places, strict=True)
-        return Numbers(size, rows, columns, tuple(self.distinct), which)
+        counts = Counter(rows)
+        starts = tuple(accumulate((counts[row] for row in range(size)), initial=0))
+        return Numbers(size, rows, columns, tuple(self.distinct), which, starts)
 
 
 def _entry(expression: Expression, evaluate: Evaluator, *, exact: bool) -> Entry | None:

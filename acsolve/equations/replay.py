@@ -1,26 +1,27 @@
 """One replay of a plan over a block of points, with the error of each answer and its slope.
 
-With A·x = b and Aᵀ·y = c the answer is H = c·x. What is left of the equations, r = A·x - b, moves
-it by y·r, which is both the correction added here and, with the magnitudes that round-off
-can have in r (W. Oettli and W. Prager, Numer. Math. 6, 1964), the estimate of what is left:
+With A·x = b and Aᵀ·y = c the answer is H = c·x. What is left of the equations, r = A·x - b,
+moves it by y·r. That is the correction added here and, with the magnitudes that round-off can
+have in r (W. Oettli and W. Prager, Numer. Math. 6, 1964), the estimate of what is left:
 
-    |error| <= sum_i |y_i| · (|r_i| + few eps · (|A|·|x| + |b|)_i) + |c·x - y·b|
+    t_i = |y_i| · (|r_i| + few eps · (|A|·|x| + |b|)_i),   error ~ 3·sqrt(sum t_i²) + |c·x - y·b|
 
-The same y gives the derivative: dH/ds = -y·(dA/ds)·x.
+The terms add as squares, since round-off in different equations is independent. The same y
+gives the derivative: dH/ds = -y·(dA/ds)·x.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-from acsolve.algebra.lu import Element, Vector, backward, factor, transposed
+from acsolve.algebra.lu import Element, Factors, Vector, backward, factor, transposed
 from acsolve.algebra.plan import Plan
-from acsolve.algebra.scaled import Scaled
+from acsolve.algebra.scaled import Exponent, Scaled, aligned, power_of_two
 from acsolve.equations.numeric import Numbers
 from acsolve.equations.system import Functional
 
@@ -37,15 +38,6 @@ class Replayed:
     error: NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Rows:
-    """By row: A·x - b, its round-off scale, and (dA/ds)·x; None where nothing is."""
-
-    residual: Vector
-    scale: Vector
-    slope: Vector
-
-
 def replay(
     numbers: Numbers,
     plan: Plan,
@@ -55,101 +47,142 @@ def replay(
     scaled: bool,
 ) -> Replayed:
     """Solve at every s; `scaled` carries powers of two, slower, for answers out of range."""
-    one: Element = Scaled.of(np.ones(len(s), dtype=complex)) if scaled else 1.0
+    one: Element = 1.0
+    if scaled:
+        one = Scaled(np.ones(len(s), dtype=complex), np.zeros(len(s), dtype=np.int64))
     # Singular points make infinities and what follows from them; the caller looks for these.
     with np.errstate(all="ignore"):
         entries = numbers.at(s)
         factors = factor(plan, entries, {numbers.size - 1: one})
         x = backward(factors)
-        rows = _rows(numbers, entries, numbers.slopes(s), x, one)
-        answers = [
-            _answer(c, x, transposed(factors, _of(c, one)), rows, numbers.size - 1)
-            for c in observed
-        ]
-        return _stacked(answers, len(s))
+        sums = [_Sums(c, x, factors, scaled=scaled) for c in observed]
+        del factors
+        _visit_rows(numbers, entries, numbers.slopes(s), x, one, sums)
+        return _stacked([item.answer() for item in sums], len(s))
 
 
-def _of(functional: Functional, one: Element) -> Mapping[int, Element]:
-    return {column: one * float(item) for column, item in functional.items()}
+def replay_quick(
+    numbers: Numbers,
+    plan: Plan,
+    observed: Sequence[Functional],
+    s: NDArray[np.complex128],
+    steps: Collection[int],
+) -> NDArray[np.complex128]:
+    """Plain values, shape (observed, points), from the steps they need; nothing is checked."""
+    with np.errstate(all="ignore"):  # as in `replay`
+        factors = factor(plan, numbers.at(s), {numbers.size - 1: 1.0}, kept=steps)
+        x = backward(factors, steps)
+        values = np.zeros((len(observed), len(s)), dtype=complex)
+        for row, c in zip(values, observed, strict=True):
+            for column, item in c.items():
+                if x[column] is not None:
+                    row += x[column] * float(item)
+        return values
 
 
-def _rows(
-    numbers: Numbers, entries: Sequence[Element], slopes: Sequence[Element], x: Vector, one: Element
-) -> _Rows:
-    residual: Vector = [None] * numbers.size
-    scale: Vector = [None] * numbers.size
-    slope: Vector = [None] * numbers.size
-    residual[-1], scale[-1] = -one, _size(one)
-    sizes = [None if item is None else _size(item) for item in x]
-    entry_sizes: dict[int, Element] = {}
-    for row, column, entry, rate in zip(
-        numbers.rows, numbers.columns, entries, slopes, strict=True
-    ):
-        known = x[column]
-        if known is None:
-            continue
-        size = entry_sizes.get(id(entry))
-        if size is None:
-            size = entry_sizes[id(entry)] = _size(entry)
-        _add(residual, row, entry * known)
-        _add(scale, row, size * sizes[column])
-        if rate is not None:
-            _add(slope, row, rate * known)
-    return _Rows(residual, scale, slope)
+class _Sums:
+    """What one observed quantity gathers from the rows, relative to its own size: y/H."""
 
+    def __init__(self, c: Functional, x: Vector, factors: Factors, *, scaled: bool) -> None:
+        self.value: Element = None
+        terms = [x[column] * float(item) for column, item in c.items() if x[column] is not None]
+        if not terms:
+            return
+        self.value = sum(terms[1:], terms[0])
+        inverse = self.value.inverse() if scaled else _inverse(self.value)
+        self.y = transposed(factors, {column: inverse * float(item) for column, item in c.items()})
+        if self.y[-1] is None:
+            self.value = None
+            return
+        other = self.y[-1].plain() if scaled else self.y[-1]
+        self.misfit: Element = abs(1.0 - other)
+        self.correction: Element = 0.0
+        self.rate: Element = 0.0
+        self.squares: Element = 0.0
+        self.shifts: dict[tuple[int, int], Element] = {}
 
-def _add(sums: Vector, place: int, term: Element) -> None:
-    old = sums[place]
-    sums[place] = term if old is None else old + term
-
-
-def _size(item: Element) -> Element:
-    """|real| + |imaginary|: as good as the magnitude in a bound, and much cheaper."""
-    if isinstance(item, Scaled):
-        return item.size()
-    if isinstance(item, np.ndarray):
-        return np.abs(item.real) + np.abs(item.imag)
-    return abs(item)
-
-
-def _answer(
-    c: Functional, x: Vector, y: Vector, rows: _Rows, driven: int
-) -> tuple[Element, Element, Element] | None:
-    """(H, H'/H, relative error), or None where H is zero because nothing reaches it."""
-    direct = _sum(x[column] * float(item) for column, item in c.items() if x[column] is not None)
-    if direct is None or y[driven] is None:
-        return None
-    correction = bound = rate = None
-    for weight, residual, scale, slope in zip(
-        y, rows.residual, rows.scale, rows.slope, strict=True
-    ):
-        if weight is None or scale is None:
-            continue
+    def add(
+        self,
+        row: int,
+        residual: Element,
+        scale: Element,
+        slope: Element | None,
+        exponent: Exponent | None,
+    ) -> None:
+        """Take in one row: A·x - b, its round-off scale and (dA/ds)·x, on one exponent."""
+        weight = None if self.value is None else self.y[row]
+        if weight is None:
+            return
+        if exponent is not None:
+            weight = weight.mantissa * self._shift(weight.exponent, exponent)
         term = weight * residual
-        correction = term if correction is None else correction + term
-        term = _size(weight) * (_size(residual) + _ROUND_OFF * scale)
-        bound = term if bound is None else bound + term
+        self.correction = self.correction + term
+        bound = abs(term) + abs(weight) * scale
+        self.squares = self.squares + bound * bound
         if slope is not None:
-            term = weight * slope
-            rate = term if rate is None else rate + term
-    answer = direct - correction
-    bound = bound + _size(direct - y[driven])
-    return answer, _over(rate, answer, -1.0), _over(bound, _size(answer), 1.0)
+            self.rate = self.rate + weight * slope
+
+    def _shift(self, first: Exponent, second: Exponent) -> Element:
+        """2 ** (first + second); rows that were scaled together share it."""
+        key = (id(first), id(second))
+        known = self.shifts.get(key)
+        if known is None:
+            known = self.shifts[key] = power_of_two(first + second)
+        return known
+
+    def answer(self) -> tuple[Element, Exponent | int, Element, Element] | None:
+        """(mantissa, exponent, H'/H, relative error), or None where nothing reaches it."""
+        if self.value is None:
+            return None
+        error = 3 * np.sqrt(_ROUND_OFF**2 + self.squares) + self.misfit
+        value = self.value * (1.0 - self.correction)
+        if isinstance(value, Scaled):
+            return value.mantissa, value.exponent, -self.rate, error
+        return value, 0, -self.rate, error
 
 
-def _sum(terms: Any) -> Element | None:
-    total = None
-    for term in terms:
-        total = term if total is None else total + term
-    return total
+def _inverse(value: Element) -> Element:
+    return 1.0 / value if isinstance(value, np.ndarray) or value else float("nan")
 
 
-def _over(top: Element | None, bottom: Element, sign: float) -> Element:
-    if top is None:
-        return 0.0
-    if isinstance(top, Scaled):
-        return sign * top.over(bottom)
-    return sign * np.divide(top, bottom)
+def _visit_rows(
+    numbers: Numbers,
+    entries: Sequence[Element],
+    slopes: Sequence[Element | None],
+    x: Vector,
+    one: Element,
+    sums: Sequence[_Sums],
+) -> None:
+    """Give every row's A·x - b, round-off scale and (dA/ds)·x to the sums."""
+    holding: list[Exponent] = []  # exponents are known by identity, so none may go early
+    last = numbers.size - 1
+    for row in range(numbers.size):
+        places = [
+            place
+            for place in range(numbers.starts[row], numbers.starts[row + 1])
+            if x[numbers.columns[place]] is not None
+        ]
+        known = [x[numbers.columns[place]] for place in places]
+        if row == last:
+            known.append(one)
+        if not known:
+            continue
+        exponent = None
+        if isinstance(one, Scaled):
+            known, exponent = aligned(known)
+            holding.append(exponent)
+        residual: Element = -known[-1] if row == last else 0.0
+        scale: Element = abs(residual)
+        slope: Element | None = None
+        for place, item in zip(places, known, strict=False):
+            term = entries[place] * item
+            residual = residual + term
+            scale = scale + abs(term)
+            if slopes[place] is not None:
+                term = slopes[place] * item
+                slope = term if slope is None else slope + term
+        for item in sums:
+            item.add(row, residual, _ROUND_OFF * scale, slope, exponent)
 
 
 def _stacked(answers: Sequence[Any], points: int) -> Replayed:
@@ -157,11 +190,6 @@ def _stacked(answers: Sequence[Any], points: int) -> Replayed:
     mantissa, slope = np.zeros(shape, dtype=complex), np.zeros(shape, dtype=complex)
     exponent, error = np.zeros(shape, dtype=np.int64), np.zeros(shape)
     for place, answer in enumerate(answers):
-        if answer is None:
-            continue
-        value, slope[place], error[place] = answer
-        if isinstance(value, Scaled):
-            mantissa[place], exponent[place] = value.mantissa, value.exponent
-        else:
-            mantissa[place] = value
+        if answer is not None:
+            mantissa[place], exponent[place], slope[place], error[place] = answer
     return Replayed(mantissa, exponent, slope, error)

@@ -15,10 +15,11 @@ class Status(IntEnum):
 
     OK = 0
     RE_SOLVED = 1  # again in another order or in balls, since the first try was inaccurate
-    LIMIT = 2  # the matrix is singular there and the answer has a limit
-    ZERO = 3  # exactly zero: there is a gain of nothing and no phase
-    POLE = 4  # infinite
-    UNDEFINED = 5  # no answer and no limit
+    INEXACT = 2  # estimated error above 1e-9, in a network too large to solve again in balls
+    LIMIT = 3  # the matrix is singular there and the answer has a limit
+    ZERO = 4  # exactly zero: there is a gain of nothing and no phase
+    POLE = 5  # infinite
+    UNDEFINED = 6  # no answer and no limit
 
     def __str__(self) -> str:
         return self.name.lower().replace("_", "-")

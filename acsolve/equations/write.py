@@ -41,7 +41,8 @@ class Spelling:
         return self.names.get(name, name)
 
 
-def _factor_key(leaf: Expression) -> tuple[int, int, object]:
+def factor_key(leaf: Expression) -> tuple[int, int, object]:
+    """Order of factors in a product: numbers, gains, R, L, C, functions, s."""
     match leaf:
         case Name(name):
             last = name.rsplit(".", 1)[-1]
@@ -62,7 +63,7 @@ def polynomial_text(polynomial: Polynomial, basis: Basis, spelling: Spelling) ->
     if polynomial == 0:
         return "0"
     order = sorted(
-        range(len(basis.generators)), key=lambda place: _factor_key(basis.generators[place].leaf)
+        range(len(basis.generators)), key=lambda place: factor_key(basis.generators[place].leaf)
     )
     rank = {place: position for position, place in enumerate(order)}
     texts = [item_text(item.leaf, spelling) for item in basis.generators]
@@ -103,13 +104,14 @@ def _monomial_text(
             halves.append(texts[place])
             power -= Fraction(1, 2)
         if power:
-            whole.append(_power_text(texts[place], power, spelling))
+            whole.append(power_text(texts[place], power, spelling))
     if halves:
         whole.append(f"sqrt({'*'.join(halves)})")
     return "*".join(whole)
 
 
-def _power_text(base: str, power: Fraction, spelling: Spelling) -> str:
+def power_text(base: str, power: Fraction, spelling: Spelling) -> str:
+    """A factor to a power as text."""
     if power == 1:
         return base
     exponent = str(power) if power.denominator == 1 and power > 0 else f"({power})"
