@@ -12,6 +12,8 @@ from fractions import Fraction
 from typing import TYPE_CHECKING, Any, Literal
 
 from acsolve.circuit.netlist import (
+    Band,
+    Level,
     Netlist,
     Pair,
     QuantityName,
@@ -19,6 +21,7 @@ from acsolve.circuit.netlist import (
     with_values,
     with_variant,
 )
+from acsolve.circuit.value import Value
 from acsolve.errors import AnalysisError, CircuitError, Diagnostic
 
 if TYPE_CHECKING:
@@ -29,6 +32,8 @@ if TYPE_CHECKING:
     from acsolve.analyses.closed_form import ClosedForm
     from acsolve.analyses.cutoff import CutoffAnswer
     from acsolve.analyses.equations import Equations
+    from acsolve.analyses.grid import HertzBand
+    from acsolve.analyses.nested import NestedForm
     from acsolve.analyses.question import Ask
     from acsolve.analyses.sweep import Sweep
     from acsolve.analyses.transfer import TransferAnswer
@@ -67,6 +72,11 @@ class Circuit:
     def cautions(self) -> tuple[str, ...]:
         """The safety remarks that the file carries."""
         return self.netlist.cautions
+
+    @property
+    def variant(self) -> str | None:
+        """The name of the variant this circuit is, None as drawn."""
+        return self.netlist.variant
 
     @property
     def variants(self) -> tuple[str, ...]:
@@ -121,6 +131,60 @@ class Circuit:
         from acsolve.analyses.question import impedance_ask
 
         return Path(self, impedance_ask(self.netlist, self.pair(pair)))
+
+    def asked(self, question: Question) -> Path:
+        """The path that an `ask` line of the file speaks of."""
+        if question.kind == "impedance":
+            return self.looking_into(question.target)
+        target = None if question.ammeter else question.target
+        return self.path(
+            question.source, target, quantity=question.quantity, ammeter=question.ammeter
+        )
+
+    def level(self, level: Level) -> Fraction | None:
+        """A level of an `ask` line in decibels, None for half power."""
+        return None if level.decibel is None else self._number(level.decibel)
+
+    def band(self, band: Band) -> tuple[float, float]:
+        """Lowest and highest frequency of an `ask` line's band, in hertz."""
+        return float(self._number(band.low)), float(self._number(band.high))
+
+    def frequencies(
+        self, text: str, *, points: str | int | None = None, linear: bool = False
+    ) -> NDArray[np.float64]:
+        """Frequencies in hertz from a band ("10 Hz .. 1 MHz") or a list ("50 Hz, 60 Hz").
+
+        Parameters
+        ----------
+        points : with a band: "50/decade" (default) or a number of points.
+        linear : even steps instead of even ratios.
+
+        Raises
+        ------
+        AnalysisError
+            [sweep.band], [sweep.points]; codes of the text format for the text.
+        """
+        from acsolve.analyses.grid import HertzBand, explicit
+        from acsolve.text import parse_band, parse_frequencies
+
+        if ".." not in text:
+            found = parse_frequencies(text, netlist=self.netlist)
+            return explicit([self._number(value) for value in found])
+        band = parse_band(text, netlist=self.netlist)
+        edges = HertzBand(self._number(band.low), self._number(band.high))
+        return _grid(edges, points, linear=linear)
+
+    def _number(self, value: Value) -> Fraction:
+        """A value of this circuit as a number: exact where it is stated as one."""
+        from acsolve.circuit.expression import Number
+        from acsolve.circuit.netlist import bindings
+        from acsolve.equations.evaluate import Evaluator, FloatArithmetic
+
+        assert value.expression is not None, "a question states its numbers"
+        if isinstance(value.expression, Number):
+            return value.expression.value
+        evaluate = Evaluator(bindings(self.netlist), FloatArithmetic())
+        return Fraction(float(evaluate(value.expression)))
 
     def pair(self, text: PairLike) -> Pair:
         """A pair of nodes from a node's name, "a,b", a tuple or a port's name."""
@@ -203,28 +267,66 @@ class Path:
     circuit: Circuit
     ask: Ask
 
-    def closed_form(self, *, symbolic: bool = False, keep: Iterable[str] = ()) -> ClosedForm:
+    def closed_form(
+        self, *, symbolic: bool = False, keep: Iterable[str] = (), budget: int | None = None
+    ) -> ClosedForm:
         """The exact closed form, checked against an independent numeric solution.
 
         Parameters
         ----------
         symbolic : ignore all numbers: every part is its own symbol.
         keep : names of parts and quantities that stay symbols, the others take their values.
+        budget : the most terms that may be held at once, default four million.
 
         Raises
         ------
         EquationError
-            [equations.singular], [equations.undriven]: the question has no answer.
+            [equations.singular], [equations.undriven]: the question has no answer;
+            [equations.budget]: too many terms, for which `nested_form` is the answer.
         """
-        from acsolve.analyses.transfer import closed_form
+        from acsolve.analyses.transfer import DEFAULT_BUDGET, closed_form
 
-        return closed_form(self.circuit.netlist, self.ask, _symbols(symbolic, keep))
+        return closed_form(
+            self.circuit.netlist,
+            self.ask,
+            _symbols(symbolic, keep),
+            budget=DEFAULT_BUDGET if budget is None else budget,
+        )
 
-    def transfer(self, *, symbolic: bool = False, keep: Iterable[str] = ()) -> TransferAnswer:
-        """The closed form with its limits, standard form, poles and zeros."""
-        from acsolve.analyses.transfer import transfer_answer
+    def nested_form(self, *, symbolic: bool = False, keep: Iterable[str] = ()) -> NestedForm:
+        """The closed form as named steps, for networks too large to multiply out.
 
-        return transfer_answer(self.closed_form(symbolic=symbolic, keep=keep))
+        Raises
+        ------
+        EquationError
+            [equations.singular]: the question has no answer.
+        """
+        from acsolve.analyses.nested import nested_form
+
+        return nested_form(self.circuit.netlist, self.ask, _symbols(symbolic, keep))
+
+    def transfer(
+        self,
+        *,
+        symbolic: bool = False,
+        keep: Iterable[str] = (),
+        budget: int | None = None,
+        nested: bool = False,
+    ) -> TransferAnswer:
+        """The closed form with its limits, standard form, poles and zeros.
+
+        Expanded where it fits the budget; past it, or with `nested`, as named steps.
+        """
+        from acsolve.analyses.transfer import DEFAULT_BUDGET, form_within, transfer_answer
+
+        form = form_within(
+            self.circuit.netlist,
+            self.ask,
+            _symbols(symbolic, keep),
+            budget=DEFAULT_BUDGET if budget is None else budget,
+            as_nested=nested,
+        )
+        return transfer_answer(form)
 
     def cutoffs(
         self,
@@ -274,19 +376,60 @@ class Path:
 
         return response(self.circuit.netlist, self.ask, hertz)
 
-    def sweep(self, hertz: ArrayLike | str, *, points: str | int | None = None) -> Sweep:
+    def sweep(
+        self, hertz: ArrayLike | str, *, points: str | int | None = None, linear: bool = False
+    ) -> Sweep:
         """Gain, continuous phase, phase delay and group delay over frequency.
 
         Parameters
         ----------
-        hertz : increasing frequencies, or a band as text ("10 Hz .. 1 MHz").
+        hertz : frequencies, or a text: a band ("10 Hz .. 1 MHz") or single ones
+            ("50 Hz, 60 Hz").
         points : with a band: "50/decade" (default) or a number of points.
+        linear : with a band: even steps instead of even ratios.
+
+        Raises
+        ------
+        AnalysisError
+            [sweep.band], [sweep.points].
+        TextError
+            codes of the text format for a text that does not read.
         """
-        from acsolve.analyses.grid import grid
         from acsolve.analyses.sweep import sweep
 
-        frequencies = grid(hertz, points) if isinstance(hertz, str) else hertz
-        return sweep(self.circuit.netlist, self.ask, frequencies)
+        circuit = self.circuit
+        frequencies = (
+            circuit.frequencies(hertz, points=points, linear=linear)
+            if isinstance(hertz, str)
+            else hertz
+        )
+        return sweep(circuit.netlist, self.ask, frequencies)
+
+
+_LINEAR_POINTS = 501  # where an even grid is asked for without a number
+
+
+def _grid(band: HertzBand, points: str | int | None, *, linear: bool) -> NDArray[np.float64]:
+    """A grid over a band; points are a number, or a text such as "50/decade"."""
+    from acsolve.analyses import grid
+
+    text = str(points).replace(" ", "") if points is not None else ""
+    count, sign, word = text.partition("/")
+    wrong = points is not None and not (count.isdecimal() and count.isascii() and len(count) < 9)
+    if wrong or (sign and (word != "decade" or linear)):
+        raise AnalysisError(
+            Diagnostic(
+                code="sweep.points",
+                message=f"{points} is no number of points" + (" of an even grid" * linear),
+                hint="Write 200 for so many in all"
+                + ("." if linear else ", or 50/decade for so many in each decade."),
+            )
+        )
+    if linear:
+        return grid.linear(band, points=int(count or _LINEAR_POINTS))
+    if sign:
+        return grid.logarithmic(band, per_decade=int(count))
+    return grid.logarithmic(band, points=int(count) if count else None)
 
 
 def _symbols(symbolic: bool, keep: Iterable[str]) -> Any:

@@ -101,11 +101,10 @@ class OverBudgetError(ArithmeticError):
 
 @dataclass(frozen=True, slots=True)
 class _Rules:
-    """What the expansion may leave out, how much it may hold, and whether signs count."""
+    """What the expansion may leave out, and how much it may hold."""
 
     wanted: Collection[int]
     budget: int | None
-    signed: bool
 
 
 def minors(
@@ -115,7 +114,6 @@ def minors(
     *,
     columns: int,
     budget: int | None = None,
-    signed: bool = True,
 ) -> dict[int, Element]:
     """Signed maximal minors: for each wanted column j, (-1)^j · det(matrix without column j).
 
@@ -127,7 +125,6 @@ def minors(
     wanted : the columns j asked for; others are not computed.
     plan : from `plan_minors` on the pattern of these rows.
     columns : n, the number of columns.
-    signed : False adds all products without signs (a permanent): used to count terms.
     budget : the largest number of terms (`len` of the elements) held at once.
 
     Raises
@@ -147,14 +144,14 @@ def minors(
     closing: dict[int, list[int]] = {}
     for column, step in last.items():
         closing.setdefault(step, []).append(column)
-    rules = _Rules(wanted, budget, signed)
+    rules = _Rules(wanted, budget)
     state: dict[tuple[int, int], Element] = {(0, missing[0] if missing else -1): None}
     for step, row in enumerate(plan.order):
         state = _advance(state, rows[row], closing.get(step, ()), rules)
         if not state:
             return {}
     return {
-        left: _signed(value, plan.parity * (-1 if left % 2 else 1) if signed else 1)
+        left: _signed(value, plan.parity * (-1 if left % 2 else 1))
         for (_, left), value in state.items()
         if left >= 0
     }
@@ -181,7 +178,7 @@ def _advance(
             term = entry if value is None else value * entry
             if rules.budget is not None and (spent := spent + len(term)) > rules.budget:
                 raise OverBudgetError
-            if rules.signed and (mask >> column).bit_count() % 2:
+            if (mask >> column).bit_count() % 2:
                 term = -term
             following[key] = following[key] + term if key in following else term
     return {key: value for key, value in following.items() if value != 0}

@@ -69,9 +69,10 @@ class ClosedForm:
     def coefficients(self) -> tuple[list[Polynomial], list[Polynomial]]:
         """Coefficients of numerator and denominator by rising power of s."""
         assert self.rational, "asked for polynomials in s of a form that has none"
-        return self._by_power(self.numerator), self._by_power(self.denominator)
+        return self.by_power(self.numerator), self.by_power(self.denominator)
 
-    def _by_power(self, polynomial: Polynomial) -> list[Polynomial]:
+    def by_power(self, polynomial: Polynomial) -> list[Polynomial]:
+        """Coefficients of one polynomial by rising power of s."""
         place = self.basis.s_index
         if place is None:
             return [polynomial]
@@ -109,7 +110,7 @@ class ClosedForm:
         if not self.rational:
             return polynomial_text(polynomial, self.basis, spelling)
         pieces = []
-        for power, coefficient in enumerate(self._by_power(polynomial)):
+        for power, coefficient in enumerate(self.by_power(polynomial)):
             if coefficient != 0:
                 text = polynomial_text(coefficient, self.basis, spelling)
                 pieces.append(_with_power(text, power, spelling))

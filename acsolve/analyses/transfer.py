@@ -4,14 +4,16 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 
+from acsolve.algebra.cofactor import OverBudgetError
 from acsolve.algebra.ring import Polynomial
 from acsolve.analyses.closed_form import ClosedForm, normalised
+from acsolve.analyses.nested import NestedForm, nested_form
 from acsolve.analyses.poles import PolesZeros, poles_zeros
 from acsolve.analyses.question import Ask, refuse_unreferenced
 from acsolve.analyses.shape import Limit, StandardForm, limits, standard_form
 from acsolve.analyses.verify import check_closed_form
 from acsolve.circuit.netlist import Netlist, bindings
-from acsolve.equations.exact import Basis, Expander, Symbols, apply, exact_system
+from acsolve.equations.exact import Basis, ExactSystem, Expander, Symbols, apply, exact_system
 from acsolve.errors import Diagnostic, EquationError
 
 
@@ -24,20 +26,33 @@ class Ratio:
     driven: Polynomial
 
 
-def ratio(netlist: Netlist, ask: Ask, symbols: Symbols) -> Ratio:
+DEFAULT_BUDGET = 4_000_000  # terms at once: about 1 GB and a few seconds (measured)
+
+
+def ratio(
+    netlist: Netlist, ask: Ask, symbols: Symbols, *, budget: int | None = DEFAULT_BUDGET
+) -> Ratio:
     """Numerator and denominator of an answer as cofactor sums.
 
     Raises
     ------
     EquationError
         [equations.singular] the network has no unique solution; [equations.undriven] the
-        drive cannot act (an ideal source held by the network, say).
+        drive cannot act (an ideal source held by the network, say); [equations.budget]
+        the expansion would hold more terms at once than `budget`.
     """
     system = ask.system(netlist)
     refuse_unreferenced(system, ask)
     observed, driven = ask.observed(system), ask.driven(system)
     exact = exact_system(system, Expander(bindings(netlist), symbols))
-    directions = exact.directions(frozenset(observed) | frozenset(driven))
+    if budget is not None and _each_its_own_symbol(netlist, exact):
+        count = exact.coefficient_sum(driven) + exact.coefficient_sum(observed)
+        if count > budget:
+            raise _over_budget(f"{count:,}" if count < 10**9 else f"{count:.3g}", budget)
+    try:
+        directions = exact.directions(frozenset(observed) | frozenset(driven), budget=budget)
+    except OverBudgetError:
+        raise _over_budget("more", budget or 0) from None
     ring = exact.basis.ring
     top, bottom = (apply(part, directions, ring) for part in (observed, driven))
     if bottom == 0:
@@ -45,7 +60,13 @@ def ratio(netlist: Netlist, ask: Ask, symbols: Symbols) -> Ratio:
     return Ratio(exact.basis, top, bottom)
 
 
-def closed_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> ClosedForm:
+def closed_form(
+    netlist: Netlist,
+    ask: Ask,
+    symbols: Symbols | None = None,
+    *,
+    budget: int | None = DEFAULT_BUDGET,
+) -> ClosedForm:
     """The exact closed form that answers a question, checked by an independent solution.
 
     Parameters
@@ -53,6 +74,7 @@ def closed_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> C
     netlist : the circuit.
     ask : the question.
     symbols : which values stay symbols; by default only those without a value.
+    budget : the most terms that may be held at once; above it `nested_form` answers.
 
     Raises
     ------
@@ -64,9 +86,34 @@ def closed_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> C
     Cramer's rule with shared minors over integer polynomials (`acsolve.algebra.cofactor`).
     """
     chosen = symbols or Symbols()
-    found = ratio(netlist, ask, chosen)
+    found = ratio(netlist, ask, chosen, budget=budget)
     form = normalised(ask, found.basis, found.observed, found.driven, bindings(netlist))
     return replace(form, checked=check_closed_form(netlist, form))
+
+
+_PASSIVE = frozenset(
+    {"resistor", "inductor", "capacitor", "ammeter", "voltage_source", "current_source"}
+)
+
+
+def _each_its_own_symbol(netlist: Netlist, exact: ExactSystem) -> bool:
+    """Whether the terms of the answer can be counted: plain parts, each its own symbol."""
+    if netlist.couplings or any(part.kind not in _PASSIVE for part in netlist.parts):
+        return False
+    valued = [part for part in netlist.parts if "value" in part.values]
+    free = set(exact.basis.free_names)
+    return all(len(part.values) == 1 and part.name in free for part in valued)
+
+
+def _over_budget(size: str, budget: int) -> EquationError:
+    return EquationError(
+        Diagnostic(
+            code="equations.budget",
+            message=f"multiplied out, the answer has {size} terms, over the budget of {budget:,}",
+            hint="Ask for the nested form (--nested), keep fewer symbols (--keep), or raise "
+            "the budget (--budget).",
+        )
+    )
 
 
 def _no_answer(ask: Ask, *, singular: bool) -> EquationError:
@@ -102,7 +149,7 @@ def _no_answer(ask: Ask, *, singular: bool) -> EquationError:
 class TransferAnswer:
     """A checked closed form with what a reader asks of it next."""
 
-    form: ClosedForm
+    form: ClosedForm | NestedForm
     at_zero: Limit
     at_infinity: Limit
     standard_form: StandardForm | None
@@ -111,13 +158,28 @@ class TransferAnswer:
     @property
     def order(self) -> int | None:
         """The degree of the denominator in s, or of the numerator where that is larger."""
-        if not self.form.rational:
+        if not isinstance(self.form, ClosedForm) or not self.form.rational:
             return None
         top, bottom = self.form.coefficients()
         return max(len(top), len(bottom)) - 1
 
 
-def transfer_answer(form: ClosedForm) -> TransferAnswer:
-    """Limits, standard form, poles and zeros of a closed form."""
+def transfer_answer(form: ClosedForm | NestedForm) -> TransferAnswer:
+    """Limits, standard form, poles and zeros of a closed form (none of a nested one)."""
+    if isinstance(form, NestedForm):
+        return TransferAnswer(form, None, None, None, None)
     at_zero, at_infinity = limits(form)
     return TransferAnswer(form, at_zero, at_infinity, standard_form(form), poles_zeros(form))
+
+
+def form_within(
+    netlist: Netlist, ask: Ask, symbols: Symbols, *, budget: int | None, as_nested: bool
+) -> ClosedForm | NestedForm:
+    """The expanded form where it fits the budget, else, or where asked for, the nested one."""
+    if not as_nested:
+        try:
+            return closed_form(netlist, ask, symbols, budget=budget)
+        except EquationError as error:
+            if error.code != "equations.budget":
+                raise
+    return nested_form(netlist, ask, symbols)

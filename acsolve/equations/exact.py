@@ -142,15 +142,23 @@ class ExactSystem:
         found = minors(self.rows, wanted, self.plan, columns=self.columns, budget=budget)
         return {column: self.basis.ring.reduced(value) for column, value in found.items()}
 
-    def term_count(self, wanted: frozenset[int]) -> int:
-        """How many terms the expansion multiplies out, by counting with whole numbers.
+    def coefficient_sum(self, functional: Functional) -> int:
+        """The sum of the coefficients of an answer's part, without multiplying it out.
 
-        Equal to the number of terms of the answer where no signs mix (resistors,
-        inductors and capacitors), a bound on it elsewhere.
+        The determinant with every generator at one, over whole numbers. Where all
+        coefficients are one (resistors, inductors and capacitors, each its own symbol: the
+        terms are the spanning trees) it is the number of terms.
         """
-        counts = [{column: len(entry) for column, entry in row.items()} for row in self.rows]
-        found = minors(counts, wanted, self.plan, columns=self.columns, signed=False)
-        return sum(found.values())
+        from flint import fmpz_mat
+
+        ones = [1] * max(1, len(self.basis.ring.names))
+        square = [[0] * self.columns for _ in range(self.columns)]
+        for row, entries in zip(square, self.rows, strict=False):
+            for column, entry in entries.items():
+                row[column] = int(entry(*ones))
+        for column, factor in functional.items():
+            square[-1][column] = factor
+        return abs(int(fmpz_mat(square).det()))
 
 
 def exact_system(system: System, expand: Expander) -> ExactSystem:

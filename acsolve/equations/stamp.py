@@ -24,6 +24,7 @@ from acsolve.circuit.expression import (
     S,
     add,
     call,
+    depends_on_s,
     divide,
     multiply,
     negate,
@@ -89,6 +90,14 @@ def _needed(part: Part, attribute: str) -> Expression:
     expression = value(part, attribute)
     assert expression is not None, f"{part.name} was built without its {attribute}"
     return expression
+
+
+def _in_s(part: Part, attribute: str) -> Expression:
+    """The value itself where it varies with s: a name stands for what does not."""
+    expression = part.values[attribute].expression
+    if expression is not None and depends_on_s(expression):
+        return expression
+    return _needed(part, attribute)
 
 
 def _at(part: Part, attribute: str) -> Expression:
@@ -181,12 +190,12 @@ def _capacitor(board: Board, part: Part) -> None:
 
 @_stamp("impedance")
 def _impedance(board: Board, part: Part) -> None:
-    _series(board, part, part.nodes, (_needed(part, "value"), ONE))
+    _series(board, part, part.nodes, (_in_s(part, "value"), ONE))
 
 
 @_stamp("admittance")
 def _admittance(board: Board, part: Part) -> None:
-    conductance(board, part.nodes, _needed(part, "value"))
+    conductance(board, part.nodes, _in_s(part, "value"))
 
 
 @_stamp("constant_phase")
