@@ -23,6 +23,7 @@ from acsolve.circuit.netlist import (
 )
 from acsolve.circuit.value import Value
 from acsolve.errors import AnalysisError, CircuitError, Diagnostic
+from acsolve.given import level_of, pair_of, reference_of, value_for
 
 if TYPE_CHECKING:
     import numpy as np
@@ -188,12 +189,7 @@ class Circuit:
 
     def pair(self, text: PairLike) -> Pair:
         """A pair of nodes from a node's name, "a,b", a tuple or a port's name."""
-        from acsolve.text import parse_pair
-
-        if isinstance(text, tuple):
-            first, second = text
-            return self.netlist.resolve(first), self.netlist.resolve(second)
-        return parse_pair(text, self.netlist)
+        return pair_of(text, self.netlist)
 
     def _ammeter_pair(self, name: str | None) -> Pair:
         part = self.netlist.part(name or "")
@@ -219,8 +215,6 @@ class Circuit:
             [question.unknown-name] no such part or quantity; codes of the text format for
             a value that does not read or has the wrong unit.
         """
-        from acsolve.text import value_for
-
         given = {**(values or {}), **named}
         changed = {name: value_for(name, value, self.netlist) for name, value in given.items()}
         return replace(self, netlist=with_values(self.netlist, changed))
@@ -350,7 +344,6 @@ class Path:
             [question.no-reference], [question.no-value], [equations.not-rational].
         """
         from acsolve.analyses.cutoff import cutoffs
-        from acsolve.text import level_of, reference_of
 
         formula = None
         form = self.closed_form(symbolic=symbolic, keep=keep)

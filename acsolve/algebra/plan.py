@@ -1,11 +1,11 @@
 """The order in which a sparse matrix is eliminated, worked out once and replayed often.
 
 Pivots are chosen for little fill (H. M. Markowitz, "The elimination form of the inverse and
-its application to linear programming", Management Science 3, 1957), among few lines only (Z. Zlatev, "On some pivotal
-strategies in Gaussian elimination by sparse technique", SIAM J. Numer. Anal. 17, 1980), and
-never where the number at that place is small against its row and column, or left over from a
-cancellation, at one of a few sample points. A plan is pure data: it holds no number of the
-matrix and serves every field.
+its application to linear programming", Management Science 3, 1957), among few lines only
+(Z. Zlatev, "On some pivotal strategies in Gaussian elimination by sparse technique", SIAM J.
+Numer. Anal. 17, 1980), and never where the number at that place is small against its row and
+column, or left over from a cancellation, at one of a few sample points. A plan is pure data: it
+holds no number of the matrix and serves every field.
 """
 
 from __future__ import annotations
@@ -197,9 +197,7 @@ class _Elimination:
             heappush(self.heap, item)
         return None if best is None else (best[2], best[3])
 
-    def _best_in(
-        self, kind: int, at: int, threshold: float
-    ) -> tuple[int, float, int, int] | None:
+    def _best_in(self, kind: int, at: int, threshold: float) -> tuple[int, float, int, int] | None:
         """(cost, -relative size, row, column) of a line's best pivot."""
         line, across = self.lines[kind][at], self.lines[1 - kind]
         best: tuple[int, float, int, int] | None = None
@@ -215,9 +213,7 @@ class _Elimination:
                 best = candidate if best is None else min(best, candidate)
         return best
 
-    def _relative_size(
-        self, slot: int, here: list[float] | None, there: dict[int, int]
-    ) -> float:
+    def _relative_size(self, slot: int, here: list[float] | None, there: dict[int, int]) -> float:
         """Least size over the samples against its row or column, 1 for a single, 0 for zero."""
         sizes = [abs(value) for value in self.values[slot]]
         live = [

@@ -54,6 +54,11 @@ class CutoffLevel:
 HALF_POWER = CutoffLevel()
 
 
+def cutoff_level(decibel: Fraction) -> CutoffLevel:
+    """A level in decibels; -3 dB is how the trade says half power."""
+    return HALF_POWER if decibel == -3 else CutoffLevel(decibel)
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Reference:
     """What the level counts from: where, the gain there, and the frequency of a peak."""

@@ -93,7 +93,9 @@ def explicit(frequencies: list[Fraction]) -> NDArray[np.float64]:
     for item in frequencies:
         if item < 0:
             raise _refuse(
-                "sweep.band", f"a frequency is negative: {_hertz(item)}", "Frequencies start at 0 Hz."
+                "sweep.band",
+                f"a frequency is negative: {_hertz(item)}",
+                "Frequencies start at 0 Hz.",
             )
     return np.array([float(item) for item in frequencies])
 
@@ -109,9 +111,7 @@ def _per_decade(band: HertzBand, per_decade: int) -> NDArray[np.float64]:
     return _with_edges(grid, band)
 
 
-def _put_decades(
-    grid: NDArray[np.float64], low: Fraction, decades: int, spacing: Fraction
-) -> None:
+def _put_decades(grid: NDArray[np.float64], low: Fraction, decades: int, spacing: Fraction) -> None:
     """Write the whole decades above the low edge as exactly rounded numbers."""
     for decade in range(decades + 1):
         place = decade * spacing

@@ -152,11 +152,13 @@ def _against_asymptote(known: Track, start: Local) -> Array:
     log_k = np.log(np.abs(start.mantissa)) + start.exponent * np.log(2)
     real = known.log_gain - log_k - start.order * np.log(known.omega)
     imag = known.angle - np.angle(start.mantissa) - start.order * np.pi / 2
-    return real + 1j * _wrapped(imag)
+    ratio: Array = real + 1j * _wrapped(imag)
+    return ratio
 
 
 def _wrapped(angle: Array) -> Array:
-    return (angle + np.pi) % (2 * np.pi) - np.pi
+    wrapped: Array = (angle + np.pi) % (2 * np.pi) - np.pi
+    return wrapped
 
 
 def _steps(known: Track, *, near_limit: bool) -> Steps:
@@ -181,9 +183,9 @@ def _steps(known: Track, *, near_limit: bool) -> Steps:
 
 
 def _misfit(expected: Array, change: Array) -> Array:
-    return np.maximum(
-        np.abs(expected.real - change.real), np.abs(_wrapped(expected.imag - change.imag))
-    )
+    turned = np.abs(_wrapped(expected.imag - change.imag))
+    misfit: Array = np.maximum(np.abs(expected.real - change.real), turned)
+    return misfit
 
 
 def _settle_on_axis(
@@ -195,6 +197,7 @@ def _settle_on_axis(
         return
     s_a, s_b = 1j * known.omega[open_], 1j * known.omega[open_ + 1]
     slope_a, slope_b = known.slope[open_], known.slope[open_ + 1]
+    place: Array
     with np.errstate(all="ignore"):  # equal slopes: no singular point, not a number
         order = (s_a - s_b) / (1 / slope_a - 1 / slope_b)
         place = s_a - order / slope_a
@@ -225,7 +228,5 @@ def _divisions(known: Track, steps: Steps) -> Array:
     extra = [place.imag + shift * beside for shift in (-1.0, 0.0, 1.0)]
     if not len(middle):
         return middle
-    points = [middle]
-    for item in extra:
-        points.append(item[(item > low) & (item < high)])
-    return np.unique(np.concatenate(points))
+    inside = [item[(item > low) & (item < high)] for item in extra]
+    return np.unique(np.concatenate([middle, *inside]))

@@ -81,15 +81,16 @@ def sweep(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> Sweep:
     solver = solver_for(netlist, ask, ordered)
     solution = solver.solve(ordered)
     phase, settled = _phase(netlist, solver, solution, ordered)
-    columns = _columns(ordered, solution, phase)
-    arrays = [_frozen(column[back].reshape(shape)) for column in columns]
-    return Sweep(_frozen(wanted.reshape(shape)), *arrays, settled=settled)
+    columns = {"hertz": ordered, **_columns(ordered, solution, phase)}
+    arrays = {name: _frozen(column[back].reshape(shape)) for name, column in columns.items()}
+    return Sweep(settled=settled, **arrays)
 
 
 def response(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> NDArray[np.complex128]:
     """The complex response alone; the shape of `hertz` is kept."""
     wanted, shape = _checked(hertz)
-    return solver_for(netlist, ask, wanted).solve(wanted).value()[0].reshape(shape)
+    value = solver_for(netlist, ask, wanted).solve(wanted).value()
+    return np.asarray(value[0].reshape(shape))
 
 
 def responses(
@@ -101,7 +102,7 @@ def responses(
     """
     wanted, shape = _checked(hertz)
     value = solver_for(netlist, ask, wanted, targets=targets).solve(wanted).value()
-    return value.reshape(len(targets), *shape)
+    return np.asarray(value.reshape(len(targets), *shape))
 
 
 def solver_for(
@@ -164,7 +165,8 @@ def _at_zero(start: Local) -> float:
     return float(np.angle(start.mantissa) + start.order * np.pi / 2)
 
 
-def _columns(hertz: Array, solution: Solution, phase: Array) -> tuple[Array, ...]:
+def _columns(hertz: Array, solution: Solution, phase: Array) -> dict[str, Array]:
+    """The arrays of a `Sweep`, by name, at ascending frequencies."""
     omega = 2 * np.pi * hertz
     usable = solution.status[0] < Status.ZERO
     group = np.where(usable, 0.0 - solution.slope[0].real, np.nan)
@@ -173,19 +175,17 @@ def _columns(hertz: Array, solution: Solution, phase: Array) -> tuple[Array, ...
     still = (hertz == 0) & (phase == 0)
     delay[still] = group[still]
     delay[~np.isfinite(delay)] = np.nan
-    return (
-        solution.value()[0],
-        solution.gain_db()[0],
-        np.degrees(phase),
-        delay,
-        group,
-        solution.status[0].copy(),
-        solution.error[0].copy(),
-    )
+    return {
+        "value": solution.value()[0],
+        "gain_db": solution.gain_db()[0],
+        "phase_deg": np.degrees(phase),
+        "phase_delay_s": delay,
+        "group_delay_s": group,
+        "status": solution.status[0],
+        "error": solution.error[0],
+    }
 
 
 def order_at_zero(solver: Solver) -> list[float | None]:
     """Order of the zero (positive) or pole (negative) of each answer at 0 Hz."""
     return [None if item is None else item.order for item in solver.near_zero()]
-
-

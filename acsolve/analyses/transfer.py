@@ -13,7 +13,15 @@ from acsolve.analyses.question import Ask, refuse_unreferenced
 from acsolve.analyses.shape import Limit, StandardForm, limits, standard_form
 from acsolve.analyses.verify import check_closed_form
 from acsolve.circuit.netlist import Netlist, bindings
-from acsolve.equations.exact import Basis, ExactSystem, Expander, Symbols, apply, exact_system
+from acsolve.equations.exact import (
+    Basis,
+    ExactSystem,
+    Expander,
+    Symbols,
+    apply,
+    exact_system,
+    with_symbols,
+)
 from acsolve.errors import Diagnostic, EquationError
 
 
@@ -41,7 +49,7 @@ def ratio(
         drive cannot act (an ideal source held by the network, say); [equations.budget]
         the expansion would hold more terms at once than `budget`.
     """
-    system = ask.system(netlist)
+    system = ask.system(with_symbols(netlist, symbols))
     refuse_unreferenced(system, ask)
     observed, driven = ask.observed(system), ask.driven(system)
     exact = exact_system(system, Expander(bindings(netlist), symbols))
@@ -88,7 +96,7 @@ def closed_form(
     chosen = symbols or Symbols()
     found = ratio(netlist, ask, chosen, budget=budget)
     form = normalised(ask, found.basis, found.observed, found.driven, bindings(netlist))
-    return replace(form, checked=check_closed_form(netlist, form))
+    return replace(form, checked=check_closed_form(with_symbols(netlist, chosen), form))
 
 
 _PASSIVE = frozenset(

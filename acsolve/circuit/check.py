@@ -22,6 +22,7 @@ from acsolve.circuit.check_signals import (
     feedback_findings,
     floating_findings,
     floating_in_question,
+    loose_senses,
     no_reference_finding,
     started,
     unreachable_finding,
@@ -247,10 +248,12 @@ def _against(
     for cut in current_cuts(netlist, held=holding, drive=drive, apart=apart):
         if cut.independent or ways.leads(cut.nodes, target):
             yield _cut_off(cut, "error")
-    observes_voltage = not any(branch.role == "short" for branch in extra)
-    held = held_nodes(netlist, stiff) if observes_voltage else frozenset()
-    acting = reach(netlist, joined=[*alone, *holding], held=held)
-    yield from floating_in_question(netlist, groups, acting, target)
+    loose = loose_senses(netlist, groups)
+    if loose:
+        observes_voltage = not any(branch.role == "short" for branch in extra)
+        held = held_nodes(netlist, stiff) if observes_voltage else frozenset()
+        acting = reach(netlist, joined=[*alone, *holding], held=held)
+        yield from floating_in_question(loose, groups, acting, target)
     undefined = tuple(no_reference_finding(groups, target))
     yield from undefined
     if not undefined and source != target:

@@ -235,6 +235,7 @@ def driven_loop_findings(netlist: Netlist, extra: Collection[Branch]) -> Iterato
 def _prescribed(branch: Branch, others: str, parts: list[Part]) -> Diagnostic:
     pair = pair_text((branch.first, branch.second))
     if branch.role == "drive":
+        pair = pair_text((branch.second, branch.first))  # its current enters the pair's first node
         message = f"the voltage at {pair} cannot be driven: it is set by {others} already"
         hint = "Drive a pair whose voltage is free, or drive a current into this one."
     else:
@@ -248,7 +249,7 @@ def held_nodes(netlist: Netlist, extra: Iterable[Branch]) -> frozenset[str]:
     """The nodes whose potential against `gnd` sources, shorts and a drive prescribe."""
     sets = DisjointSets([GROUND])
     for branch in (*voltage_branches(netlist), *extra):
-        if branch.role in ("zero", "source", "sense", "drive", "short"):
+        if branch.role in ("zero", "source", "drive", "short"):
             sets.add(branch.first, branch.second)
             sets.join(branch.first, branch.second)
     ground = sets.root(GROUND)
@@ -335,4 +336,3 @@ def _held_together(netlist: Netlist, held: Iterable[Pair], independent: bool) ->
         sets.add(first, second)
         sets.join(first, second)
     return sets
-

@@ -20,9 +20,15 @@ def floating_findings(
     netlist: Netlist, groups: Groups, *, severity: Severity
 ) -> Iterator[Diagnostic]:
     """Sensing pairs between two sets of nodes whose levels nothing ties together."""
-    for part, pair in sensing_pairs(netlist):
-        if not groups.shares_reference(*pair):
-            yield _floating(part, pair, severity)
+    for part, pair in loose_senses(netlist, groups):
+        yield _floating(part, pair, severity)
+
+
+def loose_senses(netlist: Netlist, groups: Groups) -> list[tuple[Part, Pair]]:
+    """The sensing pairs whose nodes lie in different groups."""
+    return [
+        (part, pair) for part, pair in sensing_pairs(netlist) if not groups.shares_reference(*pair)
+    ]
 
 
 def _floating(part: Part, pair: Pair, severity: Severity) -> Diagnostic:
@@ -37,7 +43,7 @@ def _floating(part: Part, pair: Pair, severity: Severity) -> Diagnostic:
 
 
 def floating_in_question(
-    netlist: Netlist, groups: Groups, reach: Reach, target: Pair
+    loose: Collection[tuple[Part, Pair]], groups: Groups, reach: Reach, target: Pair
 ) -> Iterator[Diagnostic]:
     """Sensing pairs without a common level that act on what is observed.
 
@@ -46,9 +52,6 @@ def floating_in_question(
     nodes, the level may cancel (two input followers before a difference amplifier): a
     warning that says which node counts as zero.
     """
-    loose = [
-        (part, pair) for part, pair in sensing_pairs(netlist) if not groups.shares_reference(*pair)
-    ]
     users = Counter(frozenset(groups.of[node] for node in pair) for _, pair in loose)
     for part, pair in loose:
         ends = reach.led_to(part.nodes[2:], target)

@@ -114,8 +114,18 @@ KINDS: dict[str, Kind] = {
                 Attribute("exponent", unit.NONE, required=True, own_symbol=True),
             ),
         ),
-        Kind("voltage_source", _PAIR, (_main("amplitude", unit.VOLT, "phasor"),), "amplitude"),
-        Kind("current_source", _PAIR, (_main("amplitude", unit.AMPERE, "phasor"),), "amplitude"),
+        Kind(
+            "voltage_source",
+            _PAIR,
+            (_main("amplitude", unit.VOLT, "phasor"), Attribute("angle", unit.NONE)),
+            "amplitude",
+        ),
+        Kind(
+            "current_source",
+            _PAIR,
+            (_main("amplitude", unit.AMPERE, "phasor"), Attribute("angle", unit.NONE)),
+            "amplitude",
+        ),
         Kind(
             "opamp",
             (Terminal("plus"), Terminal("minus"), Terminal("out"), Terminal("ref", "gnd")),

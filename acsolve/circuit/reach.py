@@ -67,7 +67,7 @@ class Reach:
 
 
 def reach(
-    netlist: Netlist, *, joined: Iterable[Pair] = (), held: Collection[str] = frozenset()
+    netlist: Netlist, *, joined: Collection[Pair] = (), held: Collection[str] = frozenset()
 ) -> Reach:
     """The islands and links of a network, its current sources taken as open.
 
@@ -83,11 +83,16 @@ def reach(
     """
     still = {GROUND, *held}
     sets = DisjointSets(node for part in netlist.parts for node in part.nodes)
+    for pair in joined:
+        sets.add(*pair)
     for cluster in (*_clusters(netlist), *joined):
-        sets.add(*cluster)
-        inner = [node for node in cluster if node not in still]
-        for node in inner[1:]:
-            sets.join(inner[0], node)
+        first = None
+        for node in cluster:
+            if node in still:
+                continue
+            if first is not None:
+                sets.join(first, node)
+            first = node
     numbers: dict[str, int] = {}
     islands = {
         node: numbers.setdefault(sets.root(node), len(numbers))

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from fractions import Fraction
 
 from acsolve.algebra.cofactor import MinorPlan, minors, plan_minors
@@ -22,10 +22,12 @@ from acsolve.circuit.expression import (
     rebuild,
 )
 from acsolve.circuit.graph import natural_key
+from acsolve.circuit.netlist import Netlist, with_values
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import angle_name
 from acsolve.equations.leaf import collect, monomial
 from acsolve.equations.system import Functional, System
+from acsolve.errors import Diagnostic, EquationError
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,9 +90,32 @@ class Symbols:
 
     def stays(self, name: str, value: Value) -> bool:
         """Whether the value of that name stays a symbol."""
-        if value.expression is None or name in self.keep:
+        if value.expression is None:
             return True
-        return self.symbolic and not _names(value.expression)
+        if depends_on_s(value.expression):
+            return False  # an impedance in s: a plain symbol would not vary with s
+        return name in self.keep or (self.symbolic and not _names(value.expression))
+
+
+def with_symbols(netlist: Netlist, symbols: Symbols) -> Netlist:
+    """The netlist without the values that stay symbols: a zero among them opens or shorts nothing."""
+    kept = {
+        name: replace(value, expression=None)
+        for name, value in netlist.values()
+        if value.expression is not None and symbols.stays(name, value)
+    }
+    return with_values(netlist, kept) if kept else netlist
+
+
+def _division_by_zero(expression: Expression) -> EquationError:
+    listed = ", ".join(sorted(_names(expression), key=natural_key)) or "a part"
+    return EquationError(
+        Diagnostic(
+            code="equations.evaluation",
+            message=f"the values of {listed} give a number that is not finite",
+            hint="Look for a division by zero among these values.",
+        )
+    )
 
 
 class Expander:
@@ -102,8 +127,17 @@ class Expander:
         self._known: dict[str, Expression] = {}
 
     def __call__(self, expression: Expression) -> Expression:
-        """The expression over free symbols, numbers, pi and s."""
-        return rebuild(expression, self._name)
+        """The expression over free symbols, numbers, pi and s.
+
+        Raises
+        ------
+        EquationError
+            [equations.evaluation] the values make it divide by zero.
+        """
+        try:
+            return rebuild(expression, self._name)
+        except ZeroDivisionError as problem:
+            raise _division_by_zero(expression) from problem
 
     def _name(self, item: Name) -> Expression:
         known = self._known.get(item.name)
@@ -231,6 +265,8 @@ class _Converter:
                 return a * c, b * d
             case Quotient(left, right):
                 (a, b), (c, d) = self(left), self(right)
+                if c == 0:
+                    raise _division_by_zero(expression)
                 return a * d, b * c
             case Power(base, Number(exponent)) if exponent.denominator == 1:
                 return self._whole_power(base, exponent.numerator)
@@ -244,6 +280,8 @@ class _Converter:
     def _whole_power(self, base: Expression, exponent: int) -> tuple[Polynomial, Polynomial]:
         top, bottom = self(base)
         if exponent < 0:
+            if top == 0:
+                raise _division_by_zero(base)
             top, bottom = bottom, top
         return top ** abs(exponent), bottom ** abs(exponent)
 

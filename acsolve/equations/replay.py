@@ -57,7 +57,7 @@ def replay(
         x = backward(factors)
         sums = [_Sums(c, x, factors, scaled=scaled) for c in observed]
         del factors
-        _visit_rows(numbers, entries, numbers.slopes(s), x, one, sums)
+        _Rows(numbers, entries, numbers.slopes(s), x, one).visit(sums)
         return _stacked([item.answer() for item in sums], len(s))
 
 
@@ -73,10 +73,10 @@ def replay_quick(
         factors = factor(plan, numbers.at(s), {numbers.size - 1: 1.0}, kept=steps)
         x = backward(factors, steps)
         values = np.zeros((len(observed), len(s)), dtype=complex)
-        for row, c in zip(values, observed, strict=True):
+        for place, c in enumerate(observed):
             for column, item in c.items():
                 if x[column] is not None:
-                    row += x[column] * float(item)
+                    values[place] += x[column] * float(item)
         return values
 
 
@@ -145,44 +145,55 @@ def _inverse(value: Element) -> Element:
     return 1.0 / value if isinstance(value, np.ndarray) or value else float("nan")
 
 
-def _visit_rows(
-    numbers: Numbers,
-    entries: Sequence[Element],
-    slopes: Sequence[Element | None],
-    x: Vector,
-    one: Element,
-    sums: Sequence[_Sums],
-) -> None:
-    """Give every row's A·x - b, round-off scale and (dA/ds)·x to the sums."""
-    holding: list[Exponent] = []  # exponents are known by identity, so none may go early
-    last = numbers.size - 1
-    for row in range(numbers.size):
-        places = [
-            place
-            for place in range(numbers.starts[row], numbers.starts[row + 1])
-            if x[numbers.columns[place]] is not None
-        ]
-        known = [x[numbers.columns[place]] for place in places]
-        if row == last:
-            known.append(one)
-        if not known:
-            continue
-        exponent = None
-        if isinstance(one, Scaled):
-            known, exponent = aligned(known)
-            holding.append(exponent)
-        residual: Element = -known[-1] if row == last else 0.0
+@dataclass(frozen=True, slots=True, eq=False)
+class _Rows:
+    """The rows of A·x - b, of its round-off scale and of (dA/ds)·x, one at a time."""
+
+    numbers: Numbers
+    entries: Sequence[Element]
+    slopes: Sequence[Element | None]
+    x: Vector
+    one: Element  # the right-hand side of the last row
+
+    def visit(self, sums: Sequence[_Sums]) -> None:
+        """Give every row to the sums."""
+        holding: list[Exponent] = []  # exponents are known by identity, so none may go early
+        for row in range(self.numbers.size):
+            places, known, exponent = self._known(row)
+            if exponent is not None:
+                holding.append(exponent)
+            if known:
+                visited = self._row(row, places, known)
+                for item in sums:
+                    item.add(row, *visited, exponent)
+
+    def _known(self, row: int) -> tuple[list[int], Vector, Exponent | None]:
+        """Places of the row with a known unknown, and these on one exponent."""
+        columns, x = self.numbers.columns, self.x
+        start, end = self.numbers.starts[row : row + 2]
+        places = [place for place in range(start, end) if x[columns[place]] is not None]
+        known = [x[columns[place]] for place in places]
+        if row == self.numbers.size - 1:
+            known.append(self.one)
+        if known and isinstance(self.one, Scaled):
+            return places, *aligned(known)
+        return places, known, None
+
+    def _row(
+        self, row: int, places: Sequence[int], known: Vector
+    ) -> tuple[Element, Element, Element | None]:
+        last = row == self.numbers.size - 1
+        residual: Element = -known[-1] if last else 0.0
         scale: Element = abs(residual)
         slope: Element | None = None
         for place, item in zip(places, known, strict=False):
-            term = entries[place] * item
+            term = self.entries[place] * item
             residual = residual + term
             scale = scale + abs(term)
-            if slopes[place] is not None:
-                term = slopes[place] * item
-                slope = term if slope is None else slope + term
-        for item in sums:
-            item.add(row, residual, _ROUND_OFF * scale, slope, exponent)
+            rate = self.slopes[place]
+            if rate is not None:
+                slope = rate * item if slope is None else slope + rate * item
+        return residual, _ROUND_OFF * scale, slope
 
 
 def _stacked(answers: Sequence[Any], points: int) -> Replayed:

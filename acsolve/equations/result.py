@@ -53,7 +53,7 @@ class Solution:
             gain = 20 * np.log10(np.abs(self.mantissa))
         gain = gain + self.exponent * (20 * np.log10(2.0))
         gain[self.status == Status.POLE] = np.inf
-        return gain
+        return np.asarray(gain)
 
     def phase(self) -> NDArray[np.float64]:
         """Principal phase in radians; not a number at zeros and poles."""
@@ -64,7 +64,7 @@ class Solution:
     def log_gain(self) -> NDArray[np.float64]:
         """Natural logarithm of |H|."""
         with np.errstate(divide="ignore"):  # as in gain_db
-            return np.log(np.abs(self.mantissa)) + self.exponent * np.log(2.0)
+            return np.asarray(np.log(np.abs(self.mantissa)) + self.exponent * np.log(2.0))
 
 
 def empty(observed: int, points: int) -> dict[str, NDArray[Any]]:

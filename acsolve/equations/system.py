@@ -23,8 +23,8 @@ from acsolve.circuit.graph import Groups, natural_key, reference_groups
 from acsolve.circuit.netlist import Netlist, Pair, Part
 from acsolve.equations.stamp import STAMPS, mutual_inductance
 
-DRIVE = "drive"
-SHORT = "short"
+DRIVE = "the drive"  # no part can have such a name
+SHORT = "the short"
 
 UnknownKind = Literal["voltage", "current", "unity"]
 Functional = Mapping[int, int]

@@ -114,6 +114,8 @@ def power_text(base: str, power: Fraction, spelling: Spelling) -> str:
     """A factor to a power as text."""
     if power == 1:
         return base
+    if spelling.power in base and base[0] != "(":
+        base = f"({base})"
     exponent = str(power) if power.denominator == 1 and power > 0 else f"({power})"
     return f"{base}{spelling.power}{exponent}"
 

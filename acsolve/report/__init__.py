@@ -1,1 +1,1 @@
-"""Answers for people and other programs: text, JSON, tables, files and pictures."""
+"""Answers made readable: text, JSON, tables, pictures and saved files."""

@@ -6,10 +6,19 @@ from acsolve.circuit.kind import KINDS, LETTERS
 from acsolve.errors import Label
 from acsolve.text import limits
 from acsolve.text.book import Book
-from acsolve.text.scope import NO_TURNS, Draft, Given, Scope, Turns
+from acsolve.text.scope import Draft, Given, Scope, Turns
 from acsolve.text.spell import node_name, spelled, whole
-from acsolve.text.tree import Argument, Block, GroundWord, Literal, Numbered, Path, Reference
-from acsolve.text.tree import KindText, Place
+from acsolve.text.tree import (
+    Argument,
+    Block,
+    GroundWord,
+    KindText,
+    Literal,
+    Numbered,
+    Path,
+    Place,
+    Reference,
+)
 from acsolve.text.walk import Walker
 from acsolve.text.words import listed, meant
 
@@ -281,25 +290,3 @@ def _check_arguments(draft: Draft, block: Block, child: Scope, book: Book) -> No
             )
         elif name is not None:
             seen[name] = argument
-
-
-# ---------------------------------------------------------------- blocks that contain themselves
-
-
-def refuse_loops(book: Book) -> None:
-    """Find blocks that contain themselves, before any copy is written out."""
-    uses = {word: dict(_used(block.body)) for word, block in book.blocks.items()}
-    for word, block in book.blocks.items():
-        route = _route(word, uses)
-        if route is None:
-            continue
-        book.refused_blocks.add(word)
-        through = "" if len(route) == 1 else f" through {listed(route[:-1])}"
-        book.problems.add(
-            "block.loop",
-            f"the block {word} contains itself{through}",
-            uses[word][route[0]],
-            hint="A block may hold other blocks, but never a copy of itself.",
-            labels=(Label(block.head.word_span, "the block starts here"),),
-        )
-    _ = NO_TURNS

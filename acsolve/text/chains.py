@@ -15,7 +15,7 @@ from acsolve.text.tree import Arm, Chain, Fitted, Item, Numbered, Path
 if TYPE_CHECKING:
     from acsolve.text.walk import Walker
 
-_DESIGNATOR = re.compile(r"[RLC][0-9]+[a-z]?(\[.*\])?")
+DESIGNATOR = re.compile(r"[RLC][0-9]+[a-z]?(\[.*\])?")
 _WORD = re.compile(r"[A-Za-z_][A-Za-z0-9_]*")
 
 
@@ -193,7 +193,7 @@ def _leaf(item: Item, scope: Scope, turns: Turns, book: Book) -> str:
 
 def _is_designator(item: Item) -> bool:
     if isinstance(item, Path):
-        return item.name is not None and _DESIGNATOR.fullmatch(item.name) is not None
+        return item.name is not None and DESIGNATOR.fullmatch(item.name) is not None
     return isinstance(item, Fitted | Arm)
 
 

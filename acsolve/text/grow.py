@@ -74,7 +74,7 @@ def _quick_path(template: Template) -> Recipe | None:
         if numbers:
             indices = [tokens.text(number) for number in numbers]
             for digits in indices:
-                if not digits.isdigit() or digits[0] == "0" and digits != "0":
+                if not digits.isdigit() or (digits[0] == "0" and digits != "0"):
                     return slow(tokens)  # type: ignore[no-any-return]
             name = f"{name}[{','.join(indices)}]"
         return tree.Path(name, (), tokens.span(word, last))
@@ -220,8 +220,7 @@ def _signed(node: Grown) -> tree.Signed:
 def _terms(node: Grown) -> tree.Terms:
     first, *others = node.parts
     rest = tuple(
-        (node.text(sign), formula)
-        for sign, formula in zip(others[::2], others[1::2], strict=True)
+        (node.text(sign), formula) for sign, formula in zip(others[::2], others[1::2], strict=True)
     )
     return tree.Terms(first, rest, node.span)
 

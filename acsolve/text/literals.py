@@ -10,12 +10,14 @@ decimal mark (4k7, 0R47, 2u2). Codes that start with a letter (R47) are names he
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from difflib import get_close_matches
 from fractions import Fraction
 from functools import lru_cache
 
+from acsolve.circuit import expression as ex
 from acsolve.circuit import unit
+from acsolve.circuit.expression import Expression
 from acsolve.circuit.unit import PREFIXES
 from acsolve.codes import Code
 from acsolve.text import limits
@@ -38,7 +40,8 @@ class Meaning:
 
     `measure` is None for a bare number, which takes the dimension its place needs.
     `word` is the letters that could also be read as a name. `kelvin` tells that an
-    attached K is a temperature where the place needs one. `radian` asks for 180/pi.
+    attached K is a temperature where the place needs one; `radian` asks for 180/pi.
+    `expression` is the number in SI units, angles in degrees.
     """
 
     number: Fraction
@@ -46,7 +49,13 @@ class Meaning:
     word: str | None = None
     kelvin: bool = False
     radian: bool = False
+    expression: Expression = field(init=False)
 
+    def __post_init__(self) -> None:
+        number: Expression = ex.number(self.number)
+        if self.radian:
+            number = ex.divide(ex.number(self.number * 180), ex.PI)
+        object.__setattr__(self, "expression", number)
 
 @dataclass(frozen=True, slots=True)
 class Fault:

@@ -17,5 +17,8 @@ def explain(start: str, statement: Tokens, failure: Failure | None, problems: Pr
         number = next(n for n, kind in enumerate(statement.kinds) if kind in (OPEN_TEXT, STRAY))
         failure = Failure(number, frozenset())
     last = len(statement.kinds) - 1
+    if last < 0:
+        problems.add("syntax.statement", "nothing is written here", None)
+        return
     at = min(failure.position, last)
     problems.add("syntax.statement", "this cannot be read", statement.span(at, at))

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from acsolve.source import Source, Span
-from acsolve.text.syntax import keywords, scanner
+from acsolve.text.syntax import REST, keywords, scanner
 
 #: Code points that look like a sign of the format, one for one, so that places stay true.
 LOOK_ALIKES = str.maketrans(
@@ -72,6 +72,8 @@ def tokens(text: str, start: int, end: int) -> Iterator[Token]:
     for match in scanner().finditer(text, start, end):
         kind = match.lastgroup
         assert kind is not None, "every alternative of the scanner is a named group"
+        if kind == REST:
+            return
         first, last = match.span(kind)
         if kind == "NAME":
             kind = words.get(text[first:last], kind)

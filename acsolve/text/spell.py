@@ -221,7 +221,5 @@ def _looked_up(
             if key in visited or len(visited) > 50:
                 raise NotWholeError(f"{name} is defined by itself", path.span)
             book.used.add(key)
-            return _evaluate(
-                found.given.formula, found.scope, NO_TURNS, book, visited | {key}
-            )
+            return _evaluate(found.given.formula, found.scope, NO_TURNS, book, visited | {key})
     raise NotWholeError(f"{path.span.text} is not known here as a whole number", path.span)

@@ -24,9 +24,7 @@ class Splitter:
     line is reported and dropped, and the lines after it are read again one by one.
     """
 
-    def __init__(
-        self, script: Script, problems: Problems, emit: Callable[[Tokens], None]
-    ) -> None:
+    def __init__(self, script: Script, problems: Problems, emit: Callable[[Tokens], None]) -> None:
         self._script = script
         self._problems = problems
         self._emit = emit

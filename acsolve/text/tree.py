@@ -400,6 +400,11 @@ class Block:
     head: BlockHead
     body: tuple[Nested, ...]
 
+    @property
+    def span(self) -> Span:
+        """The first line."""
+        return self.head.span
+
 
 @dataclass(frozen=True, slots=True)
 class Repeat:
@@ -408,6 +413,11 @@ class Repeat:
     head: RepeatHead
     body: tuple[Nested, ...]
 
+    @property
+    def span(self) -> Span:
+        """The first line."""
+        return self.head.span
+
 
 @dataclass(frozen=True, slots=True)
 class VariantBody:
@@ -415,6 +425,11 @@ class VariantBody:
 
     head: VariantHead
     body: tuple[Nested, ...]
+
+    @property
+    def span(self) -> Span:
+        """The first line."""
+        return self.head.span
 
 
 Nested = Plain | Block | Repeat | VariantBody

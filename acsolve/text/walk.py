@@ -64,7 +64,7 @@ class Walker:
         for statement in body:
             handler = self._handlers.get(type(statement))
             if handler is not None:
-                self._book.step(statement.span)  # type: ignore[union-attr]
+                self._book.step(statement.span)
                 handler(statement, scope, turns)
 
     # ------------------------------------------------------------ parts
@@ -153,9 +153,7 @@ class Walker:
         nothing = ValueText(None, None, None, None, statement.span)
         self._assign(Assign(statement.targets, nothing, statement.span), scope, turns)
 
-    def _give(
-        self, local: str, value: ValueText, span: Span, scope: Scope, turns: Turns
-    ) -> None:
+    def _give(self, local: str, value: ValueText, span: Span, scope: Scope, turns: Turns) -> None:
         """Note a value; one for an inner name overrides what the block says."""
         given = Given(value, scope, turns, span)
         if "." in local and local not in scope.drafts:

@@ -130,7 +130,7 @@ class Dense:
         number = self.random.randrange(1, P)
         return 0 if _zero(part, attribute) else number
 
-    def _stamp(self, part: Part, netlist: Netlist) -> None:
+    def _stamp(self, part: Part, netlist: Netlist) -> None:  # noqa: PLR0912 (one case a kind)
         ports = _ports(part)
         currents = [self._branch(f"{part.name}/{at}", port) for at, port in enumerate(ports)]
         x = self._draw(part, next(iter(part.values), "value"))

@@ -8,8 +8,9 @@ from hypothesis import strategies as st
 
 from acsolve.circuit.expression import Expression, Number
 from acsolve.circuit.kind import KINDS
-from acsolve.circuit.netlist import Coupling, Netlist, Part
+from acsolve.circuit.netlist import Coupling, Netlist, Part, Question
 from acsolve.circuit.value import Value
+from acsolve.errors import Diagnostic
 
 
 def part(name: str, kind: str, *nodes: str, **values: int | Expression | None) -> Part:
@@ -66,6 +67,32 @@ def network(*parts: Part, couplings: tuple[tuple[str, str], ...] = (), **more) -
     coupled = tuple(Coupling(first=a, second=b, coefficient=Value()) for a, b in couplings)
     return Netlist(parts=parts, couplings=coupled, **more)
 
+
+IN, OUT = ("in", "gnd"), ("out", "gnd")
+
+
+def asked(*parts: Part, **more) -> Netlist:
+    """A netlist that asks for the transfer from `in` to `out`."""
+    return network(*parts, questions=(Question(kind="transfer", source=IN, target=OUT),), **more)
+
+
+def said(found: tuple[Diagnostic, ...]) -> list[tuple[str, str, str]]:
+    """Severity, code and message of each diagnostic."""
+    return [(item.severity, item.code, item.message) for item in found]
+
+
+def errors(found: tuple[Diagnostic, ...]) -> list[str]:
+    """The codes of the errors."""
+    return [item.code for item in found if item.severity == "error"]
+
+
+INVERTER = (
+    resistor("R1", "in", "n"),
+    resistor("R2", "n", "out"),
+    opamp("U1", "gnd", "n", "out"),
+)
+FOLLOWER = (opamp("U1", "in", "out", "out"),)
+LOW_PASS = (resistor("R1", "in", "out"), capacitor("C1", "out", "gnd"))
 
 NODES = ("gnd", "a", "b", "c", "d", "e")
 _ZERO_OR_SYMBOL = st.sampled_from([None, None, None, 0])

@@ -1,0 +1,1 @@
+"""The command line: arguments in, answers and an exit status out."""

@@ -1,0 +1,1 @@
+"""One module for each command; its `command` is loaded when it is named."""

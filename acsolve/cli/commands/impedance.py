@@ -1,0 +1,21 @@
+"""`acsolve impedance`."""
+
+from __future__ import annotations
+
+from acsolve.cli.forms import answer_forms
+from acsolve.cli.options import FORMS, OUTPUT, SIZES, VALUES, Options, make_command
+
+
+def work(options: Options) -> int:
+    """Answer with the closed form of a driving-point impedance."""
+    return answer_forms("impedance", options)
+
+
+command = make_command(
+    "impedance",
+    "The closed form of the impedance looking into a pair.\n"
+    "Without --into it answers the file's own ask lines.",
+    work,
+    ("into", *VALUES, *FORMS, *SIZES, *OUTPUT),
+    "filter.circuit --into out",
+)

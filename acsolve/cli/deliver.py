@@ -1,0 +1,102 @@
+"""Answers to where they were wanted: the screen, JSON, saved files."""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Callable, Iterable, Sequence
+from typing import TYPE_CHECKING
+
+from acsolve import AcsolveError, Path
+from acsolve.cli.options import Options, refused
+from acsolve.cli.run import ANSWERED, report, status_of
+
+if TYPE_CHECKING:
+    from acsolve.report.entry import Entry
+    from acsolve.report.plot import Picture
+
+Answered = Sequence[tuple[Path, "Entry"]]
+Draw = Callable[[Answered, Options], "Picture"]
+
+
+def deliver(
+    answered: Answered,
+    options: Options,
+    *,
+    errors: Sequence[AcsolveError] = (),
+    draw: Draw | None = None,
+    silent_when_saved: bool = False,
+) -> int:
+    """Show and save the answers; return the exit status.
+
+    Where a question failed nothing is saved; what was answered is still shown as text,
+    and as JSON the errors alone.
+    """
+    entries = [entry for _, entry in answered]
+    if errors:
+        return _deliver_errors(entries, errors, options)
+    saved = _save(answered, options, draw)
+    if options.as_json:
+        from acsolve.report.json import answers_text as as_json
+
+        sys.stdout.write(as_json(entries))
+        return ANSWERED
+    if not (saved and silent_when_saved):
+        from acsolve.report.text import answers_text
+
+        sys.stdout.write(answers_text(entries))
+    if saved:
+        sys.stdout.write(f"saved {', '.join(options.save)}\n")
+    return ANSWERED
+
+
+def _deliver_errors(
+    entries: Sequence[Entry], errors: Sequence[AcsolveError], options: Options
+) -> int:
+    problems = _distinct(item for error in errors for item in error.diagnostics)
+    if entries and not options.as_json:
+        from acsolve.report.text import answers_text
+
+        sys.stdout.write(answers_text(entries))
+        sys.stdout.flush()
+    report(problems, as_json=options.as_json)
+    return max(status_of(error) for error in errors)
+
+
+def _distinct(problems: Iterable[object]) -> list[object]:
+    found: list[object] = []
+    for item in problems:
+        if item not in found:
+            found.append(item)
+    return found
+
+
+def _save(answered: Answered, options: Options, draw: Draw | None) -> bool:
+    """Write every file that --save names; all or none."""
+    if not options.save:
+        return False
+    from acsolve.report.save import write_all
+
+    write_all([(name, _content(name, answered, options, draw)) for name in options.save])
+    return True
+
+
+def _content(name: str, answered: Answered, options: Options, draw: Draw | None) -> bytes:
+    from acsolve.report import save
+
+    entries = [entry for _, entry in answered]
+    found = save.ending(name)
+    if found == "json":
+        from acsolve.report.json import answers_text
+
+        return answers_text(entries).encode()
+    if found in save.PICTURES:
+        from acsolve.report.plot import picture_content
+
+        assert draw is not None, "a kind of answer that is saved as a picture can be drawn"
+        return picture_content(draw(answered, options), found)
+    if len(entries) > 1 and entries[0].kind == "sweep":
+        raise refused(
+            f"a {found} file holds one sweep, and {options.file} asks {len(entries)}",
+            "Pick one with --from and --to, or save json or a picture.",
+        )
+    return save.csv_content(entries) if found == "csv" else save.npz_content(entries[0])

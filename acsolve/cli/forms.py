@@ -1,0 +1,55 @@
+"""What `transfer` and `impedance` share: closed forms with what is asked of them next."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import TYPE_CHECKING, Any, Literal
+
+from acsolve import AcsolveError
+from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit
+from acsolve.cli.deliver import deliver
+from acsolve.cli.drawing import draw
+from acsolve.cli.options import Options
+from acsolve.cli.progress import progress
+
+if TYPE_CHECKING:
+    from acsolve.report.entry import Entry
+
+_MOST_PARTS = 12  # up to here the symbolic twin of a numeric answer is always cheap
+_MOST_ORDER = 2
+
+
+def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> int:
+    """Answer every question of a kind with its closed form."""
+    from acsolve.report.entry import Entry
+    from acsolve.report.save import refuse_unfit
+
+    refuse_unfit(options.save, kind)
+    circuit = open_circuit(options)
+    shared = heading(circuit, options)
+
+    def answer(item: Asked) -> Sequence[Entry]:
+        found = item.path.transfer(
+            symbolic=options.symbolic,
+            keep=options.kept,
+            budget=options.terms,
+            nested=options.nested,
+        )
+        twin = None if options.as_json else symbolic_twin(item, found)
+        ask = item.path.ask
+        return [Entry(kind=kind, heading=shared, ask=ask, transfer=found, formula=twin)]
+
+    with progress("working out the closed form"):
+        answered, errors = answer_all(asked(circuit, kind, options), answer)
+    return deliver(answered, options, errors=errors, draw=draw)
+
+
+def symbolic_twin(item: Asked, found: Any) -> Any:
+    """The same answer with every part a symbol, or None where that is not small."""
+    small = found.order is not None and 1 <= found.order <= _MOST_ORDER
+    if found.form.symbols or not small or len(item.path.circuit.parts) > _MOST_PARTS:
+        return None
+    try:
+        return item.path.transfer(symbolic=True)
+    except AcsolveError:
+        return None

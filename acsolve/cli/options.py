@@ -1,0 +1,187 @@
+"""Options that the commands share, as one immutable object once they are read."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+from typing import Any
+
+import click
+
+from acsolve import AnalysisError, Diagnostic
+from acsolve.cli.group import Command, help_option
+
+QUANTITIES = ("voltage-ratio", "current-ratio", "transimpedance", "transadmittance")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Options:
+    """What was given on the command line; None or empty where it was not."""
+
+    files: tuple[str, ...]
+    source: str | None = None
+    target: str | None = None
+    into: str | None = None
+    through: str | None = None
+    quantity: str | None = None
+    variant: str | None = None
+    let: tuple[str, ...] = ()
+    symbolic: bool = False
+    keep: str | None = None
+    nested: bool = False
+    budget: str | None = None
+    band: str | None = None
+    points: str | None = None
+    linear: bool = False
+    at: str | None = None
+    level: str | None = None
+    reference: str | None = None
+    save: tuple[str, ...] = ()
+    as_json: bool = False
+
+    @property
+    def file(self) -> str:
+        """The one circuit file."""
+        return self.files[0]
+
+    @property
+    def kept(self) -> tuple[str, ...]:
+        """The names that stay symbols."""
+        return split_names(self.keep or "")
+
+    @property
+    def terms(self) -> int | None:
+        """The most terms that may be held at once, None for the usual number."""
+        if self.budget is None:
+            return None
+        try:
+            found = int(float(self.budget.replace("_", "")))
+        except (ValueError, OverflowError):
+            found = 0
+        if found < 1:
+            raise refused(f"--budget {self.budget} is no number of terms", "Write, say, 1e6.")
+        return found
+
+    @property
+    def asks(self) -> bool:
+        """Whether the command line itself says where to drive or observe."""
+        return any((self.source, self.target, self.into, self.through))
+
+
+def split_names(text: str) -> tuple[str, ...]:
+    """Names between commas; commas inside index brackets belong to their name."""
+    parts = re.split(r",(?![^\[]*\])", text)
+    return tuple(part.strip() for part in parts if part.strip())
+
+
+def refused(message: str, hint: str) -> AnalysisError:
+    """The error for an option whose value does not fit."""
+    return AnalysisError(Diagnostic(code="option.value", message=message, hint=hint))
+
+
+def _option(names: str, place: str | None, text: str, **more: Any) -> Callable[[], click.Option]:
+    def make() -> click.Option:
+        flag = {"is_flag": True} if place is None else {"metavar": place}
+        return click.Option(names.split(), help=text, **{**flag, **more})
+
+    return make
+
+
+_TABLE = {
+    "from": _option("--from source", "PAIR", "where it is driven: out, or a,b, or a port"),
+    "to": _option("--to target", "PAIR", "where it is observed, likewise"),
+    "into": _option("--into", "PAIR", "the pair whose impedance is asked"),
+    "through": _option("--through", "AMMETER", "observe the current of an ammeter instead"),
+    "quantity": _option(
+        "--quantity", "NAME", "voltage-ratio, current-ratio, transimpedance, transadmittance"
+    ),
+    "variant": _option("--variant", "NAME", "the circuit as this variant says"),
+    "let": _option("--let", "NAME=VALUE", "another value; may be repeated", multiple=True),
+    "symbolic": _option("--symbolic", None, "ignore all numbers"),
+    "keep": _option("--keep", "R1,C1", "only these stay symbols"),
+    "nested": _option("--nested", None, "as named steps, short for large networks"),
+    "budget": _option("--budget", "TERMS", "most terms to multiply out, four million"),
+    "band": _option("--band", "10Hz..1MHz", "lowest and highest frequency"),
+    "points": _option("--points", "NUMBER", "so many in all, or 50/decade"),
+    "linear": _option("--linear", None, "even steps instead of even ratios"),
+    "at": _option("--at", "50Hz,60Hz", "just these frequencies"),
+    "level": _option("--level", "-6dB", "below the reference; half power if not given"),
+    "reference": _option("--reference", "WHERE", "dc, infinity, peak, or a gain such as 0.5"),
+    "save": _option("--save", "FILE", "save as its ending says; may be repeated", multiple=True),
+    "json": _option("--json as_json", None, "one JSON document on standard output"),
+}
+
+PAIRS = ("from", "to", "through", "quantity")
+VALUES = ("variant", "let")
+FORMS = ("symbolic", "keep")
+SIZES = ("nested", "budget")
+OUTPUT = ("save", "json")
+
+
+def make_command(
+    name: str, purpose: str, work: Callable[[Options], int], options: Iterable[str], example: str
+) -> Command:
+    """A command that reads its options, checks them and does its work."""
+
+    def callback(**given: Any) -> int:
+        chosen = Options(**{key: value for key, value in given.items() if value is not None})
+        _check(chosen)
+        return work(chosen)
+
+    return Command(
+        name=name,
+        help=purpose,
+        callback=callback,
+        add_help_option=False,
+        example=example,
+        params=[
+            click.Argument(["files"], nargs=-1),
+            *(_TABLE[option]() for option in options),
+            help_option(),
+        ],
+    )
+
+
+def _check(options: Options) -> None:
+    """Refuse what contradicts itself before any work is done."""
+    if len(options.files) != 1:
+        count = len(options.files)
+        raise refused(
+            "no circuit file is named"
+            if count == 0
+            else f"one circuit file is expected, {count} are given",
+            "Name one file, or - for standard input.",
+        )
+    if options.quantity is not None and options.quantity not in QUANTITIES:
+        raise refused(
+            f"there is no quantity {options.quantity}", f"It is one of {', '.join(QUANTITIES)}."
+        )
+    if options.into is not None and any((options.source, options.target, options.through)):
+        raise refused(
+            "--into stands alone: it drives and observes one pair",
+            "Give --into, or --from and --to.",
+        )
+    if options.into is not None and options.quantity is not None:
+        raise refused("--into always asks an impedance", "Leave --quantity out.")
+    _check_target(options)
+    if options.at is not None and (options.band or options.points or options.linear):
+        raise refused(
+            "--at names every frequency, so --band, --points and --linear do not go with it",
+            "Give --at alone, or a band.",
+        )
+
+
+def _check_target(options: Options) -> None:
+    if options.target is not None and options.through is not None:
+        raise refused("--to and --through both say what is observed", "Give one of them.")
+    if options.through is not None and options.quantity in ("voltage-ratio", "transimpedance"):
+        raise refused(
+            f"--through observes a current, and {options.quantity} is about a voltage",
+            "Ask for current-ratio or transadmittance.",
+        )
+    if options.source is not None and options.target is None and options.through is None:
+        raise refused(
+            "--from says where the circuit is driven, but nothing says what is observed",
+            "Add --to PAIR, or --through AMMETER.",
+        )

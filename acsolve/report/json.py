@@ -1,0 +1,291 @@
+"""Answers as JSON values: the keys that other programs rely on, strings SymPy can read."""
+
+from __future__ import annotations
+
+import json
+import re
+from collections.abc import Iterable, Mapping
+from math import isfinite
+from typing import TYPE_CHECKING, Any
+
+from acsolve.errors import Diagnostic
+from acsolve.report.entry import Entry
+
+if TYPE_CHECKING:
+    from acsolve.algebra.ring import Polynomial
+    from acsolve.analyses.closed_form import ClosedForm
+    from acsolve.analyses.cutoff import CutoffAnswer
+    from acsolve.analyses.nested import NestedForm
+    from acsolve.analyses.transfer import TransferAnswer
+
+FORMAT = 1
+
+
+def answers_text(entries: Iterable[Entry]) -> str:
+    """All answers as one JSON document that ends with a line end."""
+    return _dump({"format": FORMAT, "answers": [answer(entry) for entry in entries]})
+
+
+def errors_text(
+    problems: Iterable[Diagnostic], answers: Iterable[Entry] | None = None
+) -> str:
+    """Problems as one JSON document, with what could be answered where that is useful."""
+    document: dict[str, Any] = {"format": FORMAT}
+    if answers is not None:
+        document["answers"] = [answer(entry) for entry in answers]
+    document["errors"] = [problem(item) for item in problems]
+    return _dump(document)
+
+
+def _dump(document: Mapping[str, Any]) -> str:
+    return json.dumps(document, allow_nan=False, ensure_ascii=False, indent=1) + "\n"
+
+
+def problem(item: Diagnostic) -> dict[str, Any]:
+    """A diagnostic; file, line and column are null for what stands in no file."""
+    span = item.span
+    return {
+        "code": item.code,
+        "severity": item.severity,
+        "message": item.message,
+        "file": span.source.name if span else None,
+        "line": span.line if span else None,
+        "column": span.column if span else None,
+        "hint": item.hint,
+    }
+
+
+def answer(entry: Entry) -> dict[str, Any]:
+    """One answer under the keys of its kind."""
+    return {**_heading(entry), **_BODIES[entry.kind](entry), **_remarks(entry)}
+
+
+def number(value: float | None) -> float | None:
+    """A JSON number, null where it is not finite."""
+    return float(value) if value is not None and isfinite(value) else None
+
+
+def numbers(values: Iterable[float]) -> list[float | None]:
+    """A list of JSON numbers."""
+    return [number(value) for value in values]
+
+
+def complex_number(value: complex) -> list[float | None]:
+    """A complex number as [re, im]."""
+    return [number(value.real), number(value.imag)]
+
+
+def _heading(entry: Entry) -> dict[str, Any]:
+    ask = entry.ask
+    heading: dict[str, Any] = {"kind": entry.kind, "title": entry.heading.title}
+    if ask is not None and ask.quantity == "impedance":
+        heading["into"] = list(ask.target)
+    else:
+        heading["from"] = list(ask.source) if ask and ask.source else None
+        heading["to"] = list(ask.target) if ask else None
+    heading["quantity"] = ask.quantity if ask else None
+    if ask is not None and ask.ammeter:
+        heading["through"] = ask.ammeter
+    heading["variant"] = entry.heading.variant
+    return heading
+
+
+def _remarks(entry: Entry) -> dict[str, Any]:
+    return {
+        "cautions": list(entry.heading.cautions),
+        "warnings": [problem(item) for item in entry.heading.warnings],
+    }
+
+
+def _replaced(names: Mapping[str, str]) -> dict[str, str]:
+    """Safe name -> name, for the names that had to be replaced."""
+    return {safe: name for name, safe in names.items() if safe != name}
+
+
+def _closed_form(entry: Entry) -> dict[str, Any]:
+    from acsolve.analyses.shape import limit_text
+
+    found: TransferAnswer = _filled(entry.transfer)
+    standard = found.standard_form
+    return {
+        **_expression(found.form),
+        "order": found.order,
+        "at_zero": limit_text(found.at_zero),
+        "at_infinity": limit_text(found.at_infinity),
+        "shape": standard.shape if standard else None,
+        "standard_form": dict(standard.parts) if standard else None,
+        "poles": _roots(found, "poles"),
+        "zeros": _roots(found, "zeros"),
+        "checked": _checked(found.form),
+        "symbols": _replaced(found.form.spelled(safe=True).names),
+    }
+
+
+def _expression(form: ClosedForm | NestedForm) -> dict[str, Any]:
+    """The form itself: one fraction, or a result over named steps."""
+    from acsolve.analyses.closed_form import ClosedForm
+
+    found: dict[str, Any] = {"expression": form.text(safe=True)}
+    if not isinstance(form, ClosedForm):
+        steps = [[name, text] for name, text in form.step_texts(safe=True)]
+        return {**found, "numerator": None, "denominator": None, "form": "nested", "steps": steps}
+    top, bottom = form.coefficients() if form.rational else (None, None)
+    return {
+        **found,
+        "numerator": _falling(form, top),
+        "denominator": _falling(form, bottom),
+        "form": "expanded",
+    }
+
+
+def _filled(value: Any) -> Any:
+    assert value is not None, "an entry was made without the answer its kind names"
+    return value
+
+
+def _falling(form: ClosedForm, coefficients: list[Polynomial] | None) -> list[str] | None:
+    """Coefficients as text, the highest power of s first."""
+    from acsolve.equations.write import polynomial_text
+
+    if coefficients is None:
+        return None
+    spelling = form.spelled(safe=True)
+    return [polynomial_text(item, form.basis, spelling) for item in reversed(coefficients)]
+
+
+def _roots(found: TransferAnswer, name: str) -> list[list[float | None]] | None:
+    if found.roots is None:
+        return None
+    return [complex_number(root) for root in getattr(found.roots, name)]
+
+
+def _checked(form: ClosedForm | NestedForm) -> dict[str, Any] | None:
+    if form.checked is None:
+        return None
+    return {
+        "points": form.checked.points,
+        "max_relative_error": number(form.checked.max_relative_error),
+    }
+
+
+def _cutoff(entry: Entry) -> dict[str, Any]:
+    found: CutoffAnswer = _filled(entry.cutoff)
+    return {
+        "reference": {
+            "at": found.reference.at,
+            "gain": number(found.reference.gain),
+            "hertz": number(found.reference.hertz),
+        },
+        "level_db": number(found.level_db),
+        "cutoffs": [
+            {
+                "hertz": number(item.hertz),
+                "rad_per_s": number(item.rad_per_s),
+                "closed_form": item.closed_form,
+                "direction": item.direction,
+            }
+            for item in found.cutoffs
+        ],
+        "touches": [
+            {"hertz": number(item.hertz), "rad_per_s": number(item.rad_per_s)}
+            for item in found.touches
+        ],
+        "complete": found.complete,
+        "method": found.method,
+        "remarks": list(found.remarks),
+        "checked": _checked(found.form),
+        "symbols": _replaced(cutoff_names(entry)),
+    }
+
+
+def cutoff_names(entry: Entry) -> dict[str, str]:
+    """Name -> safe name, for the names that the closed forms of the cutoffs hold."""
+    from acsolve.equations.naming import safe_names
+
+    found: CutoffAnswer = _filled(entry.cutoff)
+    held = {word for item in found.cutoffs for word in _WORD.findall(item.closed_form or "")}
+    names = found.form.symbols or tuple(found.form.values)
+    return {name: safe for name, safe in safe_names(names).items() if safe in held}
+
+
+_WORD = re.compile(r"[A-Za-z_]\w*")
+
+
+def _sweep(entry: Entry) -> dict[str, Any]:
+    found = _filled(entry.sweep)
+    return {
+        "hertz": numbers(found.hertz.tolist()),
+        "real": numbers(found.value.real.tolist()),
+        "imag": numbers(found.value.imag.tolist()),
+        "gain_db": numbers(found.gain_db.tolist()),
+        "phase_deg": numbers(found.phase_deg.tolist()),
+        "phase_delay_s": numbers(found.phase_delay_s.tolist()),
+        "group_delay_s": numbers(found.group_delay_s.tolist()),
+        "status": status_words(found.status.tolist()),
+        "settled": bool(found.settled),
+    }
+
+
+def status_words(codes: Iterable[int]) -> list[str]:
+    """The status of each point in words."""
+    from acsolve.equations.result import Status
+
+    words = {int(item): str(item) for item in Status}
+    return [words[int(code)] for code in codes]
+
+
+def _check(entry: Entry) -> dict[str, Any]:
+    found = _filled(entry.check)
+    return {
+        "ok": found.ok,
+        "nodes": list(found.nodes),
+        "parts": [
+            {"name": part.name, "kind": part.kind, "nodes": list(part.nodes)}
+            for part in found.parts
+        ],
+        "order": max((item.order for item in found.modes), default=None),
+        "modes": [
+            {
+                "driven": list(item.driven) if item.driven else None,
+                "held": item.held,
+                "order": item.order,
+                "values": None
+                if item.values is None
+                else [complex_number(value) for value in item.values],
+                "stable": item.stable,
+            }
+            for item in found.modes
+        ],
+        "problems": [problem(item) for item in found.problems],
+    }
+
+
+def _equations(entry: Entry) -> dict[str, Any]:
+    from acsolve.equations.naming import safe_names
+    from acsolve.equations.write import Spelling, expression_text
+
+    found = _filled(entry.equations)
+    names = safe_names(found.symbols())
+    spelling = Spelling(names, "**")
+    size = range(found.size)
+    return {
+        "unknowns": list(found.unknowns),
+        "matrix": [
+            [expression_text(found.entry(row, column), spelling) for column in size]
+            for row in size
+        ],
+        "excitation": [expression_text(item, spelling) for item in found.excitation],
+        "meanings": list(found.meanings),
+        "references": list(found.references),
+        "symbols": _replaced(names),
+    }
+
+
+_BODIES = {
+    "transfer": _closed_form,
+    "impedance": _closed_form,
+    "cutoff": _cutoff,
+    "sweep": _sweep,
+    "check": _check,
+    "equations": _equations,
+}

@@ -1,0 +1,226 @@
+"""Pictures of responses: magnitude over phase, one frequency axis, SI labels."""
+
+from __future__ import annotations
+
+import io
+import logging
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from acsolve.report.axes import (
+    degree_steps,
+    picture_unit,
+    set_frequency_axis,
+    set_magnitude_axis,
+)
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+    from matplotlib.figure import Figure
+
+    from acsolve.analyses.sweep import Sweep
+
+#: Hues told apart with any colour vision (after M. Okabe and K. Ito, "Color universal
+#: design", 2008), each with a dash pattern and falling lightness for print without colour.
+_LINES: tuple[tuple[str, Any], ...] = (
+    ("#0072b2", "solid"),
+    ("#d55e00", (0, (7, 2.5))),
+    ("#007f5f", (0, (1.6, 1.6))),
+    ("#8a4f7d", (0, (8, 2, 1.6, 2))),
+    ("#4d4d4d", (0, (3.5, 1.5))),
+    ("#b8860b", (0, (8, 2, 1.6, 2, 1.6, 2))),
+)
+LARGEST = len(_LINES)
+_INK, _PALE = "#222222", "#c9c9c9"
+_SETTINGS = {
+    "font.family": "DejaVu Sans",
+    "font.size": 9.5,
+    "svg.hashsalt": "acsolve",
+    "svg.fonttype": "path",
+    "axes.unicode_minus": True,
+    "path.simplify": True,
+}
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Curve:
+    """One response with its name and the frequencies to mark on it, in hertz."""
+
+    sweep: Sweep
+    label: str
+    marks: tuple[float, ...] = ()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Picture:
+    """What is drawn: the curves, their unit and how the frequency axis runs."""
+
+    curves: tuple[Curve, ...]
+    title: str = ""
+    subtitle: str = ""
+    unit: str = ""
+    linear: bool = False
+    level_db: float | None = None
+
+
+def picture_content(picture: Picture, ending: str) -> bytes:
+    """The picture as the bytes of an svg, png or pdf file, the same on every run."""
+    logging.getLogger("matplotlib").setLevel(logging.ERROR)
+    import matplotlib as mpl
+
+    with mpl.rc_context(_SETTINGS):
+        store = io.BytesIO()
+        figure(picture).savefig(
+            store, format=ending, dpi=160, metadata=_METADATA[ending], facecolor="white"
+        )
+    return store.getvalue()
+
+
+_METADATA: dict[str, dict[str, Any]] = {
+    "svg": {"Date": None, "Creator": None},
+    "png": {"Software": None},
+    "pdf": {"CreationDate": None, "Creator": None, "Producer": None},
+}
+
+
+def figure(picture: Picture) -> Figure:
+    """The picture as a figure with two axes, magnitude above phase."""
+    from matplotlib.figure import Figure
+
+    drawn = Figure(figsize=(7.2, 5.4), layout="constrained")
+    upper, lower = drawn.subplots(2, 1, sharex=True, height_ratios=(3, 2))
+    for axes in (upper, lower):
+        _plain_axes(axes)
+    for place, curve in enumerate(picture.curves):
+        _draw(upper, lower, curve, place, picture)
+    set_magnitude_axis(upper, _sizes(picture), picture.unit)
+    _phase_axis(lower, picture)
+    set_frequency_axis(lower, _hertz(picture), linear=picture.linear)
+    upper.tick_params(labelbottom=False)
+    if picture.level_db is not None:
+        _level_line(upper, picture)
+    if len(picture.curves) > 1:
+        upper.legend(frameon=False, handlelength=3.2, loc="best")
+    _titles(upper, picture)
+    drawn.align_ylabels([upper, lower])
+    return drawn
+
+
+def _plain_axes(axes: Axes) -> None:
+    for side in ("top", "right"):
+        axes.spines[side].set_visible(False)
+    for side in ("left", "bottom"):
+        axes.spines[side].set_color(_INK)
+        axes.spines[side].set_linewidth(0.8)
+    axes.grid(visible=True, which="major", color=_PALE, linewidth=0.6)
+    axes.tick_params(colors=_INK, width=0.8)
+    axes.set_axisbelow(True)
+
+
+def magnitude(sweep: Sweep, unit: str) -> Any:
+    """What is drawn upwards: dB of a ratio, else the magnitude in its unit."""
+    gain = np.asarray(sweep.gain_db, dtype=float)
+    with np.errstate(over="ignore", under="ignore"):  # an infinite size is a gap in the curve
+        size = 10 ** (gain / 20) if unit else gain
+    return np.where(np.isfinite(size) & ((size > 0) | (not unit)), size, np.nan)
+
+
+def _draw(upper: Axes, lower: Axes, curve: Curve, place: int, picture: Picture) -> None:
+    colour, dashes = _LINES[place % LARGEST]
+    style = {"color": colour, "linestyle": dashes, "linewidth": 1.7, "label": curve.label}
+    few = len(curve.sweep.hertz) <= 12
+    style |= {"marker": "o", "markersize": 4} if few else {}
+    size = magnitude(curve.sweep, picture.unit)
+    upper.plot(curve.sweep.hertz, size, **style)
+    lower.plot(curve.sweep.hertz, curve.sweep.phase_deg, **style)
+    for mark in curve.marks:
+        _mark(upper, lower, curve, mark, picture)
+
+
+def _mark(upper: Axes, lower: Axes, curve: Curve, mark: float, picture: Picture) -> None:
+    from acsolve.report.axes import tick_text
+
+    hertz = np.asarray(curve.sweep.hertz, dtype=float)
+    if not hertz[0] <= mark <= hertz[-1]:
+        return
+    line = {"color": _INK, "linewidth": 0.9, "linestyle": (0, (4, 3)), "zorder": 1.5}
+    upper.axvline(mark, **line)
+    lower.axvline(mark, **line)
+    axis = hertz if picture.linear else np.log(np.maximum(hertz, 1e-300))
+    where = mark if picture.linear else np.log(mark)
+    size = np.interp(where, axis, magnitude(curve.sweep, picture.unit))
+    upper.plot([mark], [size], "o", color=_INK, markersize=4.5, zorder=4)
+    upper.annotate(
+        tick_text(mark, "Hz", 4),
+        xy=(mark, 1.0),
+        xycoords=("data", "axes fraction"),
+        xytext=(3, -3),
+        textcoords="offset points",
+        ha="left",
+        va="top",
+        color=_INK,
+        backgroundcolor=(1, 1, 1, 0.8),
+        fontsize=8.5,
+    )
+
+
+def _level_line(axes: Axes, picture: Picture) -> None:
+    assert picture.level_db is not None, "drawn only where there is a level"
+    height = 10 ** (picture.level_db / 20) if picture.unit else picture.level_db
+    axes.axhline(height, color=_INK, linewidth=0.9, linestyle=(0, (4, 3)), zorder=1.5)
+
+
+def _titles(axes: Axes, picture: Picture) -> None:
+    """Title and question in words, flush left with the axes."""
+    from textwrap import wrap
+
+    lines = wrap(picture.title, 78)[:2]
+    below = wrap(picture.subtitle, 100)[:2]
+    if lines:
+        axes.set_title("\n".join(lines), loc="left", fontsize=11, color=_INK, pad=8 + 13 * len(below))
+    if below:
+        axes.annotate(
+            "\n".join(below),
+            xy=(0, 1),
+            xycoords="axes fraction",
+            xytext=(0, 6),
+            textcoords="offset points",
+            va="bottom",
+            fontsize=9,
+            color="#555555",
+        )
+
+
+def _phase_axis(axes: Axes, picture: Picture) -> None:
+    phases = [np.asarray(curve.sweep.phase_deg, dtype=float) for curve in picture.curves]
+    known = np.concatenate([item[np.isfinite(item)] for item in phases] or [np.zeros(0)])
+    low, high = (float(known.min()), float(known.max())) if known.size else (0.0, 0.0)
+    ticks = degree_steps(low, high)
+    axes.set_yticks(ticks)
+    span = ticks[-1] - ticks[0]
+    axes.set_ylim(ticks[0] - 0.04 * span, ticks[-1] + 0.04 * span)
+    axes.set_ylabel("phase (°)", color=_INK)
+
+
+def _sizes(picture: Picture) -> Any:
+    return np.concatenate([magnitude(curve.sweep, picture.unit) for curve in picture.curves])
+
+
+def _hertz(picture: Picture) -> Any:
+    return np.concatenate([np.asarray(curve.sweep.hertz) for curve in picture.curves])
+
+
+def curve_labels(labels: Sequence[str]) -> tuple[str, ...]:
+    """Distinct names for the legend: repeated ones are numbered."""
+    seen: dict[str, int] = {}
+    named = []
+    for label in labels:
+        seen[label] = seen.get(label, 0) + 1
+        named.append(label if seen[label] == 1 else f"{label} ({seen[label]})")
+    return tuple(named)
+
+
+__all__ = ["LARGEST", "Curve", "Picture", "curve_labels", "figure", "picture_content", "picture_unit"]
