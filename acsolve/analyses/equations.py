@@ -16,7 +16,7 @@ from acsolve.circuit.expression import (
 )
 from acsolve.circuit.graph import constant
 from acsolve.circuit.netlist import Netlist, Pair, Part, bindings
-from acsolve.equations.exact import Expander, Symbols
+from acsolve.equations.exact import Expander, Symbols, with_symbols
 from acsolve.equations.system import DRIVE, System, assemble
 from acsolve.equations.write import Spelling, expression_text
 
@@ -79,6 +79,7 @@ def equations(
     symbols : which values stay symbols, as for closed forms.
     """
     expand = Expander(bindings(netlist), symbols or Symbols())
+    netlist = with_symbols(netlist, symbols or Symbols())
     system = assemble(netlist, drive=drive, branch_for=lambda part: _is_zero(netlist, part, expand))
     system = replace(
         system,

@@ -117,10 +117,11 @@ def nested_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> N
         [equations.singular] the network has no unique solution.
     """
     expand = Expander(bindings(netlist), symbols or Symbols())
-    system = ask.system(netlist)
+    asked = with_symbols(netlist, symbols or Symbols())
+    system = ask.system(asked)
     refuse_unreferenced(system, ask)
     if exact_system(system, expand).plan.width > _NARROW:
-        system = ask.system(netlist, branch_for=lambda part: _plainly_zero(part, expand))
+        system = ask.system(asked, branch_for=lambda part: _plainly_zero(part, expand))
     probe = _Probe()
     taken = frozenset(bindings(netlist))
     found = nested(system, ask.observed(system), ask.driven(system), expand, probe, taken)
@@ -134,7 +135,7 @@ def nested_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> N
             )
         )
     form = NestedForm(ask, found.steps, found.result, bindings(netlist))
-    return replace(form, checked=_check(netlist, form))
+    return replace(form, checked=_check(asked, form))
 
 
 def _plainly_zero(part: Part, expand: Expander) -> bool:

@@ -10,6 +10,8 @@ from typing import TYPE_CHECKING, Any, TypeVar
 import acsolve
 from acsolve import AcsolveError, AnalysisError, Circuit, Diagnostic, Path
 from acsolve.cli.options import Options, refused
+from acsolve.cli.status import is_of_the_call
+from acsolve.cli.usage import near
 
 if TYPE_CHECKING:
     from acsolve.report.entry import Entry, Heading
@@ -24,7 +26,17 @@ def open_circuit(options: Options) -> Circuit:
         if not (sign and name and value):
             raise refused(f"--let {text} is not NAME=VALUE", "Write, say, --let R1=4k7.")
         changes[name] = value
+    _refuse_unknown(circuit, options.kept)
     return circuit.with_values(changes) if changes else circuit
+
+
+def _refuse_unknown(circuit: Circuit, kept: Sequence[str]) -> None:
+    """Refuse a name to keep that the circuit does not have: it would silently do nothing."""
+    known = {name for name, _ in circuit.netlist.values()}
+    for name in kept:
+        if name not in known:
+            hint = near(name, known) or "Name parts, attributes or quantities of the circuit."
+            raise refused(f"--keep names {name}, which this circuit does not have", hint)
 
 
 def heading(circuit: Circuit, options: Options) -> Heading:
@@ -124,7 +136,9 @@ def _placed(error: AcsolveError, item: Asked) -> AcsolveError:
     causes = _causes(error, item)
     span = item.question.span if item.question is not None else None
     placed = [
-        replace(found, span=span) if found.span is None and found.where is None else found
+        found
+        if found.span is not None or found.where is not None or is_of_the_call(found)
+        else replace(found, span=span)
         for found in error.diagnostics
     ]
     return type(error)([*causes, *placed])

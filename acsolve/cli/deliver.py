@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING
 
 from acsolve import AcsolveError, Path
 from acsolve.cli.options import Options, refused
-from acsolve.cli.run import ANSWERED, report, status_of
+from acsolve.cli.complaint import report
+from acsolve.cli.status import ANSWERED, status_of
 
 if TYPE_CHECKING:
     from acsolve.report.entry import Entry

@@ -4,28 +4,14 @@ from __future__ import annotations
 
 import os
 import sys
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 
 import click
 
-from acsolve import AcsolveError, AnalysisError, Diagnostic, EquationError
+from acsolve import AcsolveError
+from acsolve.cli.complaint import report
+from acsolve.cli.status import ANSWERED, DEFECT, NO_ANSWER, PIPE_CLOSED, STOPPED, WRONG, status_of
 from acsolve.cli.usage import usage_problem
-
-ANSWERED, NO_ANSWER, WRONG, DEFECT, STOPPED, PIPE_CLOSED = 0, 1, 2, 70, 130, 141
-
-#: Codes of questions that are not well put, in contrast to those that have no answer.
-_OF_THE_CALL = (
-    "option.",
-    "command.",
-    "question.unknown",
-    "question.same-node",
-    "question.no-pair",
-    "question.quantity",
-    "question.level",
-    "save.ending",
-    "sweep.",
-    "variant.",
-)
 
 
 def run(arguments: Sequence[str]) -> int:
@@ -60,10 +46,10 @@ def _dispatch(arguments: Sequence[str], *, as_json: bool) -> int:
     except click.exceptions.Exit as leave:
         return leave.exit_code
     except click.UsageError as error:
-        report([usage_problem(error)], as_json=as_json)
+        report([usage_problem(error, arguments)], as_json=as_json)
         return WRONG
     except AcsolveError as error:
-        report(error.diagnostics, as_json=as_json)
+        report(error.diagnostics, arguments=arguments, as_json=as_json)
         return status_of(error)
     except BrokenPipeError:
         raise
@@ -75,26 +61,6 @@ def _dispatch(arguments: Sequence[str], *, as_json: bool) -> int:
             raise
         sys.stderr.write(_defect(error))
         return DEFECT
-
-
-def status_of(error: AcsolveError) -> int:
-    """1 where the question has no answer, 2 where the file or the call is wrong."""
-    if isinstance(error, AnalysisError | EquationError):
-        codes = [item.code for item in error.diagnostics]
-        return WRONG if any(code.startswith(_OF_THE_CALL) for code in codes) else NO_ANSWER
-    return WRONG
-
-
-def report(problems: Iterable[Diagnostic], *, as_json: bool) -> None:
-    """Show problems: frames on standard error, or one JSON document on standard output."""
-    if as_json:
-        from acsolve.report.json import errors_text
-
-        sys.stdout.write(errors_text(problems))
-        return
-    from acsolve.report.text import problems_text
-
-    sys.stderr.write(problems_text(problems))
 
 
 def _defect(error: Exception) -> str:

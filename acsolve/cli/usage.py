@@ -2,16 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 import click
 
 from acsolve import Diagnostic
 
 
-def usage_problem(error: click.UsageError) -> Diagnostic:
+def usage_problem(error: click.UsageError, arguments: Sequence[str]) -> Diagnostic:
     """A mistake in the command line as a diagnostic."""
-    command = error.ctx.command_path if error.ctx else "acsolve"
+    command = error.ctx.command_path if error.ctx else " ".join(["acsolve", *arguments[:1]])
     hint = f"Run {command} --help for what it takes."
     if isinstance(error, click.NoSuchOption):
         known = error.ctx.command.params if error.ctx else []

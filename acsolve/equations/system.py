@@ -19,7 +19,13 @@ from dataclasses import dataclass, field
 from typing import Literal
 
 from acsolve.circuit.expression import MINUS_ONE, ONE, ZERO, Expression, S, add, multiply, negate
-from acsolve.circuit.graph import Groups, natural_key, reference_groups
+from acsolve.circuit.graph import (
+    DisjointSets,
+    Groups,
+    is_short,
+    natural_key,
+    reference_groups,
+)
 from acsolve.circuit.netlist import Netlist, Pair, Part
 from acsolve.equations.stamp import STAMPS, mutual_inductance
 
@@ -190,6 +196,7 @@ def assemble(
     groups = reference_groups(netlist, joined=joined, apart=idle_sources(netlist, drive))
     board = _Board(groups=groups, branch_for=branch_for, own_sources=drive is None)
     parts = sorted(acting(netlist, drive), key=lambda part: natural_key(part.name))
+    parts = without_idle_loops(netlist, parts, own_sources=drive is None)
     for node in sorted(_nodes(parts, joined), key=natural_key):
         board.node(node)
     for part in parts:
@@ -213,6 +220,37 @@ def acting(netlist: Netlist, drive: Pair | None) -> Iterable[Part]:
         source = part.kind in ("voltage_source", "current_source")
         if not (source and drive is not None and set(part.nodes) == set(drive)):
             yield part
+
+
+def without_idle_loops(
+    netlist: Netlist, parts: list[Part], *, own_sources: bool
+) -> list[Part]:
+    """The parts without shorts that lie in parallel with other shorts.
+
+    Two links of zero ohm beside each other share their current in a way that nothing
+    determines, and that no voltage depends on: one of them is enough. Ammeters are kept
+    in preference to shorts that nobody asks.
+    """
+    shorts = [part for part in parts if _is_zero_volt(netlist, part, own_sources)]
+    if len(shorts) < 2 and not any(part.nodes[0] == part.nodes[1] for part in shorts):
+        return parts
+    sets = DisjointSets(node for part in shorts for node in part.nodes)
+    idle = {
+        part.name
+        for part in sorted(shorts, key=lambda part: part.kind != "ammeter")
+        if not sets.join(*part.nodes)
+    }
+    return [part for part in parts if part.name not in idle]
+
+
+def _is_zero_volt(netlist: Netlist, part: Part, own_sources: bool) -> bool:
+    if part.kind == "voltage_source":
+        return not own_sources
+    if part.kind == "inductor" and any(
+        part.name in (item.first, item.second) for item in netlist.couplings
+    ):
+        return False
+    return part.kind == "ammeter" or is_short(netlist, part)
 
 
 def idle_sources(netlist: Netlist, drive: Pair | None) -> frozenset[str]:

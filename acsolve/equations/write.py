@@ -114,7 +114,7 @@ def power_text(base: str, power: Fraction, spelling: Spelling) -> str:
     """A factor to a power as text."""
     if power == 1:
         return base
-    if spelling.power in base and base[0] != "(":
+    if spelling.power in base:
         base = f"({base})"
     exponent = str(power) if power.denominator == 1 and power > 0 else f"({power})"
     return f"{base}{spelling.power}{exponent}"
@@ -148,9 +148,16 @@ def expression_text(expression: Expression, spelling: Spelling) -> str:
         case Quotient(left, right):
             return f"{_factor(left, spelling)}/{item_text(right, spelling)}"
         case Power(base, exponent):
-            return f"{item_text(base, spelling)}{spelling.power}{item_text(exponent, spelling)}"
+            return _power_item(base, exponent, spelling)
         case Call():
             return _call_text(expression, spelling)
+
+
+def _power_item(base: Expression, exponent: Expression, spelling: Spelling) -> str:
+    """base to an exponent; a power of a power takes brackets."""
+    first = item_text(base, spelling)
+    first = f"({first})" if isinstance(base, Power) else first
+    return f"{first}{spelling.power}{item_text(exponent, spelling)}"
 
 
 def _call_text(expression: Call, spelling: Spelling) -> str:

@@ -89,9 +89,7 @@ def log_ticks(low: float, high: float) -> list[float]:
     best: list[float] = []
     for digits in sets if step == 1 else sets[:1]:
         start = step * floor(first / step)
-        ticks = [
-            digit * 10.0**power for power in range(start, last + 1, step) for digit in digits
-        ]
+        ticks = [digit * 10.0**power for power in range(start, last + 1, step) for digit in digits]
         inside = [tick for tick in ticks if low * (1 - 1e-9) <= tick <= high * (1 + 1e-9)]
         if len(inside) > _MOST_TICKS:
             break

@@ -34,7 +34,10 @@ def check_lines(entry: Entry) -> list[str]:
     for item in found.problems[:_FRAMES_SHOWN]:
         lines += ["", *frame(item).split("\n")]
     if len(found.problems) > _FRAMES_SHOWN:
-        lines += ["", f"… and {len(found.problems) - _FRAMES_SHOWN} more; --json gives all of them."]
+        lines += [
+            "",
+            f"… and {len(found.problems) - _FRAMES_SHOWN} more; --json gives all of them.",
+        ]
     return lines
 
 

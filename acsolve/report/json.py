@@ -26,9 +26,7 @@ def answers_text(entries: Iterable[Entry]) -> str:
     return _dump({"format": FORMAT, "answers": [answer(entry) for entry in entries]})
 
 
-def errors_text(
-    problems: Iterable[Diagnostic], answers: Iterable[Entry] | None = None
-) -> str:
+def errors_text(problems: Iterable[Diagnostic], answers: Iterable[Entry] | None = None) -> str:
     """Problems as one JSON document, with what could be answered where that is useful."""
     document: dict[str, Any] = {"format": FORMAT}
     if answers is not None:
@@ -38,7 +36,7 @@ def errors_text(
 
 
 def _dump(document: Mapping[str, Any]) -> str:
-    return json.dumps(document, allow_nan=False, ensure_ascii=False, indent=1) + "\n"
+    return json.dumps(document, allow_nan=False, ensure_ascii=False) + "\n"
 
 
 def problem(item: Diagnostic) -> dict[str, Any]:
@@ -51,6 +49,7 @@ def problem(item: Diagnostic) -> dict[str, Any]:
         "file": span.source.name if span else None,
         "line": span.line if span else None,
         "column": span.column if span else None,
+        "where": item.where,
         "hint": item.hint,
     }
 
@@ -271,8 +270,7 @@ def _equations(entry: Entry) -> dict[str, Any]:
     return {
         "unknowns": list(found.unknowns),
         "matrix": [
-            [expression_text(found.entry(row, column), spelling) for column in size]
-            for row in size
+            [expression_text(found.entry(row, column), spelling) for column in size] for row in size
         ],
         "excitation": [expression_text(item, spelling) for item in found.excitation],
         "meanings": list(found.meanings),

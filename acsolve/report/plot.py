@@ -180,7 +180,9 @@ def _titles(axes: Axes, picture: Picture) -> None:
     lines = wrap(picture.title, 78)[:2]
     below = wrap(picture.subtitle, 100)[:2]
     if lines:
-        axes.set_title("\n".join(lines), loc="left", fontsize=11, color=_INK, pad=8 + 13 * len(below))
+        axes.set_title(
+            "\n".join(lines), loc="left", fontsize=11, color=_INK, pad=8 + 13 * len(below)
+        )
     if below:
         axes.annotate(
             "\n".join(below),
@@ -223,4 +225,12 @@ def curve_labels(labels: Sequence[str]) -> tuple[str, ...]:
     return tuple(named)
 
 
-__all__ = ["LARGEST", "Curve", "Picture", "curve_labels", "figure", "picture_content", "picture_unit"]
+__all__ = [
+    "LARGEST",
+    "Curve",
+    "Picture",
+    "curve_labels",
+    "figure",
+    "picture_content",
+    "picture_unit",
+]

@@ -54,8 +54,7 @@ def _unfit(name: str, kind: Kind) -> Diagnostic | None:
         what = f"the ending .{found}" if found else "no ending"
         return Diagnostic(
             code="save.ending",
-            message=f"{name} has {what}, and {_with_article(kind)} is saved as "
-            f"{_listed(known)}",
+            message=f"{name} has {what}, and {_with_article(kind)} is saved as {_listed(known)}",
             hint=f"Name a file such as answer.{known[0]}.",
         )
     target = Path(os.path.realpath(name))

@@ -39,7 +39,11 @@ def shown_rows(count: int, longest: int = _LONGEST) -> list[int]:
 
 def _row(found: Sweep, place: int, unit: str) -> list[str]:
     gain = float(found.gain_db[place])
-    size = engineering(10 ** (gain / 20), unit, even=True) if unit and gain < 6000 else fixed(gain, 3, "dB")
+    size = (
+        engineering(10 ** (gain / 20), unit, even=True)
+        if unit and gain < 6000
+        else fixed(gain, 3, "dB")
+    )
     return [
         engineering(float(found.hertz[place]), "Hz"),
         size,

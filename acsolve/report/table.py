@@ -28,7 +28,9 @@ def aligned(
     lines = []
     for row in table:
         cells = [
-            cell.rjust(widths[k]) if k < len(sides) and sides[k] == "right" else cell.ljust(widths[k])
+            cell.rjust(widths[k])
+            if k < len(sides) and sides[k] == "right"
+            else cell.ljust(widths[k])
             for k, cell in enumerate(row)
         ]
         lines.append((" " * indent + (" " * gap).join(cells)).rstrip())

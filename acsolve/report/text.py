@@ -56,5 +56,7 @@ def problems_text(problems: Iterable[Diagnostic]) -> str:
     listed = list(problems)
     texts = [frame(item) for item in listed[:_FRAMES_SHOWN]]
     if len(listed) > _FRAMES_SHOWN:
-        texts.append(f"… and {len(listed) - _FRAMES_SHOWN} more problems; --json gives all of them.")
+        texts.append(
+            f"… and {len(listed) - _FRAMES_SHOWN} more problems; --json gives all of them."
+        )
     return "\n\n".join(texts) + "\n"

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import sys
 
-from acsolve.cli.asking import heading, open_circuit
+from acsolve.cli.asking import open_circuit
 from acsolve.cli.deliver import deliver
 from acsolve.cli.options import OUTPUT, VALUES, Options, make_command
 from acsolve.cli.progress import progress
-from acsolve.cli.run import WRONG
+from acsolve.cli.status import WRONG
 
 
 def work(options: Options) -> int:

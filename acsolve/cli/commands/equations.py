@@ -19,7 +19,9 @@ def work(options: Options) -> int:
     circuit = open_circuit(options)
     shared = heading(circuit, options)
     with progress("writing the equations"):
-        found = circuit.equations(_drive(circuit, options), symbolic=options.symbolic, keep=options.kept)
+        found = circuit.equations(
+            _drive(circuit, options), symbolic=options.symbolic, keep=options.kept
+        )
     entry = Entry(kind="equations", heading=shared, equations=found)
     return deliver([(None, entry)], options)
 
