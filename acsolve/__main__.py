@@ -8,8 +8,10 @@ from typing import NoReturn
 
 def main() -> NoReturn:
     """Run the command line and leave with its exit status."""
-    from acsolve.cli.run import run
-
+    try:
+        from acsolve.cli.run import run
+    except KeyboardInterrupt:
+        sys.exit(130)
     sys.exit(run(sys.argv[1:]))
 
 

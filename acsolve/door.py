@@ -261,6 +261,19 @@ class Path:
     circuit: Circuit
     ask: Ask
 
+    def problems(self) -> tuple[Diagnostic, ...]:
+        """What stands against the question, errors and warnings, found from the graph alone."""
+        from acsolve.circuit.check import check_question
+
+        ask = self.ask
+        return check_question(
+            self.circuit.netlist,
+            ask.source,
+            ask.target,
+            quantity="voltage-ratio" if ask.quantity == "response" else ask.quantity,
+            ammeter=ask.ammeter,
+        )
+
     def closed_form(
         self, *, symbolic: bool = False, keep: Iterable[str] = (), budget: int | None = None
     ) -> ClosedForm:

@@ -88,12 +88,22 @@ def coupling(first: str, second: str, k: int | Fraction | None) -> Coupling:
     return Coupling(first=first, second=second, coefficient=Value(expression=_expression(k)))
 
 
-@st.composite
-def plain_values(draw, *, symbols: bool, sign: bool = False) -> Value:
-    """A rational number, or a symbol where these are allowed."""
-    if symbols and draw(st.booleans()):
-        return Value()
-    return Value(expression=Number(draw(signed if sign else positives)))
+_POSITIVE = positives.map(lambda number: Value(expression=Number(number)))
+_SIGNED = signed.map(lambda number: Value(expression=Number(number)))
+_SYMBOL = st.just(Value())
+_ZERO = st.just(Value(expression=Number(Fraction(0))))
+
+
+def plain_values(
+    *, symbols: bool, sign: bool = False, odd: bool = False
+) -> st.SearchStrategy[Value]:
+    """A rational number or, where allowed, a symbol, zero or a negative number."""
+    choices = [_SIGNED if sign or odd else _POSITIVE]
+    if symbols:
+        choices.append(_SYMBOL)
+    if odd:
+        choices.append(_ZERO)
+    return st.one_of(choices)
 
 
 @st.composite
@@ -121,12 +131,14 @@ _OPAMP = ("open_loop_gain", "gain_bandwidth", "input_resistance", "output_resist
 
 
 @st.composite
-def lumped(draw, name: str, kind: str, nodes: Sequence[str], *, symbols: bool) -> Part:
+def lumped(
+    draw, name: str, kind: str, nodes: Sequence[str], *, symbols: bool, odd: bool = False
+) -> Part:
     """A part of one kind with drawn values, lossy now and then."""
     value = plain_values(symbols=symbols)
     values: dict[str, Value] = {}
     if kind in _LOSSES:
-        values["value"] = draw(value)
+        values["value"] = draw(plain_values(symbols=symbols, odd=odd))
         for loss in draw(st.sets(st.sampled_from(_LOSSES[kind]))) if draw(st.booleans()) else ():
             at = number(draw(positives)) if loss == "quality" else None
             values[loss] = replace(draw(value), at_hertz=at)
@@ -138,7 +150,8 @@ def lumped(draw, name: str, kind: str, nodes: Sequence[str], *, symbols: bool) -
         chosen = draw(st.sets(st.sampled_from(_OPAMP))) if draw(st.booleans()) else set()
         values = {item: draw(value) for item in _OPAMP if item in chosen}
     elif KINDS[kind].principal is not None:
-        values[KINDS[kind].principal or ""] = draw(plain_values(symbols=symbols, sign=True))
+        principal = KINDS[kind].principal or ""
+        values[principal] = draw(plain_values(symbols=symbols, sign=True, odd=odd))
     return Part(name=name, kind=kind, nodes=tuple(nodes), values=values)
 
 
@@ -153,6 +166,7 @@ def connected(
     tree: Sequence[str] = PASSIVE,
     extra: Sequence[str] = PASSIVE,
     symbols: bool = False,
+    odd: bool = False,
     most_nodes: int = 6,
     most_extra: int = 5,
     grounded: bool = True,
@@ -173,10 +187,10 @@ def connected(
             places[1] = next(node for node in nodes if node != places[0])
         ends.append((kind, places))
     parts = [
-        draw(lumped(f"{_letter(kind)}{at}", kind, places, symbols=symbols))
+        draw(lumped(f"{_letter(kind)}{at}", kind, places, symbols=symbols, odd=odd))
         for at, (kind, places) in enumerate(ends)
     ]
-    couplings = draw(_couplings(parts, symbols=symbols))
+    couplings = () if odd else draw(_couplings(parts, symbols=symbols))
     return Netlist(parts=tuple(draw(st.permutations(parts))), couplings=couplings)
 
 
@@ -190,15 +204,29 @@ def _couplings(draw, parts: Sequence[Part], *, symbols: bool) -> tuple[Coupling,
     return (coupling(coils[0], coils[1], size if size is not None or symbols else 1),)
 
 
-def any_lumped(*, symbols: bool, grounded: bool = True) -> st.SearchStrategy[Netlist]:
-    """A connected network of any lumped parts."""
+def any_lumped(
+    *, symbols: bool, odd: bool = False, grounded: bool = True
+) -> st.SearchStrategy[Netlist]:
+    """A connected network of any lumped parts; `odd` ones may be zero or negative."""
     return connected(
         tree=(*PASSIVE, *IMMITTANCES),
         extra=(*LUMPED, *FOUR_TERMINALS, "opamp"),
         symbols=symbols,
+        odd=odd,
         most_nodes=8,
         grounded=grounded,
     )
+
+
+@st.composite
+def scattered(draw) -> Netlist:
+    """Any lumped parts between any nodes: floating, shorted and contradictory ones among them."""
+    parts = []
+    for at in range(draw(st.integers(1, 7))):
+        kind = draw(st.sampled_from((*LUMPED, *PASSIVE, *FOUR_TERMINALS, "voltage_source")))
+        places = [draw(st.sampled_from(NODES[:6])) for _ in KINDS[kind].terminals]
+        parts.append(draw(lumped(f"{_letter(kind)}{at}", kind, places, symbols=True, odd=True)))
+    return Netlist(parts=tuple(parts))
 
 
 @st.composite

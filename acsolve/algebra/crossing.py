@@ -74,25 +74,56 @@ def _directed(roots: list[tuple[Isolated, bool]], *, start_positive: bool) -> tu
 
 
 def enclosed_crossings(coefficients: Callable[[], Sequence[Any]]) -> Crossings:
-    """The positive roots where coefficients are known as balls.
+    """The positive roots of a polynomial whose coefficients are known as balls.
 
     `coefficients` computes them at the precision in force. Proven for the enclosure, or
-    `complete` is False and nothing is listed.
+    `complete` is False and nothing is listed: a multiple root, say, is never certain.
+    """
+    return factored_crossings([(1, coefficients)], coefficients)
+
+
+def factored_crossings(
+    factors: Sequence[tuple[int, Callable[[], Sequence[Any]]]],
+    whole: Callable[[], Sequence[Any]],
+) -> Crossings:
+    """The positive roots of a polynomial given by its square-free factors as balls.
+
+    Parameters
+    ----------
+    factors : (multiplicity, coefficients by rising power at the precision in force).
+    whole : the coefficients of the polynomial itself, for its sign near zero.
     """
     from flint import arb_poly
 
+    roots: list[tuple[Isolated, bool]] = []
+    for multiplicity, coefficients in factors:
+        isolated = _decided(positive_roots, coefficients)
+        if isolated is None:
+            return Crossings((), complete=False)
+        evaluate = _evaluator(partial(_read, arb_poly, coefficients))
+        roots += [(refined(root, evaluate), multiplicity % 2 == 1) for root in isolated]
+    start = _decided(_first_sign, whole)
+    if start is None:
+        return Crossings((), complete=False)
+    roots.sort(key=lambda item: item[0].low)
+    return Crossings(_directed(roots, start_positive=start > 0), complete=True)
+
+
+def _read(kind: Callable[[Any], Any], coefficients: Callable[[], Sequence[Any]]) -> Any:
+    return kind(list(coefficients()))
+
+
+def _decided(
+    work: Callable[[Sequence[Any]], Any], coefficients: Callable[[], Sequence[Any]]
+) -> Any:
+    """The result of some work at the first precision that decides it, or None."""
     for bits in (256, 1024, 4096):
         with precision(bits):
             try:
-                values = list(coefficients())
-                isolated = positive_roots(values)
-                start = _first_sign(values)
+                return work(list(coefficients()))
             except UndecidedError:
                 continue
-        evaluate = _evaluator(lambda: arb_poly(list(coefficients())))
-        roots = [(refined(root, evaluate), True) for root in isolated]
-        return Crossings(_directed(roots, start_positive=start > 0), True)
-    return Crossings((), False)
+    return None
 
 
 def _first_sign(values: Sequence[Any]) -> int:
@@ -101,6 +132,6 @@ def _first_sign(values: Sequence[Any]) -> int:
             return 1
         if value < 0:
             return -1
-        if value != 0:
+        if not value == 0:  # a ball around zero is neither equal nor unequal to it
             raise UndecidedError("the sign near zero is not certain")
     return 0

@@ -22,6 +22,7 @@ Samples: TypeAlias = list[complex]
 
 _THRESHOLD = 0.02  # least size of a pivot against its column or row, after equilibration
 _CANCELLED = 1e-9  # a number this small against what it was made of counts as zero
+_LAST_RESORT = 1e-12  # relative size given to what is zero at some samples, but not at all
 _LINES = 4  # lines of a similar count that are compared before one is taken (empirical)
 _EQUILIBRATIONS = 4  # passes; each halves the exponents that are left
 
@@ -207,20 +208,20 @@ class _Elimination:
             if best is not None and cost > best[0]:
                 continue
             size = self._relative_size(slot, here, across[other])
-            if size > 0 and size >= threshold:
+            if size > threshold:
                 row, column = (at, other) if kind else (other, at)
                 candidate = (cost, -size, row, column)
                 best = candidate if best is None else min(best, candidate)
         return best
 
     def _relative_size(self, slot: int, here: list[float] | None, there: dict[int, int]) -> float:
-        """Least size over the samples against its row or column, 1 for a single, 0 for zero."""
-        sizes = [abs(value) for value in self.values[slot]]
-        live = [
-            size > _CANCELLED * made for size, made in zip(sizes, self.made_of[slot], strict=True)
+        """Least size over the samples against its row or column; 1 alone there, 0 for zero."""
+        sizes = [
+            size if size > _CANCELLED * made else 0.0
+            for size, made in zip(map(abs, self.values[slot]), self.made_of[slot], strict=True)
         ]
-        if not all(live):
-            return 0.0
+        if not all(sizes):
+            return _LAST_RESORT * any(sizes)
         if here is None or len(there) == 1:
             return 1.0
         limits = map(min, here, self._largest(there))
@@ -236,6 +237,7 @@ class _Elimination:
         pivot_row, pivot_column = by_row[row], by_column[column]
         pivot = pivot_row.pop(column)
         del pivot_column[row]
+        self.values[pivot] = [value or 1.0 for value in self.values[pivot]]  # a last resort
         targets: list[int] = []
         for other_row, slot in pivot_column.items():
             self._update(other_row, slot, pivot, pivot_row, targets)

@@ -24,10 +24,14 @@ class UndecidedError(ArithmeticError):
 
 @dataclass(frozen=True, slots=True)
 class Isolated:
-    """One root in the open interval (low, high), or at low where both are equal."""
+    """One root in the open interval (low, high), or at low where both are equal.
+
+    `sign` is that of the polynomial just above `low`, which may be a root of its own.
+    """
 
     low: Fraction
     high: Fraction
+    sign: int = 0
 
 
 def positive_roots(coefficients: Coefficients) -> list[Isolated]:
@@ -57,7 +61,7 @@ def positive_roots(coefficients: Coefficients) -> list[Isolated]:
         changes = _variations(poly)
         if changes == 1:
             step = unit / 2**depth
-            found.append(Isolated(place * step, (place + 1) * step))
+            found.append(Isolated(place * step, (place + 1) * step, _sign(poly[0])))
         elif changes > 1:
             left, right, middle_is_root = _halves(poly)
             stack.append((2 * place + 1, depth + 1, right))
@@ -189,7 +193,7 @@ def refined(root: Isolated, polynomial: Callable[[Any], Any], bits: int = 64) ->
     low, high = root.low, root.high
     if low == high:
         return root
-    sign_high = -_sign_right_of(polynomial, low, high)
+    sign_high = -(root.sign or _certain_sign(polynomial, low))
     while (high - low) * 2**bits > high:
         middle = _middle(low, high)
         sign = _certain_sign(polynomial, middle)
@@ -199,7 +203,7 @@ def refined(root: Isolated, polynomial: Callable[[Any], Any], bits: int = 64) ->
             high = middle
         else:
             low = middle
-    return Isolated(low, high)
+    return Isolated(low, high, -sign_high)
 
 
 def _middle(low: Fraction, high: Fraction) -> Fraction:
@@ -211,14 +215,6 @@ def _middle(low: Fraction, high: Fraction) -> Fraction:
     if low == 0:
         return high / 2**16
     return (low + high) / 2
-
-
-def _sign_right_of(polynomial: Callable[[Any], Any], low: Fraction, high: Fraction) -> int:
-    """The sign at `low`, or a little inside where `low` is itself a root."""
-    place, step = low, (high - low) / 2**20
-    while not (sign := _certain_sign(polynomial, place)):
-        place, step = low + step, step / 2
-    return sign
 
 
 def _certain_sign(polynomial: Callable[[Any], Any], place: Fraction) -> int:

@@ -52,42 +52,49 @@ def integer_coefficients(coefficients: Sequence[Fraction]) -> list[int]:
 def _simple_roots(factor: Any) -> list[complex]:
     """The roots of a square-free integer polynomial to double precision.
 
-    Roots come in exact conjugate pairs: one of each pair is computed and mirrored. A root is
-    real where its isolating ball meets the real axis, and imaginary where that of the
-    even or odd part says so.
+    Roots come in exact conjugate pairs: one of each pair is computed and mirrored. Roots on
+    the imaginary axis lie in the common factor of p(x) and p(-x), whose roots are
+    symmetric to both axes: there, an isolated root whose ball meets an axis lies on it.
     """
-    for bits in (128, 256, 512, 1024, 2048, 4096):
-        with precision(bits):
-            balls = [root for root, _ in factor.complex_roots()]
-            if all(_sharp(ball) for ball in balls):
-                return _mirrored(balls, _imaginary_roots(factor))
-    raise ArithmeticError("the roots could not be separated at 4096 bits")
-
-
-def _sharp(ball: Any) -> bool:
-    """Whether both parts are known to double precision, or are zero."""
-    return all(
-        part == 0 or part.contains(0) or float(part.rad()) <= 2.0**-54 * abs(float(part.mid()))
-        for part in (ball.real, ball.imag)
-    ) and float(abs(ball).rad()) <= 2.0**-54 * float(abs(ball).mid())
-
-
-def _imaginary_roots(factor: Any) -> bool:
-    """Whether the polynomial has roots in +/- pairs: p(x) and p(-x) share a factor."""
     from flint import fmpz_poly
 
     mirrored = fmpz_poly([(-1) ** k * int(value) for k, value in enumerate(factor.coeffs())])
-    return bool(factor.gcd(mirrored).degree() > 0)
+    symmetric = factor.gcd(mirrored)
+    rest = factor / symmetric
+    roots = _isolated(symmetric, imaginary=True) if symmetric.degree() > 0 else []
+    return roots + (_isolated(rest, imaginary=False) if rest.degree() > 0 else [])
 
 
-def _mirrored(balls: list[Any], maybe_imaginary: bool) -> list[complex]:
+def _isolated(factor: Any, *, imaginary: bool) -> list[complex]:
+    """The roots, sharp in both parts; `imaginary` says whether some may lie on that axis."""
+    for bits in (128, 256, 512, 1024, 2048, 4096):
+        with precision(bits):
+            balls = [root for root, _ in factor.complex_roots()]
+            if all(_sharp(ball, imaginary=imaginary) for ball in balls):
+                return _mirrored(balls)
+    raise ArithmeticError("the roots could not be separated at 4096 bits")
+
+
+def _sharp(ball: Any, *, imaginary: bool) -> bool:
+    """Whether both parts are known to double precision, or are zero."""
+    known = [
+        zero or float(part.rad()) <= 2.0**-54 * abs(float(part.mid()))
+        for part, zero in (
+            (ball.real, imaginary and ball.real.contains(0)),
+            (ball.imag, ball.imag.contains(0)),
+        )
+    ]
+    return all(known) and float(abs(ball).rad()) <= 2.0**-54 * float(abs(ball).mid())
+
+
+def _mirrored(balls: list[Any]) -> list[complex]:
+    """Doubles from sharp balls, each pair from its upper half; parts that may be zero are."""
     roots: list[complex] = []
     for ball in balls:
-        real, imag = float(ball.real.mid()), float(ball.imag.mid())
+        real = 0.0 if ball.real.contains(0) else float(ball.real.mid())
+        imag = float(ball.imag.mid())
         if ball.imag.contains(0):
             roots.append(complex(real, 0.0))
         elif imag > 0:
-            if maybe_imaginary and ball.real.contains(0):
-                real = 0.0
             roots += [complex(real, imag), complex(real, -imag)]
     return roots

@@ -18,7 +18,7 @@ from acsolve.circuit.value import Value
 from acsolve.equations.exact import Symbols
 from acsolve.errors import Diagnostic, EquationError
 
-_LARGEST_EXACT = 400  # unknowns up to which the exact characteristic polynomial is worked out
+_LARGEST_EXACT = 1200  # unknowns up to which the exact characteristic polynomial is worked out
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -37,10 +37,13 @@ class Modes:
 
     @property
     def stable(self) -> bool | None:
-        """Whether every mode decays; None where it is not known."""
-        if self.values is None:
-            return None
-        return all(mode.real < 0 for mode in self.values)
+        """Whether no mode grows; None where it is not known."""
+        return None if self.values is None else all(mode.real <= 0 for mode in self.values)
+
+    @property
+    def decays(self) -> bool | None:
+        """Whether every mode decays (one at 0 Hz or on the axis does not); None if unknown."""
+        return None if self.values is None else all(mode.real < 0 for mode in self.values)
 
 
 @dataclass(frozen=True, slots=True, eq=False)

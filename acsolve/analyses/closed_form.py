@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
 from typing import Any
 
@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from acsolve.algebra.ring import Polynomial, cancel, lowest_part, positive, univariate
 from acsolve.analyses.question import Ask
+from acsolve.circuit.expression import S
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import Arithmetic, Evaluator, FloatArithmetic, Scalar
 from acsolve.equations.exact import Basis, Generator
@@ -49,7 +50,11 @@ class ClosedForm:
     @property
     def rational(self) -> bool:
         """Whether it is a ratio of polynomials in s (a line, say, is not)."""
-        return self.basis.rational_in_s
+        return self.basis.rational_in_s or all(
+            item.root == 1 and item.leaf == S
+            for item, used in zip(self.basis.generators, self.used(), strict=True)
+            if used and item.varies
+        )
 
     @property
     def symbols(self) -> tuple[str, ...]:
@@ -221,4 +226,27 @@ def normalised(
     place = basis.s_index
     leading = bottom if place is None else lowest_part(ring, bottom, place)
     top, bottom = positive(top, bottom, leading)
-    return ClosedForm(ask, basis, top, bottom, values)
+    return _over_s(ClosedForm(ask, basis, top, bottom, values))
+
+
+def _over_s(form: ClosedForm) -> ClosedForm:
+    """The form over s where it was over a root of s and only whole powers are left."""
+    basis, place = form.basis, form.basis.s_index
+    if place is None or basis.generators[place].root == 1:
+        return form
+    root, parts = basis.generators[place].root, []
+    for polynomial in (form.numerator, form.denominator):
+        terms = {}
+        for exponents, coefficient in polynomial.terms():
+            whole, rest = divmod(int(exponents[place]), root)
+            if rest:
+                return form
+            terms[(*exponents[:place], whole, *exponents[place + 1 :])] = coefficient
+        parts.append(basis.ring.context.from_dict(terms))
+    generators = (*basis.generators[:place], Generator(S), *basis.generators[place + 1 :])
+    return replace(
+        form,
+        basis=Basis(basis.ring, generators),
+        numerator=parts[0],
+        denominator=parts[1],
+    )

@@ -11,7 +11,7 @@ from typing import Any, Literal
 from acsolve.algebra.ball import precision
 from acsolve.algebra.crossing import Crossings
 from acsolve.analyses.closed_form import ClosedForm
-from acsolve.analyses.magnitude import Magnitude, ReferenceName, magnitude
+from acsolve.analyses.magnitude import Exact, Magnitude, ReferenceName, magnitude
 from acsolve.codes import Code
 from acsolve.errors import AnalysisError, Diagnostic
 
@@ -40,12 +40,12 @@ class CutoffLevel:
         tens = self.decibel / 10
         return Fraction(10) ** tens.numerator if tens.denominator == 1 else None
 
-    def power_ratio(self) -> Any:
-        """The ratio of squared gains, a fraction or a ball at the precision in force."""
+    def ball(self) -> Any:
+        """The ratio of squared gains as a ball at the precision in force."""
         from flint import arb, fmpq
 
         if self.exact is not None:
-            return self.exact
+            return arb(fmpq(self.exact.numerator, self.exact.denominator))
         assert self.decibel is not None
         tens = self.decibel / 10
         return arb(10) ** arb(fmpq(tens.numerator, tens.denominator))
@@ -160,13 +160,9 @@ def _numeric(
     size = magnitude(form)
     with precision(_BITS):
         basis = _reference(size, reference)
-        exact = size.exact and level.exact is not None and basis.exact
-        crossings = size.crossings(
-            lambda: _scaled(basis.squared(), level.power_ratio()), level_exact=exact
-        )
-        crossings = _with_touching_peak(crossings, basis, level)
-    method = "square-free factoring and exact root isolation by Descartes' rule of signs"
-    if not exact:
+        crossings = _crossings(size, basis, level)
+    method = "square-free factoring and root isolation by Descartes' rule of signs"
+    if basis.exact is None or level.exact is None:
         method = "root isolation by Descartes' rule of signs over enclosed coefficients"
     remarks = () if crossings.found or not crossings.complete else _why_none(size, basis, level)
     return CutoffAnswer(
@@ -185,79 +181,101 @@ def _numeric(
 
 @dataclass(frozen=True, slots=True)
 class _Basis:
-    """A reference with its squared gain, which is computed at the precision in force."""
+    """A reference with its squared gain, exact or as a ball at the precision in force."""
 
     shown: Reference
     squared: Callable[[], Any]
-    exact: bool
-    peak_x: Fraction | None = None
+    exact: Exact | None
+    peaks: tuple[Fraction, ...] = ()  # x = ω² of the peak, of all where several are equal
+
+
+def _crossings(size: Magnitude, basis: _Basis, level: CutoffLevel) -> Crossings:
+    if basis.peaks and level.decibel == 0:
+        return _touching_peaks(basis)
+    if basis.exact is not None and level.exact is not None:
+        top, bottom = basis.exact
+        return size.crossings_at((top * level.exact.numerator, bottom * level.exact.denominator))
+    return size.crossings_near(lambda: basis.squared() * level.ball())
 
 
 def _reference(size: Magnitude, asked: ReferenceName | Fraction | None) -> _Basis:
     if isinstance(asked, Fraction):
         if asked == 0:
             raise _no_reference("a stated gain of zero is no reference")
+        constant = size.form.basis.ring.constant
+        exact = constant(asked.numerator**2), constant(asked.denominator**2)
         shown = Reference(at="stated", gain=float(asked))
-        return _Basis(shown, lambda: asked * asked, exact=True)
+        return _Basis(shown, lambda: size.ball(exact), exact)
     low, high = size.at_zero(), size.at_infinity()
-    name = asked or _by_shape(low, high)
+    name = asked or _by_shape(size, low, high)
     if name == "peak":
         return _peak(size, low, high)
     squared = low if name == "dc" else high
     word = "at 0 Hz" if name == "dc" else "at infinite frequency"
-    if squared is None or squared == 0:
+    if squared is None or squared[0] == 0:
         raise _no_reference(f"the gain {word} is {'infinite' if squared is None else 'zero'}")
-
-    def again() -> Any:
-        return size.at_zero() if name == "dc" else size.at_infinity()
-
-    shown = Reference(at=name, gain=sqrt(_float(squared)), hertz=0.0 if name == "dc" else None)
-    return _Basis(shown, again, exact=size.exact)
+    gain = sqrt(_float(size.ball(squared)))
+    shown = Reference(at=name, gain=gain, hertz=0.0 if name == "dc" else None)
+    return _Basis(shown, lambda: size.ball(squared), squared)
 
 
-def _by_shape(low: Any, high: Any) -> ReferenceName:
+def _by_shape(size: Magnitude, low: Exact | None, high: Exact | None) -> ReferenceName:
     if low is None or high is None:
         raise _no_reference(
             f"the gain at {'0 Hz' if low is None else 'infinite frequency'} is infinite"
         )
-    if low == 0 and high == 0:
+    if low[0] == 0 and high[0] == 0:
         return "peak"
-    return "infinity" if _float(high) > _float(low) else "dc"
+    return "infinity" if _float(size.ball(high)) > _float(size.ball(low)) else "dc"
 
 
-def _peak(size: Magnitude, low: Any, high: Any) -> _Basis:
+def _peak(size: Magnitude, low: Exact | None, high: Exact | None) -> _Basis:
     """The largest |H|², among the stationary points and both ends."""
     if low is None or high is None:
         raise _no_reference("the gain is infinite at one end, so there is no peak")
-    places = [item.value for item in size.stationary().found]
-    best_x, best = None, max(_float(low), _float(high))
-    for x in places:
-        value = _float(size.value(x))
-        if not value < inf:
-            raise _no_reference("the response has a pole on the frequency axis: no peak is finite")
-        if value > best:
-            best_x, best = x, value
+    if size.axis_poles().found:
+        raise _no_reference("the response has a pole on the frequency axis: no peak is finite")
+    stationary = size.stationary()
+    if not stationary.complete:
+        raise _no_reference("the peak could not be located with certainty")
+    values = {item.value: size.value(item.value) for item in stationary.found}
+    ends = [_float(size.ball(end)) for end in (low, high)]
+    best_x, best = None, max(ends)
+    for x, value in values.items():
+        if _float(value) > best:
+            best_x, best = x, _float(value)
+    if best == 0:
+        raise _no_reference("the gain is zero at every frequency")
     if best_x is None:
-        shown = Reference(at="peak", gain=sqrt(best), hertz=0.0 if _float(low) >= best else None)
-        return _Basis(shown, lambda: low if _float(low) >= best else high, exact=size.exact)
+        end = low if ends[0] >= ends[1] else high
+        shown = Reference(at="peak", gain=sqrt(best), hertz=0.0 if end is low else None)
+        return _Basis(shown, lambda: size.ball(end), end)
     chosen = best_x
     shown = Reference(at="peak", gain=sqrt(best), hertz=_hertz(chosen))
-    return _Basis(shown, lambda: size.value(chosen), exact=False, peak_x=chosen)
+    equal = tuple(x for x, value in values.items() if _equal(value, values[chosen]))
+    return _Basis(shown, lambda: size.value(chosen), None, equal)
 
 
-def _with_touching_peak(crossings: Crossings, basis: _Basis, level: CutoffLevel) -> Crossings:
-    """A level of 0 dB below a peak is met at the peak itself, and nowhere crossed."""
-    if basis.peak_x is None or level.decibel != 0:
-        return crossings
+def _equal(first: Any, second: Any) -> bool:
+    """Whether two peaks, each known to about 2**-120, are taken as equal."""
+    return bool(abs(first / second - 1) < 2.0**-100)
+
+
+def _touching_peaks(basis: _Basis) -> Crossings:
+    """A level of 0 dB below a peak is met at the peaks themselves, and nowhere crossed.
+
+    That several peaks are equal is seen, not proven.
+    """
     from acsolve.algebra.crossing import Crossing
 
-    return Crossings((Crossing(basis.peak_x, None),), complete=True)
+    touches = tuple(Crossing(x, None) for x in basis.peaks)
+    return Crossings(touches, complete=len(touches) == 1)
 
 
 def _why_none(size: Magnitude, basis: _Basis, level: CutoffLevel) -> tuple[str, ...]:
-    ends = [_float(value) for value in (size.at_zero(), size.at_infinity()) if value is not None]
-    wanted = _float(basis.squared()) * float(_float(level.power_ratio()))
-    if ends and min(ends) > wanted:
+    ends = [size.ball(end) for end in (size.at_zero(), size.at_infinity()) if end is not None]
+    wanted = _float(basis.squared() * level.ball())
+    if ends and min(map(_float, ends)) > wanted:
         return ("The gain never falls to this level.",)
     return ("The gain never crosses this level.",)
 
@@ -291,21 +309,7 @@ def _hertz(x: Fraction) -> float:
         return float((arb(fmpq(x.numerator, x.denominator)).sqrt() / (2 * arb.pi())).mid())
 
 
-def _scaled(squared: Any, ratio: Any) -> Any:
-    from flint import arb, fmpq
-
-    if isinstance(squared, Fraction) and isinstance(ratio, Fraction):
-        return squared * ratio
-    first, second = (
-        arb(fmpq(item.numerator, item.denominator)) if isinstance(item, Fraction) else item
-        for item in (squared, ratio)
-    )
-    return first * second
-
-
 def _float(value: Any) -> float:
-    if isinstance(value, Fraction):
-        return value.numerator / value.denominator
     return float(value.mid()) if value.is_finite() else inf
 
 

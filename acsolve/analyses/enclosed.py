@@ -60,7 +60,43 @@ def enclosed_roots(form: ClosedForm, polynomial: Polynomial) -> tuple[complex, .
     return tuple(sorted(roots, key=lambda root: (abs(root), root.imag, root.real)))
 
 
+def axis_part(form: ClosedForm, polynomial: Polynomial) -> Polynomial:
+    """The common factor of p(s) and p(-s), square-free: it holds every root on the jω axis."""
+    place = form.basis.s_index
+    mirrored = form.basis.ring.context.from_dict(
+        {
+            exponents: coefficient * (1 if place is None or exponents[place] % 2 == 0 else -1)
+            for exponents, coefficient in polynomial.terms()
+        }
+    )
+    part = form.basis.ring.constant(1)
+    for factor, _ in polynomial.gcd(mirrored).factor_squarefree()[1]:
+        part = part * factor
+    return part
+
+
+def axis_coefficients(form: ClosedForm, part: Polynomial) -> list[Any]:
+    """From an `axis_part`, the polynomial in x = ω² whose positive roots lie on the jω axis."""
+    values = ball_coefficients(form, part)
+    lowest = next(power for power, value in enumerate(values) if value != 0)
+    return [value * (-1) ** k for k, value in enumerate(values[lowest::2])]
+
+
 def _roots_of(form: ClosedForm, factor: Polynomial) -> list[complex] | None:
+    """The roots of a square-free factor, those on the imaginary axis apart."""
+    symmetric = axis_part(form, factor)
+    parts = [(symmetric, True), (factor / symmetric, False)]
+    roots: list[complex] = []
+    for part, imaginary in parts:
+        if part.degrees()[form.basis.s_index or 0] > 0:
+            found = _isolated(form, part, imaginary=imaginary)
+            if found is None:
+                return None
+            roots += found
+    return roots
+
+
+def _isolated(form: ClosedForm, factor: Polynomial, *, imaginary: bool) -> list[complex] | None:
     from flint import acb_poly
 
     for bits in _BITS:
@@ -76,10 +112,20 @@ def _roots_of(form: ClosedForm, factor: Polynomial) -> list[complex] | None:
                 balls = poly.roots(tol=smallest * 2.0**-60) if smallest > 0 else rough
             except ValueError:
                 continue
-            return [0j] * zeros + [_double(ball) for ball in balls]
+            unsure = not imaginary and any(ball.real.contains(0) for ball in balls)
+            if not unsure or bits == _BITS[-1]:
+                return [0j] * zeros + _mirrored(balls)
     return None
 
 
-def _double(ball: Any) -> complex:
-    imag = 0.0 if ball.imag.contains(0) else float(ball.imag.mid())
-    return complex(float(ball.real.mid()), imag)
+def _mirrored(balls: list[Any]) -> list[complex]:
+    """Doubles from isolating balls: pairs exact mirror images, parts that may be zero are."""
+    roots: list[complex] = []
+    for ball in balls:
+        real = 0.0 if ball.real.contains(0) else float(ball.real.mid())
+        if ball.imag.contains(0):
+            roots.append(complex(real, 0.0))
+        elif ball.imag > 0:
+            imag = float(ball.imag.mid())
+            roots += [complex(real, -imag), complex(real, imag)]
+    return roots

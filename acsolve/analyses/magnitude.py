@@ -1,18 +1,26 @@
-"""The squared magnitude |H|² = A(x)/B(x) as polynomials in x = ω², exact or enclosed."""
+"""The squared magnitude |H|² = A(x)/B(x) as exact polynomials in x = ω²."""
 
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import partial
 from typing import Any, Literal
 
-from acsolve.algebra.crossing import Crossings, enclosed_crossings, exact_crossings
+from acsolve.algebra.crossing import (
+    Crossings,
+    enclosed_crossings,
+    exact_crossings,
+    factored_crossings,
+)
+from acsolve.algebra.ring import Polynomial, lowest_part, univariate
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.enclosed import ball_coefficients
 
 ReferenceName = Literal["dc", "infinity", "peak", "stated"]
-Real = Any  # Fraction or flint.arb
+#: A squared gain that is exact, as numerator and denominator over the form's ring.
+Exact = tuple[Polynomial, Polynomial]
 
 
 def squared_magnitude(coefficients: Sequence[Any]) -> list[Any]:
@@ -29,120 +37,125 @@ def squared_magnitude(coefficients: Sequence[Any]) -> list[Any]:
 
 @dataclass(frozen=True, slots=True)
 class Magnitude:
-    """|H|² of a numeric closed form. `parts()` gives A and B at the precision in force."""
+    """|H|² = top/bottom of a closed form; in both, the generator of s stands for x = ω²."""
 
-    parts: Callable[[], tuple[list[Real], list[Real]]]
-    exact: bool
+    form: ClosedForm
+    top: Polynomial
+    bottom: Polynomial
 
-    def at_zero(self) -> Real | None:
-        """|H(0)|², or None where it is infinite."""
-        top, bottom = self.parts()
-        low = (_lowest(top), _lowest(bottom))
-        if low[0] is None or (low[1] or 0) < low[0]:
-            return Fraction(0)
-        return None if (low[1] or 0) > low[0] else top[low[0]] / bottom[low[0]]
+    @property
+    def _place(self) -> int | None:
+        return self.form.basis.s_index
 
-    def at_infinity(self) -> Real | None:
+    def at_zero(self) -> Exact | None:
+        """|H(0)|² (zero as 0/1), or None where it is infinite."""
+        return self._end(lambda part: self._degree(part, lowest=True), lowest=True)
+
+    def at_infinity(self) -> Exact | None:
         """The limit of |H|² at infinite frequency, or None where it is infinite."""
-        top, bottom = self.parts()
-        high = (_highest(top), _highest(bottom))
-        if high[0] is None or high[0] < (high[1] or 0):
-            return Fraction(0)
-        return None if high[0] > (high[1] or 0) else top[high[0]] / bottom[high[0]]
+        return self._end(lambda part: self._degree(part, lowest=False), lowest=False)
 
-    def crossings(self, level: Callable[[], Real], *, level_exact: bool) -> Crossings:
-        """Where |H|² crosses a level (a squared gain)."""
-        if self.exact and level_exact:
-            top, bottom = self.parts()
-            return exact_crossings(_minus(top, bottom, level()))
+    def _end(self, degree: Callable[[Polynomial], int], *, lowest: bool) -> Exact | None:
+        ring = self.form.basis.ring
+        first, second = degree(self.top), degree(self.bottom)
+        if self.top == 0 or ((first > second) == lowest and first != second):
+            return ring.constant(0), ring.constant(1)
+        if first != second:
+            return None
+        return self._leading(self.top, lowest), self._leading(self.bottom, lowest)
+
+    def _degree(self, part: Polynomial, *, lowest: bool) -> int:
+        if self._place is None or part == 0:
+            return 0
+        if lowest:
+            return int(part.term_content().monoms()[0][self._place])
+        return int(part.degrees()[self._place])
+
+    def _leading(self, part: Polynomial, lowest: bool) -> Polynomial:
+        if self._place is None:
+            return part
+        if lowest:
+            return lowest_part(self.form.basis.ring, part, self._place)
+        return self.form.basis.ring.by_power(part, self._place)[self._degree(part, lowest=False)]
+
+    def crossings_at(self, level: Exact) -> Crossings:
+        """Where |H|² crosses or touches an exact level (a squared gain)."""
+        return self._roots(self.top * level[1] - self.bottom * level[0])
+
+    def crossings_near(self, level: Callable[[], Any]) -> Crossings:
+        """The same for a level known as a ball, computed at the precision in force."""
 
         def coefficients() -> list[Any]:
-            top, bottom = self.parts()
-            return [_ball(value) for value in _minus(top, bottom, level())]
+            top, bottom = self._balls(self.top), self._balls(self.bottom)
+            size = max(len(top), len(bottom))
+            padded = [part + [_ball(0)] * (size - len(part)) for part in (top, bottom)]
+            factor = level()
+            return [a - factor * b for a, b in zip(*padded, strict=True)]
 
         return enclosed_crossings(coefficients)
 
     def stationary(self) -> Crossings:
         """Where the slope of |H|² is zero: roots of A'·B - A·B'."""
+        if self._place is None:
+            return Crossings((), complete=True)
+        first, second = (part.derivative(self._place) for part in (self.top, self.bottom))
+        return self._roots(first * self.bottom - self.top * second)
 
-        def slope() -> list[Any]:
-            top, bottom = self.parts()
-            first, second = _times(_slope(top), bottom), _times(top, _slope(bottom))
-            return _minus(first, second, Fraction(1))
+    def axis_poles(self) -> Crossings:
+        """The x > 0 at which |H|² is infinite."""
+        return self._roots(self.bottom)
 
-        if self.exact:
-            return exact_crossings(slope())
-        return enclosed_crossings(lambda: [_ball(value) for value in slope()])
+    def _roots(self, polynomial: Polynomial) -> Crossings:
+        """The positive roots in x, from an exact square-free factorisation."""
+        whole = univariate(polynomial, self._place)
+        if whole is not None:
+            return exact_crossings(whole)
+        factors = [
+            (int(multiplicity), partial(self._balls, factor))
+            for factor, multiplicity in polynomial.factor_squarefree()[1]
+            if self._degree(factor, lowest=False) > 0
+        ]
+        return factored_crossings(factors, lambda: self._balls(polynomial))
+
+    def _balls(self, polynomial: Polynomial) -> list[Any]:
+        return ball_coefficients(self.form, polynomial)
+
+    def ball(self, exact: Exact) -> Any:
+        """An exact squared gain as a ball at the precision in force."""
+        top, bottom = (self._balls(part)[0] for part in exact)
+        return top / bottom
 
     def value(self, x: Fraction) -> Any:
         """|H|² at x = ω², as a ball at the precision in force."""
-        top, bottom = self.parts()
         place = _ball(x)
-        return _horner(top, place) / _horner(bottom, place)
+        return _horner(self._balls(self.top), place) / _horner(self._balls(self.bottom), place)
 
 
 def magnitude(form: ClosedForm) -> Magnitude:
     """The squared magnitude of a rational form whose values are all numbers."""
-    numbers = form.numbers()
-    if numbers is not None:
-        exact = squared_magnitude(numbers[0] or [Fraction(0)]), squared_magnitude(numbers[1])
-        return Magnitude(lambda: exact, exact=True)
-
-    def parts() -> tuple[list[Real], list[Real]]:
-        top = squared_magnitude(ball_coefficients(form, form.numerator))
-        bottom = squared_magnitude(ball_coefficients(form, form.denominator))
-        return top, bottom
-
-    return Magnitude(parts, exact=False)
+    return Magnitude(form, *(_in_x(form, part) for part in (form.numerator, form.denominator)))
 
 
-def _lowest(values: Sequence[Any]) -> int | None:
-    return next((power for power, value in enumerate(values) if value != 0), None)
-
-
-def _highest(values: Sequence[Any]) -> int | None:
-    return next((power for power in reversed(range(len(values))) if values[power] != 0), None)
-
-
-def _minus(first: list[Any], second: list[Any], factor: Any) -> list[Any]:
-    """first - factor·second."""
-    length = max(len(first), len(second))
-    padded = [item + [Fraction(0)] * (length - len(item)) for item in (first, second)]
-    if isinstance(factor, Fraction):
-        return [_subtracted(a, b, factor) for a, b in zip(*padded, strict=True)]
-    return [_ball(a) - factor * _ball(b) for a, b in zip(*padded, strict=True)]
-
-
-def _subtracted(first: Any, second: Any, factor: Fraction) -> Any:
-    if isinstance(first, Fraction) and isinstance(second, Fraction):
-        return first - factor * second
-    return _ball(first) - _ball(factor) * _ball(second)
-
-
-def _times(first: Sequence[Any], second: Sequence[Any]) -> list[Any]:
-    if not first or not second:
-        return [Fraction(0)]
-    total: list[Any] = [0 * first[0] * second[0]] * (len(first) + len(second) - 1)
-    for i, a in enumerate(first):
-        for j, b in enumerate(second):
-            total[i + j] = total[i + j] + a * b
+def _in_x(form: ClosedForm, polynomial: Polynomial) -> Polynomial:
+    """|P(jω)|² with the generator of s standing for x."""
+    ring, place = form.basis.ring, form.basis.s_index
+    if place is None:
+        return polynomial * polynomial
+    total = ring.constant(0)
+    for power, value in enumerate(squared_magnitude(form.by_power(polynomial))):
+        total += ring.reduced(value) * ring.generator(place) ** power
     return total
 
 
-def _slope(values: Sequence[Any]) -> list[Any]:
-    return [value * power for power, value in enumerate(values)][1:]
-
-
-def _ball(value: Any) -> Any:
+def _ball(value: Fraction | int) -> Any:
     from flint import arb, fmpq
 
-    if isinstance(value, Fraction):
-        return arb(fmpq(value.numerator, value.denominator))
-    return arb(value)
+    exact = Fraction(value)
+    return arb(fmpq(exact.numerator, exact.denominator))
 
 
 def _horner(values: Sequence[Any], x: Any) -> Any:
-    total = _ball(Fraction(0))
+    total = _ball(0)
     for value in reversed(values):
-        total = total * x + _ball(value)
+        total = total * x + value
     return total

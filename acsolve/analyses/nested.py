@@ -27,7 +27,7 @@ from acsolve.circuit.graph import natural_key
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import Evaluator, FloatArithmetic, Scalar
-from acsolve.equations.exact import Expander, Symbols, exact_system
+from acsolve.equations.exact import Expander, Symbols, exact_system, with_symbols
 from acsolve.equations.naming import safe_names
 from acsolve.equations.nested import PRIME, Step, nested
 from acsolve.equations.write import Spelling, expression_text

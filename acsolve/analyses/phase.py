@@ -31,6 +31,7 @@ _MOST_POINTS = 200_000  # beside those asked for
 _ROUNDS = 80
 _NARROW = 4e-9  # relative width below which an interval is not divided further
 _ON_AXIS = 1e-9  # relative distance of a zero or pole from the axis that counts as none
+_DOUBT = 3.0  # how far a fitted zero or pole may be off, in misfits between its samples
 _NEARLY_WHOLE = 0.2  # how near a fitted order must be to a whole number to mean something
 _ASYMPTOTE = 0.05  # radians, nepers: how near the start must be to the behaviour at 0 Hz
 _BELOW = 10.0 ** -np.array([0.3, 1, 2, 3, 4, 6, 9, 12, 16, 20, 26, 32, 40])
@@ -140,8 +141,18 @@ def _from_asymptote(
             return _from_asymptote(known.merged(solve(known.omega[0] * _BELOW)), solve, start)
         close[0] = True
     first = int(np.argmin(close)) - 1 if not close.all() else len(close) - 1
-    at_zero = np.angle(start.mantissa) + start.order * np.pi / 2
-    return known.above(first), float(at_zero + ratio[first].imag)
+    return known.above(first), float(at_zero_hertz(start) + ratio[first].imag)
+
+
+def at_zero_hertz(start: Local) -> float:
+    """Phase at 0 Hz in radians: 0 or pi for a real gain, a quarter turn for each zero there."""
+    angle = float(np.angle(start.mantissa))
+    if angle < _ALMOST_MINUS_PI:
+        angle += 2 * np.pi
+    return angle + start.order * np.pi / 2
+
+
+_ALMOST_MINUS_PI = -np.pi * (1 - 1e-9)  # a negative gain is +180°, whatever its zero's sign
 
 
 _LOWEST = 1e-100  # rad/s; a start that is still not asymptotic there is taken as it is
@@ -178,7 +189,7 @@ def _steps(known: Track, *, near_limit: bool) -> Steps:
         settled |= misfit < _CLOSE_AGREEMENT
     turn = expected.imag + _wrapped(change.imag - expected.imag)
     singular = np.full(len(turn), complex(np.nan, np.nan))
-    _settle_on_axis(known, change, turn, settled, singular)
+    _settle_by_factor(known, change, turn, settled, singular)
     return Steps(turn, settled, singular)
 
 
@@ -188,34 +199,44 @@ def _misfit(expected: Array, change: Array) -> Array:
     return misfit
 
 
-def _settle_on_axis(
+def _settle_by_factor(
     known: Track, change: Array, turn: Array, settled: Array, singular: Array
 ) -> None:
-    """Find H'/H = p/(s - s0) in intervals that are open; settle those with s0 on the axis."""
+    """Settle open intervals beside or across a zero or pole: H = (s - s0)^p times the rest.
+
+    The factor is integrated exactly, the rest by its slopes. Where s0 lies on the axis inside
+    the interval the factor turns by +180° times p (the module's text says why).
+    """
     open_ = np.flatnonzero(~settled)
     if not len(open_):
         return
     s_a, s_b = 1j * known.omega[open_], 1j * known.omega[open_ + 1]
     slope_a, slope_b = known.slope[open_], known.slope[open_ + 1]
     place: Array
-    with np.errstate(all="ignore"):  # equal slopes: no singular point, not a number
+    with np.errstate(all="ignore"):  # equal slopes: no such factor, not a number
         order = (s_a - s_b) / (1 / slope_a - 1 / slope_b)
         place = s_a - order / slope_a
         whole = np.round(order.real)
-        inside = (place.imag > s_a.imag) & (place.imag < s_b.imag) & (np.abs(whole) >= 1)
-        inside &= np.abs(order - whole) < _NEARLY_WHOLE
+        found = (np.abs(order - whole) < _NEARLY_WHOLE) & (np.abs(whole) >= 1)
+        apart = np.abs(s_a - whole / slope_a - s_b + whole / slope_b)
+        doubt = _DOUBT * np.maximum(apart, np.abs(order - whole) * np.abs(s_b - s_a))
+        narrow = (s_b - s_a).imag < 3 * _NARROW * s_b.imag
+        on_axis = np.abs(place.real) < np.where(narrow, (s_b - s_a).imag, _ON_AXIS * s_b.imag)
+        on_axis &= narrow | (doubt < _ON_AXIS * s_b.imag)
+        inside = (place.imag > s_a.imag) & (place.imag < s_b.imag)
+        near = (place.imag > s_a.imag - doubt) & (place.imag < s_b.imag + doubt)
+        found &= on_axis | ~near | (np.abs(place.real) > doubt)
         singular[open_[inside]] = place[inside]
-        place = 1j * place.imag
+        place = np.where(on_axis, 1j * place.imag, place)
         rest = slope_a - whole / (s_a - place), slope_b - whole / (s_b - place)
-        expected = (rest[0] + rest[1]) / 2 * (s_b - s_a)
-        passing = whole * np.log(np.abs((s_b - place) / (s_a - place)))
-    jump = passing + 1j * np.pi * whole
-    on_axis = inside & (np.abs(singular[open_].real) < _ON_AXIS * s_b.imag)
-    on_axis &= _misfit(expected, change[open_] - jump) < _AGREEMENT
-    done = open_[on_axis]
-    total = (expected + jump).imag[on_axis]
-    turn[done] = total + _wrapped(change.imag[done] - total)
-    settled[done] = True
+        factor = whole * np.log((s_b - place) / (s_a - place))
+        factor = np.where(on_axis & inside, factor.real + 1j * np.pi * whole, factor)
+        others = (rest[0] + rest[1]) / 2 * (s_b - s_a)
+    good = found & (_misfit(others, change[open_] - factor) < _AGREEMENT)
+    good &= np.abs(others.imag) < _LARGEST_TURN
+    expected = (factor + others).imag[good]
+    turn[open_[good]] = expected + _wrapped(change.imag[open_[good]] - expected)
+    settled[open_[good]] = True
 
 
 def _divisions(known: Track, steps: Steps) -> Array:

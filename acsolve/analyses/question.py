@@ -45,7 +45,14 @@ class Ask:
     @property
     def dimension(self) -> Dimension:
         """Dimension of the answer."""
+        if self.quantity == "response" and self.observes_current:
+            return unit.AMPERE
         return _DIMENSIONS[self.quantity]
+
+    @property
+    def observes_current(self) -> bool:
+        """Whether a current is observed: through a short, or that of an ammeter."""
+        return self.quantity in _OBSERVES_CURRENT or self.ammeter is not None
 
     @property
     def short(self) -> Pair | None:
@@ -60,7 +67,7 @@ class Ask:
 
     def observed(self, system: System) -> Functional:
         """What is observed, as a linear function of the unknowns."""
-        if self.quantity in _OBSERVES_CURRENT:
+        if self.observes_current:
             return system.current(self.ammeter or SHORT)
         return system.voltage(self.target)
 
@@ -141,7 +148,7 @@ def _refuse(code: Code, message: str, hint: str) -> AnalysisError:
 
 def refuse_unreferenced(system: System, ask: Ask) -> None:
     """Refuse a question about a voltage between two parts that no reference joins."""
-    if ask.quantity in _OBSERVES_CURRENT:
+    if ask.observes_current:
         return
     first, second = ask.target
     if not system.groups.shares_reference(first, second):

@@ -1,20 +1,33 @@
 """A closed form in the shapes that people read, each of them exact.
 
 A reading is a list of labelled texts. Frequencies are written with `w` for the angular
-frequency ω in rad/s.
+frequency ω in rad/s, which is taken to be positive.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections import Counter
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from fractions import Fraction
 from typing import Literal, get_args
 
-from acsolve.algebra.ring import Polynomial, cancel, positive
+from acsolve.algebra.ring import Polynomial
 from acsolve.analyses.closed_form import ClosedForm
-from acsolve.analyses.shape import standard_form
-from acsolve.equations.grouping import Writer
-from acsolve.equations.write import Spelling
+from acsolve.analyses.shape import StandardForm, standard_form
+from acsolve.equations.grouping import LARGEST_GROUPED, Writer
+from acsolve.equations.naming import is_safe
+from acsolve.equations.phrase import (
+    ONE,
+    ZERO,
+    Phrase,
+    call,
+    fraction,
+    power,
+    product,
+    root,
+    total,
+)
 
 FormName = Literal["collected", "unit", "factored", "standard", "real", "delay", "asymptotes"]
 FORM_NAMES: tuple[FormName, ...] = get_args(FormName)
@@ -33,282 +46,381 @@ def reading(form: ClosedForm, name: FormName, *, safe: bool = False) -> tuple[Li
 
     collected : powers of s collected, integer coefficients.
     unit : gain times a ratio whose lowest terms are 1, parallel groups and sums named.
-    factored : irreducible factors, first-order ones as time constants.
+    factored : irreducible factors whose lowest terms are 1, first-order ones as time constants.
     standard : K, w0, Q or tau of a first- or second-order response.
     real : gain and phase as real functions of the angular frequency.
     delay : phase delay and group delay as real functions of the angular frequency.
     asymptotes : what it tends to far below and far above all corners.
 
-    `safe` spells everything for SymPy's parser, else for people.
+    `safe` spells everything for SymPy's parser, else for people. A name of ours that a
+    symbol of the circuit already bears gets `_H` behind it.
     """
     if name == "collected":
         return (Line("H", form.text(safe=safe)),)
     if not form.rational or form.numerator == 0:
         return ()
-    return _READINGS[name](form, Writer(form.basis, form.spelled(safe=safe)))
+    return _READINGS[name](_Page(form, safe))
 
 
-def _unit(form: ClosedForm, writer: Writer) -> tuple[Line, ...]:
-    """K·s^m·(1 + …)/(1 + …) with each coefficient a ratio in lowest terms."""
-    top, bottom = form.coefficients()
-    first, second = _lowest(top), _lowest(bottom)
-    gain = _ratio(writer, top[first], bottom[second])
-    shift = first - second
-    series = [_series(writer, part, low) for part, low in ((top, first), (bottom, second))]
-    lead = _times(gain, _power("s", abs(shift), writer.spelling) if shift > 0 else "")
-    below = _times(_power("s", -shift, writer.spelling) if shift < 0 else "", _wrap(series[1]))
-    upper = _times("" if lead == "1" and series[0] != "1" else lead, _wrap(series[0]))
-    text = upper or "1"
-    if below:
-        text = f"{text}/{below if not _is_product(below) else f'({below})'}"
-    return (Line("H", text),)
+class _Page:
+    """A closed form, how it is written, and the names that are free for us."""
+
+    def __init__(self, form: ClosedForm, safe: bool) -> None:
+        self.form, self.safe = form, safe
+        spelling = form.spelled(safe=safe)
+        self.write = Writer(form.basis, spelling)
+        self.sign = spelling.power
+        self._taken = {spelling.name(name) for name in form.symbols}
+
+    def name(self, text: str) -> Phrase:
+        """A name of ours, changed where the circuit or SymPy uses it for something else."""
+        free = text not in self._taken and (is_safe(text) or not self.safe or text == "H")
+        return Phrase(text if free else f"{text}_H")
+
+    def power(self, variable: Phrase, exponent: int) -> Phrase:
+        """A whole power, 1 for none."""
+        return power(variable, exponent, self.sign) if exponent else ONE
+
+    def series(self, coefficients: Sequence[Polynomial], variable: Phrase) -> Phrase:
+        """1 + a1·s + a2·s² + … relative to the coefficient of the lowest power."""
+        low = lowest(coefficients)
+        return total(
+            self.write.ratio(value, coefficients[low], self.power(variable, place - low))
+            for place, value in enumerate(coefficients)
+            if value != 0
+        )
+
+    def unit(
+        self, top: Sequence[Polynomial], bottom: Sequence[Polynomial], variable: Phrase
+    ) -> Phrase:
+        """K·x^m·(1 + …)/(1 + …) with each coefficient a ratio in lowest terms."""
+        first, second = lowest(top), lowest(bottom)
+        gain = self.write.pieces(top[first], bottom[second])
+        shift = first - second
+        above = [self.power(variable, max(shift, 0)), self.series(top, variable)]
+        below = [self.power(variable, max(-shift, 0)), self.series(bottom, variable)]
+        return product([*gain.top, *above], [*gain.bottom, *below])
 
 
-def _lowest(coefficients: list[Polynomial]) -> int:
+def lowest(coefficients: Sequence[Polynomial]) -> int:
+    """The lowest power that occurs."""
     return next(power for power, value in enumerate(coefficients) if value != 0)
 
 
-def _ratio(writer: Writer, top: Polynomial, bottom: Polynomial) -> str:
-    first, second = cancel(top, bottom)
-    return writer.ratio(*positive(first, second, second))
+_S = Phrase("s")
 
 
-def _series(writer: Writer, coefficients: list[Polynomial], low: int) -> str:
-    """1 + a1·s + a2·s² + … relative to the coefficient of the lowest power."""
-    pieces = ["1"]
-    for power in range(low + 1, len(coefficients)):
-        if coefficients[power] == 0:
-            continue
-        text = _ratio(writer, coefficients[power], coefficients[low])
-        variable = _power("s", power - low, writer.spelling)
-        if text in ("1", "-1"):
-            pieces.append(f"{text[:-1]}{variable}")
-        else:
-            pieces.append(f"{_bracketed(text)}*{variable}")
-    return " + ".join(pieces).replace("+ -", "- ")
+def _unit(page: _Page) -> tuple[Line, ...]:
+    return (Line("H", str(page.unit(*page.form.coefficients(), _S))),)
 
 
-def _power(variable: str, exponent: int, spelling: Spelling) -> str:
-    if exponent == 0:
-        return ""
-    return variable if exponent == 1 else f"{variable}{spelling.power}{exponent}"
+class _TimeConstants:
+    """Names tau1, tau2, … for the time constants of one formula, equal ones once."""
+
+    def __init__(self, page: _Page) -> None:
+        self._page = page
+        self._names: dict[str, Phrase] = {}
+
+    def __call__(self, constant: Phrase) -> Phrase:
+        text = str(constant)
+        if text not in self._names:
+            self._names[text] = self._page.name(f"tau{len(self._names) + 1}")
+        return self._names[text]
+
+    def lines(self) -> list[Line]:
+        return [Line(str(name), text) for text, name in self._names.items()]
 
 
-def _bracketed(text: str) -> str:
-    """A coefficient in brackets where a factor after it would bind to its last term only."""
-    depth = 0
-    for sign in text:
-        depth += (sign == "(") - (sign == ")")
-        if sign == " " and depth == 0:
-            return f"({text})"
-    return text
-
-
-def _wrap(text: str) -> str:
-    return "" if text == "1" else f"({text})"
-
-
-def _is_product(text: str) -> bool:
-    depth = 0
-    for sign in text:
-        depth += (sign == "(") - (sign == ")")
-        if sign in "*/" and depth == 0:
-            return True
-    return False
-
-
-def _times(*factors: str) -> str:
-    present = [item for item in factors if item]
-    if len(present) > 1:
-        present = [item for item in present if item != "1"] or ["1"]
-    return "*".join(_bracketed(item) for item in present)
-
-
-def _factored(form: ClosedForm, writer: Writer) -> tuple[Line, ...]:
-    """Irreducible factors; a first-order factor a + b·s is written a·(1 + tau·s)."""
-    place = form.basis.s_index
-    taus: list[Line] = []
-    texts = []
-    for polynomial in (form.numerator, form.denominator):
-        texts.append(_factors(form, writer, polynomial, place, taus))
-    text = texts[0] if texts[1] == "1" else f"{texts[0]}/({texts[1]})"
-    return (Line("H", text), *taus)
+def _factored(page: _Page) -> tuple[Line, ...]:
+    """gain·s^m·product/product; a first-order factor is 1 + tau·s or 1 - tau·s."""
+    constants = _TimeConstants(page)
+    top, above, rise = _factors(page, page.form.numerator, constants)
+    bottom, below, fall = _factors(page, page.form.denominator, constants)
+    gain = page.write.pieces(top, bottom)
+    shift = rise - fall
+    text = product(
+        [*gain.top, page.power(_S, max(shift, 0)), *above],
+        [*gain.bottom, page.power(_S, max(-shift, 0)), *below],
+    )
+    return (Line("H", str(text)), *constants.lines())
 
 
 def _factors(
-    form: ClosedForm,
-    writer: Writer,
-    polynomial: Polynomial,
-    place: int | None,
-    taus: list[Line],
-) -> str:
+    page: _Page, polynomial: Polynomial, constants: _TimeConstants
+) -> tuple[Polynomial, list[Phrase], int]:
+    """What is free of s, the factors with s as phrases, and the power of s alone."""
     number, factors = polynomial.factor()
-    pieces = [] if abs(int(number)) == 1 else [str(abs(int(number)))]
-    for factor, exponent in sorted(factors, key=lambda item: (len(item[0]), str(item[0]))):
-        piece = _factor(form, writer, factor, place, taus)
-        whole = int(exponent)
-        pieces.append(piece if whole == 1 else f"{_group(piece)}{writer.spelling.power}{whole}")
-    text = "*".join(pieces) or "1"
-    return f"-{text}" if int(number) < 0 else text
+    lead, phrases, alone = page.form.basis.ring.constant(int(number)), [], 0
+    place = page.form.basis.s_index
+
+    def degree(factor: Polynomial) -> int:
+        return 0 if place is None else int(factor.degrees()[place])
+
+    for factor, exponent in sorted(factors, key=lambda item: (degree(item[0]), str(item[0]))):
+        count = int(exponent)
+        coefficients = page.form.by_power(factor)
+        if degree(factor) == 0:
+            lead = lead * factor**count
+        elif coefficients[0] == 0:
+            alone += count
+        else:
+            lead = lead * coefficients[0] ** count
+            phrases.append(page.power(_factor(page, coefficients, constants), count))
+    return lead, phrases, alone
 
 
-def _group(piece: str) -> str:
-    return f"({piece})" if _is_product(piece) else piece
+def _factor(page: _Page, coefficients: list[Polynomial], constants: _TimeConstants) -> Phrase:
+    if len(coefficients) > 2:
+        return page.series(coefficients, _S)
+    constant = page.write.ratio(coefficients[1], coefficients[0])
+    if constant.negative:
+        return total([ONE, -product([constants(-constant), _S])])
+    return total([ONE, product([constants(constant), _S])])
 
 
-def _factor(
-    form: ClosedForm, writer: Writer, factor: Polynomial, place: int | None, taus: list[Line]
-) -> str:
-    order = 0 if place is None else factor.degrees()[place]
-    if order == 0 or len(factor) == 1:
-        return _bracketed(writer.factored(factor))
-    if order > 1 or place is None:
-        return f"({form.part_text(factor, writer.spelling)})"
-    parts = form.basis.ring.by_power(factor, place)
-    name = f"tau{len(taus) + 1}"
-    taus.append(Line(name, _ratio(writer, parts[1], parts[0])))
-    lead = _bracketed(writer.factored(parts[0]))
-    return f"(1 + {name}*s)" if lead == "1" else f"{lead}*(1 + {name}*s)"
+_LABELS = {
+    "k": "K",
+    "k1": "K1",
+    "w0": "w0",
+    "q": "Q",
+    "tau": "tau",
+    "tau_z": "tau_z",
+    "w_z": "w_z",
+    "q_z": "Q_z",
+}
 
 
-def _standard(form: ClosedForm, writer: Writer) -> tuple[Line, ...]:
+def _standard(page: _Page) -> tuple[Line, ...]:
     """The named parts of the standard form, with the form they belong to."""
-    safe = writer.spelling.power != "^"
-    found = standard_form(form, safe=safe)
+    found = standard_form(page.form, safe=page.safe)
     if found is None:
         return ()
-    lines = [Line("H", _standard_text(found.shape, found.order, writer.spelling))]
-    if found.shape == "other":
-        lines = [Line("denominator", _standard_text("denominator", found.order, writer.spelling))]
-    labels = {"k": "K", "w0": "w0", "q": "Q", "tau": "tau"}
-    return (*lines, *(Line(labels[key], text) for key, text in found.parts.items()))
+    labels = {key: page.name(label) for key, label in _LABELS.items()}
+    if found.order == 1 and "tau_z" in found.parts:
+        labels["tau"] = page.name("tau_p")
+    top, bottom = _above(page, found, labels), _below(page, found, labels)
+    head = Line("denominator of H", str(bottom)) if top is None else None
+    head = head or Line("H", str(product([top or ONE], [bottom])))
+    shown = {key: text for key, text in found.parts.items() if key != "w0" or found.order == 2}
+    if found.order == 1 and found.shape != "other":
+        shown["w0"] = found.parts["w0"]
+    return (head, *(Line(str(labels[key]), text) for key, text in shown.items()))
 
 
-def _standard_text(shape: str, order: int, spelling: Spelling) -> str:
-    square = f"s{spelling.power}2/w0{spelling.power}2"
-    bottom = "1 + tau*s" if order == 1 else f"1 + s/(Q*w0) + {square}"
-    if shape == "denominator":
-        return bottom
-    tops = {
-        "low-pass": "K",
-        "high-pass": "K*tau*s" if order == 1 else f"K*{square}",
-        "band-pass": "K*s/(Q*w0)",
-        "notch": f"K*(1 + {square})",
-        "all-pass": "K*(1 - tau*s)" if order == 1 else f"K*(1 - s/(Q*w0) + {square})",
-    }
-    return f"{tops[shape]}/({bottom})"
+def _below(page: _Page, found: StandardForm, labels: dict[str, Phrase]) -> Phrase:
+    """1 + tau·s or 1 + s/(Q·w0) + (s/w0)²."""
+    if found.order == 1:
+        return _slope(labels["tau"])
+    quality = None if found.parts["q"] == "oo" else labels["q"]
+    return _square(page, quality, labels["w0"])
 
 
-def _axis(form: ClosedForm, polynomial: Polynomial) -> tuple[list[Polynomial], list[Polynomial]]:
+def _slope(tau: Phrase, *, falling: bool = False) -> Phrase:
+    term = product([tau, _S])
+    return total([ONE, -term if falling else term])
+
+
+def _square(page: _Page, quality: Phrase | None, w0: Phrase, *, falling: bool = False) -> Phrase:
+    """1 + s/(Q·w0) + (s/w0)², its middle term turned round or left out."""
+    middle = ZERO if quality is None else product([_S], [quality, w0])
+    return total([ONE, -middle if falling else middle, _relative(page, w0)])
+
+
+def _relative(page: _Page, w0: Phrase) -> Phrase:
+    return page.power(product([_S], [w0]), 2)
+
+
+def _above(page: _Page, found: StandardForm, labels: dict[str, Phrase]) -> Phrase | None:
+    """The numerator by its shape; None where it has no standard form."""
+    first, parts = found.order == 1, found.parts
+    k, w0, q = labels["k"], labels["w0"], labels["q"]
+    match found.shape:
+        case "low-pass":
+            return k
+        case "high-pass":
+            return product([k, labels["tau"], _S] if first else [k, _relative(page, w0)])
+        case "band-pass":
+            return product([k, Phrase(f"({product([_S], [q, w0])})")])
+        case "notch":
+            return product([k, _square(page, None, w0)])
+        case "all-pass" if first:
+            return product([k, _slope(labels["tau"], falling=True)])
+        case "all-pass":
+            return product([k, _square(page, q, w0, falling=True)])
+    if "tau_z" in parts:
+        lead = [k] if "k" in parts else [labels["k1"], _S]
+        return product([*lead, _slope(labels["tau_z"])])
+    if "k" not in parts:
+        return None
+    corner = labels["w_z"] if "w_z" in parts else w0
+    return product([k, _square(page, labels["q_z"] if "q_z" in parts else None, corner)])
+
+
+def _axis(
+    form: ClosedForm, coefficients: Sequence[Polynomial]
+) -> tuple[list[Polynomial], list[Polynomial]]:
     """Real and imaginary part of P(jω) by rising power of ω."""
-    ring = form.basis.ring
-    coefficients = form.by_power(polynomial)
+    zero = form.basis.ring.constant(0)
     real, imag = [], []
-    for power, value in enumerate(coefficients):
-        signed = -value if power % 4 in (2, 3) else value
-        zero = ring.constant(0)
-        real.append(zero if power % 2 else signed)
-        imag.append(signed if power % 2 else zero)
+    for place, value in enumerate(coefficients):
+        signed = -value if place % 4 in (2, 3) else value
+        real.append(zero if place % 2 else signed)
+        imag.append(signed if place % 2 else zero)
     return real, imag
 
 
-def _in_w(writer: Writer, coefficients: list[Polynomial]) -> str:
-    """A polynomial in ω as text."""
-    pieces = []
-    for power, value in enumerate(coefficients):
-        if value == 0:
-            continue
-        text = writer.grouped(value)
-        variable = _power("w", power, writer.spelling)
-        if not variable:
-            pieces.append(text)
-        elif text in ("1", "-1"):
-            pieces.append(f"{text[:-1]}{variable}")
-        else:
-            pieces.append(f"{_bracketed(text)}*{variable}")
-    return " + ".join(pieces).replace("+ -", "- ") or "0"
+@dataclass(frozen=True, slots=True)
+class _Axes:
+    """Real and imaginary part of 1 + a1·jω + …, and the power of jω taken out before it."""
+
+    real: Phrase
+    imag: Phrase
+    shift: int
+    lead: Polynomial
 
 
-def _real(form: ClosedForm, writer: Writer) -> tuple[Line, ...]:
-    """Gain and phase; the phase up to whole turns, as atan2 gives it."""
-    (a, b), (c, d) = (_axis(form, part) for part in (form.numerator, form.denominator))
-    power = writer.spelling.power
-
-    def size(real: list[Polynomial], imag: list[Polynomial]) -> str:
-        texts = [_in_w(writer, part) for part in (real, imag)]
-        if "0" in texts:
-            return f"abs({texts[0] if texts[1] == '0' else texts[1]})"
-        return f"sqrt(({texts[0]}){power}2 + ({texts[1]}){power}2)"
-
-    def angle(real: list[Polynomial], imag: list[Polynomial]) -> str:
-        return f"atan2({_in_w(writer, imag)}, {_in_w(writer, real)})"
-
-    gain = f"{size(a, b)}/{size(c, d)}"
-    return (Line("gain(w)", gain), Line("phase(w)", f"{angle(a, b)} - {angle(c, d)}"))
+def _axes(page: _Page, coefficients: list[Polynomial]) -> _Axes:
+    low = lowest(coefficients)
+    lead = coefficients[low]
+    w = page.name("w")
+    real, imag = (
+        total(
+            page.write.ratio(value, lead, page.power(w, place))
+            for place, value in enumerate(part)
+            if value != 0
+        )
+        for part in _axis(page.form, coefficients[low:])
+    )
+    return _Axes(real, imag, low, lead)
 
 
-def _delay(form: ClosedForm, writer: Writer) -> tuple[Line, ...]:
+def _real(page: _Page) -> tuple[Line, ...]:
+    """Gain and phase; the phase up to whole turns."""
+    w = page.name("w")
+    top, bottom = (_axes(page, part) for part in page.form.coefficients())
+    shift = top.shift - bottom.shift
+    gain = page.write.pieces(top.lead, bottom.lead)
+    certain = _sign(top.lead) * _sign(bottom.lead)
+    if not certain:
+        gain = type(gain)((call("Abs" if page.safe else "abs", gain.times()),))
+    size = product(
+        [*gain.top, page.power(w, max(shift, 0)), _size(page, top)],
+        [*gain.bottom, page.power(w, max(-shift, 0)), _size(page, bottom)],
+    )
+    lines = (Line(f"gain({w})", size.text), Line(f"phase({w})", str(_phase(page))))
+    return lines
+
+
+def _sign(polynomial: Polynomial) -> int:
+    """1 or -1 where all coefficients have that sign, else 0."""
+    signs = {1 if value > 0 else -1 for value in polynomial.coeffs()}
+    return signs.pop() if len(signs) == 1 else 0
+
+
+def _size(page: _Page, axes: _Axes) -> Phrase:
+    """The magnitude of real + j·imag."""
+    if axes.imag.is_zero:
+        return axes.real if axes.real.is_one else call("Abs" if page.safe else "abs", axes.real)
+    squares = [power(item, 2, page.sign) for item in (axes.real, axes.imag)]
+    return root(total(squares))
+
+
+def _phase(page: _Page) -> Phrase:
+    """Turns of the leading terms plus and minus angles, equal angles counted together."""
+    top, bottom = (_axes(page, part) for part in page.form.coefficients())
+    quarters = top.shift - bottom.shift
+    certain = _sign(top.lead) * _sign(bottom.lead)
+    quarters += 2 if certain < 0 else 0
+    angles: Counter[str] = Counter()
+    for axes, weight in ((top, 1), (bottom, -1)):
+        angle = _angle(axes)
+        if not angle.is_zero:
+            angles[angle.text] += -weight if angle.negative else weight
+    terms = [product([fraction(Fraction(quarters, 2)), Phrase("pi")]) if quarters else ZERO]
+    if abs(quarters) == 1:
+        terms = [Phrase("pi/2", Phrase("x*y").level, quarters < 0)]
+    if not certain:
+        terms.append(call("atan2", ZERO, page.write.ratio(top.lead, bottom.lead)))
+    terms += [product([fraction(count), Phrase(text)]) for text, count in angles.items() if count]
+    return total(terms)
+
+
+def _angle(axes: _Axes) -> Phrase:
+    """The angle of real + j·imag."""
+    if axes.imag.is_zero:
+        return ZERO if axes.real.is_one else call("atan2", ZERO, axes.real)
+    upright = Phrase(axes.imag.text, axes.imag.level)
+    angle = call("atan", upright) if axes.real.is_one else call("atan2", upright, axes.real)
+    return -angle if axes.imag.negative else angle
+
+
+def _delay(page: _Page) -> tuple[Line, ...]:
     """Phase delay -phase/ω and group delay -d(phase)/dω."""
-    terms = []
-    for part, sign in ((form.denominator, ""), (form.numerator, "-")):
-        real, imag = _axis(form, part)
-        top = _minus(form, _times_poly(form, real, _slope(imag)), _times_poly(form, imag, _slope(real)))
-        bottom = _plus(form, _times_poly(form, real, real), _times_poly(form, imag, imag))
-        if any(value != 0 for value in top):
-            first, second = _in_w(writer, top), _in_w(writer, bottom)
-            terms.append(f"{sign}({first})/({second})")
-    group = " + ".join(terms).replace("+ -", "- ") or "0"
-    phase = _real(form, writer)[1].text
-    return (Line("phase_delay(w)", f"-({phase})/w"), Line("group_delay(w)", group))
+    w = page.name("w")
+    lines = [Line(f"phase_delay({w})", str(product([-_phase(page)], [w])))]
+    if len(page.form.numerator) + len(page.form.denominator) > LARGEST_GROUPED:
+        return tuple(lines)  # the squares of so many terms are beyond reading
+    delays: Counter[str] = Counter()
+    for part, weight in ((page.form.denominator, 1), (page.form.numerator, -1)):
+        delay = _group_delay(page, part)
+        if not delay.is_zero:
+            delays[delay.text] += -weight if delay.negative else weight
+    terms = [_counted(count, text) for text, count in delays.items() if count]
+    return (*lines, Line(f"group_delay({w})", str(total(terms))))
 
 
-def _times_poly(
-    form: ClosedForm, first: list[Polynomial], second: list[Polynomial]
-) -> list[Polynomial]:
-    total = [form.basis.ring.constant(0)] * max(1, len(first) + len(second) - 1)
-    for i, a in enumerate(first):
-        for j, b in enumerate(second):
-            total[i + j] = total[i + j] + a * b
-    return total
+def _counted(count: int, text: str) -> Phrase:
+    from acsolve.equations.phrase import Level
+
+    return product([fraction(count), Phrase(text, Level.PRODUCT)])
 
 
-def _slope(values: list[Polynomial]) -> list[Polynomial]:
-    return [value * power for power, value in enumerate(values)][1:]
-
-
-def _plus(form: ClosedForm, first: list[Polynomial], second: list[Polynomial]) -> list[Polynomial]:
-    size = max(len(first), len(second))
+def _group_delay(page: _Page, polynomial: Polynomial) -> Phrase:
+    """d(arg P(jω))/dω = (re·im' - im·re')/(re² + im²)."""
+    form = page.form
+    coefficients = form.by_power(polynomial)
+    real, imag = _axis(form, coefficients[lowest(coefficients) :])
     zero = form.basis.ring.constant(0)
-    padded = [part + [zero] * (size - len(part)) for part in (first, second)]
-    return [a + b for a, b in zip(*padded, strict=True)]
+
+    def times(first: list[Polynomial], second: list[Polynomial]) -> list[Polynomial]:
+        found = [zero] * (len(first) + len(second))
+        for i, a in enumerate(first):
+            for j, b in enumerate(second):
+                found[i + j] = found[i + j] + a * b
+        return found
+
+    def rate(values: list[Polynomial]) -> list[Polynomial]:
+        return [value * place for place, value in enumerate(values)][1:] or [zero]
+
+    pairs = zip(times(real, rate(imag)), times(imag, rate(real)), strict=True)
+    top = [a - b for a, b in pairs]
+    squares = zip(times(real, real), times(imag, imag), strict=True)
+    bottom = [a + b for a, b in squares]
+    if all(value == 0 for value in top):
+        return ZERO
+    return page.unit(top, bottom, page.name("w"))
 
 
-def _minus(form: ClosedForm, first: list[Polynomial], second: list[Polynomial]) -> list[Polynomial]:
-    return _plus(form, first, [-value for value in second])
-
-
-def _asymptotes(form: ClosedForm, writer: Writer) -> tuple[Line, ...]:
+def _asymptotes(page: _Page) -> tuple[Line, ...]:
     """The leading term at either end; its slope is 20 dB a decade for each power of s."""
-    top, bottom = form.coefficients()
+    top, bottom = page.form.coefficients()
     lines = []
-    for label, (first, second) in (
-        ("low", (_lowest(top), _lowest(bottom))),
-        ("high", (len(top) - 1, len(bottom) - 1)),
+    for label, first, second in (
+        ("low", lowest(top), lowest(bottom)),
+        ("high", len(top) - 1, len(bottom) - 1),
     ):
         shift = first - second
-        gain = _ratio(writer, top[first], bottom[second])
-        variable = _power("s", abs(shift), writer.spelling)
-        if shift > 0:
-            text = _times(gain, variable)
-        elif shift < 0:
-            text = f"{_bracketed(gain)}/{variable}" if not _is_product(gain) else f"({gain})/{variable}"
-        else:
-            text = gain
-        lines.append(Line(f"H, {label} frequencies", f"{text}  ({20 * shift:+d} dB/decade)"))
+        gain = page.write.pieces(top[first], bottom[second])
+        text = product(
+            [*gain.top, page.power(_S, max(shift, 0))],
+            [*gain.bottom, page.power(_S, max(-shift, 0))],
+        )
+        slope = f"{20 * shift:+d} dB/decade" if shift else "flat"
+        lines.append(Line(f"H, {label} frequencies, {slope}", str(text)))
     return tuple(lines)
 
 
-_READINGS: dict[str, Callable[[ClosedForm, Writer], tuple[Line, ...]]] = {
+_READINGS: dict[str, Callable[[_Page], tuple[Line, ...]]] = {
     "unit": _unit,
     "factored": _factored,
     "standard": _standard,

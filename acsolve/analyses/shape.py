@@ -4,10 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from math import isqrt
 from typing import Literal
 
 from acsolve.algebra.ring import Polynomial, cancel, positive
 from acsolve.analyses.closed_form import ClosedForm
+from acsolve.equations.grouping import LARGEST_GROUPED, Writer, factored
+from acsolve.equations.phrase import Phrase, product, root
 from acsolve.equations.write import Spelling, polynomial_text
 
 ShapeName = Literal["low-pass", "high-pass", "band-pass", "notch", "all-pass", "other"]
@@ -23,7 +26,8 @@ class Quotient:
 
     def text(self, *, safe: bool = True) -> str:
         """The ratio on one line."""
-        return ratio_text(self.form, self.top, self.bottom, self.form.spelled(safe=safe))
+        spelling = self.form.spelled(safe=safe)
+        return str(Writer(self.form.basis, spelling).ratio(self.top, self.bottom))
 
     @property
     def is_zero(self) -> bool:
@@ -93,7 +97,9 @@ class StandardForm:
 
     First order: `k`, `tau`, `w0`. Second order: `k`, `w0`, `q` with the denominator
     1 + s/(q·w0) + s²/w0². `k` is the gain at zero frequency, at infinity for a high-pass,
-    at w0 for a band-pass.
+    at w0 for a band-pass. Of the shape "other" the numerator has parts of its own:
+    `tau_z` of 1 + tau_z·s; `w_z` and `q_z` of 1 + s/(q_z·w_z) + s²/w_z², where `w_z` is
+    left out if it is w0; and `k1` stands for `k` in k1·s·(1 + tau_z·s).
     """
 
     shape: ShapeName
@@ -109,33 +115,117 @@ def standard_form(form: ClosedForm, *, safe: bool = True) -> StandardForm | None
     order = len(bottom) - 1
     if order not in (1, 2) or len(top) > len(bottom) or bottom[0] == 0:
         return None
+    if order == 2 and _sign(bottom[0] * bottom[2]) < 0:
+        return None  # two real poles on either side: there is no w0
     shape = _shape(top, bottom)
-    spelling = form.spelled(safe=safe)
-
-    def text(first: Polynomial, second: Polynomial) -> str:
-        ratio = quotient(form, first, second)
-        return ratio_text(form, ratio.top, ratio.bottom, spelling)
-
-    place = {"high-pass": order, "band-pass": 1}.get(shape, 0)
-    parts = {"k": text(top[place], bottom[place])} if shape != "other" else {}
-    if order == 1:
-        parts |= {"tau": text(bottom[1], bottom[0]), "w0": text(bottom[0], bottom[1])}
+    write = Writer(form.basis, form.spelled(safe=safe))
+    if shape == "other":
+        parts = _numerator(write, top, bottom)
     else:
+        place = {"high-pass": order, "band-pass": 1}.get(shape, 0)
+        lossless = bottom[place] == 0  # a band-pass without losses: infinite at resonance
+        parts = {"k": Phrase("oo") if lossless else write.ratio(top[place], bottom[place])}
+    if order == 1:
         parts |= {
-            "w0": f"sqrt({text(bottom[0], bottom[2])})",
-            "q": _quality(form, bottom, spelling),
+            "tau": write.ratio(bottom[1], bottom[0]),
+            "w0": write.ratio(bottom[0], bottom[1]),
         }
-    return StandardForm(shape, order, parts)
+    else:
+        parts |= {"w0": natural_frequency(write, bottom), "q": quality(write, bottom)}
+    return StandardForm(shape, order, {name: str(part) for name, part in parts.items()})
 
 
-def _quality(form: ClosedForm, bottom: list[Polynomial], spelling: Spelling) -> str:
-    """sqrt(d0·d2)/d1 as text."""
-    if bottom[1] == 0:
-        return "oo"
-    product = polynomial_text(bottom[0] * bottom[2], form.basis, spelling)
-    divisor = polynomial_text(bottom[1], form.basis, spelling)
-    simple = not any(sign in divisor for sign in " */")
-    return f"sqrt({product})/{divisor}" if simple else f"sqrt({product})/({divisor})"
+def _numerator(
+    write: Writer, top: list[Polynomial], bottom: list[Polynomial]
+) -> dict[str, Phrase]:
+    """The named parts of a numerator of several terms; empty where it has none."""
+    if top[0] == 0:
+        return {"k1": write.ratio(top[1], bottom[0]), "tau_z": write.ratio(top[2], top[1])}
+    gain = {"k": write.ratio(top[0], bottom[0])}
+    if len(top) == 2:
+        return gain | {"tau_z": write.ratio(top[1], top[0])}
+    if _sign(top[0] * top[2]) < 0:
+        return {}
+    same = top[0] * bottom[2] == top[2] * bottom[0]
+    parts = gain if same else gain | {"w_z": natural_frequency(write, top)}
+    return parts if top[1] == 0 else parts | {"q_z": quality(write, top)}
+
+
+def _sign(polynomial: Polynomial) -> int:
+    """1 or -1 where all coefficients have that sign, else 0."""
+    signs = {1 if value > 0 else -1 for value in polynomial.coeffs()}
+    return signs.pop() if len(signs) == 1 else 0
+
+
+def natural_frequency(write: Writer, coefficients: list[Polynomial]) -> Phrase:
+    """sqrt(c0/c2), what can leave the root outside it."""
+    first, _, last = coefficients
+    top, bottom = cancel(first, last)
+    (outer, upper), (divisor, lower) = _rooted(top), _rooted(bottom)
+    lead = write.pieces(outer, divisor)
+    under = product(lead.top, [*lead.bottom, root(write.ratio(lower, upper))])
+    if upper == 1:
+        return under
+    return _shortest(product([*lead.top, root(write.ratio(upper, lower))], lead.bottom), under)
+
+
+def quality(write: Writer, coefficients: list[Polynomial]) -> Phrase:
+    """sqrt(c0·c2)/c1, the shortest of several spellings."""
+    first, middle, last = coefficients
+    if middle == 0:
+        return Phrase("oo")
+    outer, inner = _rooted(first * last)
+    outer, divisor = cancel(outer, middle)
+    ways = [_quotient(write, (outer, divisor), (inner, first * 0 + 1))]
+    shared = _radical(inner.gcd(divisor))
+    if shared != 1:  # sqrt(x·y)/(x·z) = sqrt(y/x)/z
+        ways.append(_quotient(write, (outer, divisor / shared), (inner / shared, shared)))
+    period = natural_frequency(write, [last, middle, first])
+    ways.append(product([period], [write.ratio(middle, first)]))
+    return _shortest(*ways)
+
+
+def _quotient(
+    write: Writer, ratio: tuple[Polynomial, Polynomial], inside: tuple[Polynomial, Polynomial]
+) -> Phrase:
+    """A ratio times the root of another."""
+    lead = write.pieces(*ratio)
+    return product([*lead.top, root(write.ratio(*inside))], lead.bottom)
+
+
+def _rooted(polynomial: Polynomial) -> tuple[Polynomial, Polynomial]:
+    """outside, inside with outside²·inside the polynomial and outside positive."""
+    outside = polynomial.context().constant(1)
+    if len(polynomial) > LARGEST_GROUPED:
+        return outside, polynomial
+    found = factored(polynomial)
+    inside = outside * (1 if found.number > 0 else -1)
+    number, whole = abs(found.number), 1
+    for prime in (2, 3, 5, 7, 11, 13):
+        while number % prime**2 == 0:
+            number, whole = number // prime**2, whole * prime
+    if isqrt(number) ** 2 == number:
+        number, whole = 1, whole * isqrt(number)
+    outside, inside = outside * whole, inside * number
+    for factor, exponent in (*found.sums, *found.monomial.factor()[1]):
+        count = int(exponent) // 2 if _sign(factor) > 0 else 0
+        outside, inside = outside * factor**count, inside * factor ** (int(exponent) - 2 * count)
+    return outside, inside
+
+
+def _radical(polynomial: Polynomial) -> Polynomial:
+    """The product of those irreducible factors that are positive whatever the parts."""
+    one = polynomial.context().constant(1)
+    if polynomial.is_constant():
+        return one
+    for factor, exponent in polynomial.factor()[1]:
+        if _sign(factor) > 0 and exponent == 1:
+            one = one * factor
+    return one
+
+
+def _shortest(*ways: Phrase) -> Phrase:
+    return min(ways, key=lambda item: len(str(item)))
 
 
 def _shape(top: list[Polynomial], bottom: list[Polynomial]) -> ShapeName:

@@ -10,14 +10,13 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from acsolve.analyses.modes import landmarks
-from acsolve.analyses.phase import at, below, continuous, track
+from acsolve.analyses.phase import at, at_zero_hertz, below, continuous, track
 from acsolve.analyses.question import Ask
 from acsolve.circuit.netlist import Netlist, Pair
 from acsolve.equations.numeric import float_values, takes_branch
-from acsolve.equations.precise import Local
 from acsolve.equations.result import Solution, Status
 from acsolve.equations.solver import Solver, prepare
-from acsolve.errors import AnalysisError, Diagnostic
+from acsolve.errors import AnalysisError, Diagnostic, EquationError
 
 Array = NDArray[Any]
 
@@ -73,13 +72,15 @@ def sweep(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> Sweep:
     AnalysisError
         [sweep.band] a frequency is negative or not finite.
     EquationError
-        [question.no-value], [equations.singular]; a single singular frequency is a status.
+        [question.no-value], [equations.singular], [equations.undriven]; a single frequency
+        without an answer is a status.
 
     """
     wanted, shape = _checked(hertz)
     ordered, back = np.unique(wanted, return_inverse=True)
     solver = solver_for(netlist, ask, ordered)
     solution = solver.solve(ordered)
+    _refuse_nowhere(solution)
     phase, settled = _phase(netlist, solver, solution, ordered)
     columns = {"hertz": ordered, **_columns(ordered, solution, phase)}
     arrays = {name: _frozen(column[back].reshape(shape)) for name, column in columns.items()}
@@ -130,6 +131,18 @@ def _checked(hertz: ArrayLike) -> tuple[Array, tuple[int, ...]]:
     return wanted.ravel().copy(), wanted.shape
 
 
+def _refuse_nowhere(solution: Solution) -> None:
+    """Refuse what has no answer at any frequency: the drive cannot be what is asked."""
+    if solution.status.size and np.all(solution.status == Status.UNDEFINED):
+        raise EquationError(
+            Diagnostic(
+                code="equations.undriven",
+                message="the equations have no solution with this drive at any frequency",
+                hint="Look for a short or another ideal source across the driven pair.",
+            )
+        )
+
+
 def _frozen(array: Array) -> Array:
     array.flags.writeable = False
     return array
@@ -143,7 +156,7 @@ def _phase(
     start = solver.near_zero()[0]
     if start is None or start.vanishes:
         return phase, start is not None
-    phase[hertz == 0] = _at_zero(start)
+    phase[hertz == 0] = at_zero_hertz(start)
     positive = hertz > 0
     if not positive.any():
         return phase, True
@@ -159,10 +172,6 @@ def _phase(
     usable = positive & (solution.status[0] < Status.ZERO)
     phase[usable] = at(known, turned, 2 * np.pi * hertz[usable], solution.phase()[0, usable])
     return phase, settled
-
-
-def _at_zero(start: Local) -> float:
-    return float(np.angle(start.mantissa) + start.order * np.pi / 2)
 
 
 def _columns(hertz: Array, solution: Solution, phase: Array) -> dict[str, Array]:

@@ -22,6 +22,7 @@ from acsolve.equations.exact import (
     exact_system,
     with_symbols,
 )
+from acsolve.equations.system import Functional
 from acsolve.errors import Diagnostic, EquationError
 
 
@@ -53,10 +54,7 @@ def ratio(
     refuse_unreferenced(system, ask)
     observed, driven = ask.observed(system), ask.driven(system)
     exact = exact_system(system, Expander(bindings(netlist), symbols))
-    if budget is not None and _each_its_own_symbol(netlist, exact):
-        count = exact.coefficient_sum(driven) + exact.coefficient_sum(observed)
-        if count > budget:
-            raise _over_budget(f"{count:,}" if count < 10**9 else f"{count:.3g}", budget)
+    _refuse_early(netlist, ask, exact, (observed, driven), budget)
     try:
         directions = exact.directions(frozenset(observed) | frozenset(driven), budget=budget)
     except OverBudgetError:
@@ -97,6 +95,28 @@ def closed_form(
     found = ratio(netlist, ask, chosen, budget=budget)
     form = normalised(ask, found.basis, found.observed, found.driven, bindings(netlist))
     return replace(form, checked=check_closed_form(with_symbols(netlist, chosen), form))
+
+
+_LARGEST_IMAGE = 300  # unknowns up to which an image of the determinant costs little
+
+
+def _refuse_early(
+    netlist: Netlist,
+    ask: Ask,
+    exact: ExactSystem,
+    parts: tuple[Functional, Functional],
+    budget: int | None,
+) -> None:
+    """Refuse what has no answer, or too large a one, before any polynomial is multiplied."""
+    observed, driven = parts
+    if not exact.basis.free_names or exact.columns > _LARGEST_IMAGE:
+        return
+    if exact.vanishes(driven):
+        raise _no_answer(ask, singular=exact.vanishes(observed))
+    if budget is not None and _each_its_own_symbol(netlist, exact):
+        count = exact.coefficient_sum(driven) + exact.coefficient_sum(observed)
+        if count > budget:
+            raise _over_budget(f"{count:,}" if count < 10**9 else f"{count:.3g}", budget)
 
 
 _PASSIVE = frozenset(

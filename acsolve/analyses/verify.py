@@ -15,6 +15,7 @@ from acsolve.circuit.expression import Frequency, Name, S
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.equations.dense import dense_ratio, exact_ratio
 from acsolve.equations.evaluate import (
+    Arithmetic,
     BallArithmetic,
     Evaluator,
     InexactError,
@@ -89,7 +90,7 @@ def _agrees_exactly(netlist: Netlist, form: ClosedForm, random: Random) -> bool:
         for item, value in zip(form.basis.generators, roots, strict=False)
     }
     overrides = {leaf.name: value for leaf, value in numbers.items() if isinstance(leaf, Name)}
-    evaluate = Evaluator(bindings(netlist), arithmetic, overrides=overrides)
+    evaluate = _evaluator(netlist, arithmetic, overrides)
     system = form.ask.system(netlist, branch_for=lambda part: _zero_value(part, evaluate))
     there = exact_ratio(
         system,
@@ -101,6 +102,16 @@ def _agrees_exactly(netlist: Netlist, form: ClosedForm, random: Random) -> bool:
     if there is None or bottom == 0:  # a pole of the answer, met by chance
         return there is None and bottom == 0
     return bool(there * bottom == top)
+
+
+def _evaluator(
+    netlist: Netlist, arithmetic: Arithmetic, overrides: Mapping[str, Any]
+) -> Evaluator:
+    """Over the circuit's values; a symbol that no equation holds (times zero, say) is one."""
+    values = bindings(netlist)
+    one = arithmetic.number(Fraction(1))
+    unheld = {name: one for name, value in values.items() if value.expression is None}
+    return Evaluator(values, arithmetic, overrides={**unheld, **overrides})
 
 
 _MANY_TERMS = 20_000  # above this one point is checked: evaluation takes a tenth of a second
@@ -154,9 +165,8 @@ def _difference(netlist: Netlist, form: ClosedForm, point: _Point, bits: int) ->
     """Relative difference at one point, infinite where the balls are too wide to tell."""
     with precision(bits):
         arithmetic = BallArithmetic()
-        values = bindings(netlist)
         overrides = {name: arithmetic.number(value) for name, value in point.symbols.items()}
-        evaluate = Evaluator(values, arithmetic, overrides=overrides)
+        evaluate = _evaluator(netlist, arithmetic, overrides)
         s = _complex(arithmetic, point)
         here = form.at(s, evaluate, arithmetic)
         system = form.ask.system(netlist, branch_for=lambda part: _is_zero(part, evaluate))

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-import sys
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any, TypeVar
 
 import acsolve
 from acsolve import AcsolveError, AnalysisError, Circuit, Diagnostic, Path
+from acsolve.cli.complaint import report
 from acsolve.cli.options import Options, refused
 from acsolve.cli.status import is_of_the_call
 from acsolve.cli.usage import near
@@ -44,15 +44,21 @@ def heading(circuit: Circuit, options: Options) -> Heading:
     from acsolve.report.entry import Heading
 
     if circuit.warnings and not options.as_json:
-        from acsolve.report.text import problems_text
-
-        sys.stderr.write(problems_text(circuit.warnings) + "\n")
+        report(circuit.warnings, as_json=False)
     return Heading(
         title=circuit.title,
         variant=circuit.variant,
         cautions=circuit.cautions,
         warnings=circuit.warnings,
     )
+
+
+def with_remarks(shared: Heading, path: Path, options: Options) -> Heading:
+    """The heading with the warnings that concern one question only, shown here."""
+    found = tuple(path.problems())
+    if found and not options.as_json:
+        report(found, as_json=False)
+    return replace(shared, warnings=(*shared.warnings, *found))
 
 
 @dataclass(frozen=True, slots=True)
@@ -91,7 +97,7 @@ def _path(circuit: Circuit, options: Options) -> Path:
     return circuit.path(
         options.source,
         options.target,
-        quantity=options.quantity,  # type: ignore[arg-type] - checked with the options
+        quantity=options.quantity,  # type: ignore[arg-type]
         ammeter=options.through,
     )
 
@@ -147,8 +153,5 @@ def _placed(error: AcsolveError, item: Asked) -> AcsolveError:
 def _causes(error: AcsolveError, item: Asked) -> list[Diagnostic]:
     if error.code not in ("equations.singular", "equations.undriven"):
         return []
-    try:
-        found = item.path.circuit.check().problems
-    except AcsolveError:
-        return []
+    found = item.path.problems() or item.path.circuit.check().problems
     return [problem for problem in found if problem.severity == "error"]

@@ -6,17 +6,25 @@ import sys
 from collections.abc import Callable, Iterable, Sequence
 from typing import TYPE_CHECKING
 
-from acsolve import AcsolveError, Path
-from acsolve.cli.options import Options, refused
+from acsolve import AcsolveError, Diagnostic, Path
 from acsolve.cli.complaint import report
+from acsolve.cli.options import Options, refused
 from acsolve.cli.status import ANSWERED, status_of
 
 if TYPE_CHECKING:
-    from acsolve.report.entry import Entry
+    from acsolve.report.entry import Entry, Kind
     from acsolve.report.plot import Picture
 
-Answered = Sequence[tuple[Path, "Entry"]]
+Answered = Sequence[tuple[Path | None, "Entry"]]
 Draw = Callable[[Answered, Options], "Picture"]
+
+
+def refuse_unfit(options: Options, kind: Kind) -> None:
+    """Refuse files that could not be saved, before any work is done."""
+    if options.save:
+        from acsolve.report import save
+
+        save.refuse_unfit(options.save, kind)
 
 
 def deliver(
@@ -59,12 +67,12 @@ def _deliver_errors(
 
         sys.stdout.write(answers_text(entries))
         sys.stdout.flush()
-    report(problems, as_json=options.as_json)
+    report(problems, arguments=options.arguments, as_json=options.as_json)
     return max(status_of(error) for error in errors)
 
 
-def _distinct(problems: Iterable[object]) -> list[object]:
-    found: list[object] = []
+def _distinct(problems: Iterable[Diagnostic]) -> list[Diagnostic]:
+    found: list[Diagnostic] = []
     for item in problems:
         if item not in found:
             found.append(item)

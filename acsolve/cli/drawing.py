@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from math import pi
 from typing import TYPE_CHECKING, Any
 
 from acsolve import AnalysisError, Diagnostic, EquationError, Path
@@ -12,11 +13,13 @@ if TYPE_CHECKING:
     from acsolve.report.entry import Entry
     from acsolve.report.plot import Picture
 
+    Group = list[tuple[Path, Entry]]
+
 
 def draw(answered: Answered, options: Options) -> Picture:
-    """Every path once, as a curve over the band that shows it, cutoffs marked."""
-    from acsolve.report.entry import letter, question_text, unit_sign
-    from acsolve.report.plot import LARGEST, Curve, Picture, curve_labels
+    """Every question once, as a curve over the band that shows it, cutoffs marked."""
+    from acsolve.report.entry import curve_words, unit_sign
+    from acsolve.report.plot import LARGEST, Curve, Picture
 
     groups = _by_question(answered)
     entries = [entry for _, entry in answered]
@@ -27,29 +30,26 @@ def draw(answered: Answered, options: Options) -> Picture:
             f"one picture cannot hold these {len(groups)} answers",
             "Pick one with --from and --to, or --into.",
         )
-    labels = curve_labels([question_text(ask) for ask in asks if ask is not None])
-    band = None if entries[0].kind == "sweep" else _shared_band(groups)
-    curves = tuple(
-        Curve(_swept(group, band), label, _marks(group))
-        for group, label in zip(groups, labels, strict=True)
-    )
+    subtitle, labels = curve_words([ask for ask in asks if ask is not None])
+    marks = [_marks(group) for group in groups]
+    swept = _given(groups) or _swept(groups, marks)
     heading = entries[0].heading
     variant = f' (variant "{heading.variant}")' if heading.variant else ""
-    del letter
     return Picture(
-        curves=curves,
+        curves=tuple(map(Curve, swept, labels, marks)),
         title=(heading.title or "") + variant,
-        subtitle=labels[0] if len(groups) == 1 else "",
+        subtitle=subtitle,
         unit=next(iter(units), ""),
         linear=options.linear,
         level_db=_level(entries),
     )
 
 
-def _by_question(answered: Answered) -> list[list[tuple[Path, Entry]]]:
-    """The answers in groups that share their question."""
-    groups: list[list[tuple[Path, Entry]]] = []
+def _by_question(answered: Answered) -> list[Group]:
+    """The answers in groups that share their question; a sweep is a group of its own."""
+    groups: list[Group] = []
     for path, entry in answered:
+        assert path is not None, "an answer that is drawn belongs to a path"
         home = next((group for group in groups if group[0][1].ask == entry.ask), None)
         if home is None or entry.kind == "sweep":
             groups.append([(path, entry)])
@@ -58,16 +58,30 @@ def _by_question(answered: Answered) -> list[list[tuple[Path, Entry]]]:
     return groups
 
 
-def _swept(group: list[tuple[Path, Entry]], band: str | None) -> Any:
-    path, entry = group[0]
-    return entry.sweep if band is None else path.sweep(band, points="60/decade")
+def _given(groups: list[Group]) -> list[Any]:
+    """The sweeps themselves, where sweeps were asked for."""
+    return [group[0][1].sweep for group in groups if group[0][1].sweep is not None]
 
 
-def _marks(group: list[tuple[Path, Entry]]) -> tuple[float, ...]:
+def _swept(groups: list[Group], marks: list[tuple[float, ...]]) -> list[Any]:
+    """Each path over one band that shows every pole, zero and mark."""
+    from acsolve.report.band import drawn_frequencies, natural_band
+
+    roots = [features(group[0][0]) for group in groups]
+    places = [mark for item in marks for mark in item]
+    places += [abs(root) / (2 * pi) for item in roots for root in item or ()]
+    if not places and None in roots:
+        raise no_band()
+    band = natural_band(places)
+    return [
+        group[0][0].sweep(drawn_frequencies(band, own or (), mark))
+        for group, own, mark in zip(groups, roots, marks, strict=True)
+    ]
+
+
+def _marks(group: Group) -> tuple[float, ...]:
     """The cutoffs to mark, in hertz: those answered, or those at half power."""
     path, entry = group[0]
-    if entry.kind == "sweep":
-        return ()
     found = [item.cutoff for _, item in group]
     if entry.kind == "transfer":
         try:
@@ -75,7 +89,7 @@ def _marks(group: list[tuple[Path, Entry]]) -> tuple[float, ...]:
         except (AnalysisError, EquationError):
             return ()
     marks = [item.hertz for answer in found if answer is not None for item in answer.cutoffs]
-    return tuple(mark for mark in marks if mark is not None)
+    return tuple(sorted(mark for mark in marks if mark is not None))
 
 
 def _level(entries: list[Entry]) -> float | None:
@@ -88,37 +102,25 @@ def _level(entries: list[Entry]) -> float | None:
     return gain_in_db(found.reference.gain) + found.level_db
 
 
-def _shared_band(groups: list[list[tuple[Path, Entry]]]) -> str:
-    """One band that shows every group's poles, zeros and cutoffs."""
-    from acsolve.report.band import natural_band
-
-    places: list[float] = []
-    for group in groups:
-        places += [*_marks(group), *(features(group[0][0]) or [])]
-    if not places and any(features(group[0][0]) is None for group in groups):
-        raise no_band()
-    return band_text(natural_band(places))
-
-
-def features(path: Path) -> list[float] | None:
-    """Poles and zeros of a path in hertz, None where they are not known.
+def features(path: Path) -> tuple[complex, ...] | None:
+    """Poles and zeros of a path in rad/s, None where they are not known.
 
     Raises
     ------
     EquationError
         [question.no-value] a part has no value, so no curve can be drawn.
     """
-    from acsolve.report.band import landmarks
+    from acsolve.report.band import roots_of
 
     found = path.transfer()
     if found.form.symbols:
         path.response([1.0])
-    return landmarks(found)
+    return roots_of(found)
 
 
 def band_text(band: tuple[float, float]) -> str:
     """A band as --band writes it."""
-    return f"{band[0]:g}Hz..{band[1]:g}Hz"
+    return f"{band[0]!r}Hz..{band[1]!r}Hz"
 
 
 def no_band() -> AnalysisError:

@@ -6,8 +6,8 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any, Literal
 
 from acsolve import AcsolveError
-from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit
-from acsolve.cli.deliver import deliver
+from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit, with_remarks
+from acsolve.cli.deliver import deliver, refuse_unfit
 from acsolve.cli.drawing import draw
 from acsolve.cli.options import Options
 from acsolve.cli.progress import progress
@@ -22,9 +22,8 @@ _MOST_ORDER = 2
 def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> int:
     """Answer every question of a kind with its closed form."""
     from acsolve.report.entry import Entry
-    from acsolve.report.save import refuse_unfit
 
-    refuse_unfit(options.save, kind)
+    refuse_unfit(options, kind)
     circuit = open_circuit(options)
     shared = heading(circuit, options)
 
@@ -36,8 +35,9 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
             nested=options.nested,
         )
         twin = None if options.as_json else symbolic_twin(item, found)
+        here = with_remarks(shared, item.path, options) if _is_nothing(found) else shared
         ask = item.path.ask
-        return [Entry(kind=kind, heading=shared, ask=ask, transfer=found, formula=twin)]
+        return [Entry(kind=kind, heading=here, ask=ask, transfer=found, formula=twin)]
 
     with progress("working out the closed form"):
         answered, errors = answer_all(asked(circuit, kind, options), answer)
@@ -53,3 +53,8 @@ def symbolic_twin(item: Asked, found: Any) -> Any:
         return item.path.transfer(symbolic=True)
     except AcsolveError:
         return None
+
+
+def _is_nothing(found: Any) -> bool:
+    """Whether the answer is zero at every frequency, which a missing connection makes it."""
+    return bool(found.form.text() == "0") if found.order == 0 else False

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from importlib import import_module
+from textwrap import wrap
 from typing import Any
 
 import click
@@ -69,7 +70,7 @@ class Program(click.Group):
                 "",
                 *(f"  {name.ljust(width)}{text}" for name, text in COMMANDS.items()),
                 "",
-                "acsolve COMMAND --help tells what a command takes; acsolve --version the version.",
+                "acsolve COMMAND --help tells what a command takes.",
             ]
         )
 
@@ -86,7 +87,9 @@ class Command(click.Command):
         rows = [_option_row(item) for item in self.params if isinstance(item, click.Option)]
         width = max(len(left) for left, _ in rows) + 2
         lines = [f"acsolve {self.name} FILE [options]", "", self.help or "", ""]
-        lines += [f"  {left.ljust(width)}{text}" for left, text in rows]
+        for left, text in rows:
+            first, *rest = wrap(text, 78 - width)
+            lines += [f"  {left.ljust(width)}{first}", *(" " * (width + 2) + x for x in rest)]
         if self.example:
             lines += ["", f"For example: acsolve {self.name} {self.example}"]
         return "\n".join(lines)
@@ -98,7 +101,7 @@ def _option_row(option: click.Option) -> tuple[str, str]:
     return f"{name}{place}", option.help or ""
 
 
-def _show_version(ctx: click.Context, param: click.Parameter, value: bool) -> None:  # noqa: ARG001, FBT001
+def _show_version(ctx: click.Context, param: click.Parameter, value: bool) -> None:  # noqa: ARG001
     if value:
         from acsolve import __version__
 
@@ -106,7 +109,7 @@ def _show_version(ctx: click.Context, param: click.Parameter, value: bool) -> No
         ctx.exit()
 
 
-def _show_help(ctx: click.Context, param: click.Parameter, value: bool) -> None:  # noqa: ARG001, FBT001
+def _show_help(ctx: click.Context, param: click.Parameter, value: bool) -> None:  # noqa: ARG001
     if value:
         click.echo(ctx.get_help())
         ctx.exit()

@@ -39,6 +39,7 @@ class Options:
     reference: str | None = None
     save: tuple[str, ...] = ()
     as_json: bool = False
+    arguments: tuple[str, ...] = ()  # the whole command line, to name options in messages
 
     @property
     def file(self) -> str:
@@ -93,9 +94,7 @@ _TABLE = {
     "to": _option("--to target", "PAIR", "where it is observed, likewise"),
     "into": _option("--into", "PAIR", "the pair whose impedance is asked"),
     "through": _option("--through", "AMMETER", "observe the current of an ammeter instead"),
-    "quantity": _option(
-        "--quantity", "NAME", "voltage-ratio, current-ratio, transimpedance, transadmittance"
-    ),
+    "quantity": _option("--quantity", "NAME", ", ".join(QUANTITIES)),
     "variant": _option("--variant", "NAME", "the circuit as this variant says"),
     "let": _option("--let", "NAME=VALUE", "another value; may be repeated", multiple=True),
     "symbolic": _option("--symbolic", None, "ignore all numbers"),
@@ -123,10 +122,14 @@ def make_command(
     name: str, purpose: str, work: Callable[[Options], int], options: Iterable[str], example: str
 ) -> Command:
     """A command that reads its options, checks them and does its work."""
+    listed = tuple(options)
 
     def callback(**given: Any) -> int:
-        chosen = Options(**{key: value for key, value in given.items() if value is not None})
+        known = {key: value for key, value in given.items() if value is not None}
+        chosen = Options(**known, arguments=tuple(click.get_current_context().obj or ()))
         _check(chosen)
+        if "to" in listed:
+            _check_target(chosen)
         return work(chosen)
 
     return Command(
@@ -137,7 +140,7 @@ def make_command(
         example=example,
         params=[
             click.Argument(["files"], nargs=-1),
-            *(_TABLE[option]() for option in options),
+            *(_TABLE[option]() for option in listed),
             help_option(),
         ],
     )
@@ -164,7 +167,6 @@ def _check(options: Options) -> None:
         )
     if options.into is not None and options.quantity is not None:
         raise refused("--into always asks an impedance", "Leave --quantity out.")
-    _check_target(options)
     if options.at is not None and (options.band or options.points or options.linear):
         raise refused(
             "--at names every frequency, so --band, --points and --linear do not go with it",

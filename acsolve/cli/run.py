@@ -40,7 +40,7 @@ def _dispatch(arguments: Sequence[str], *, as_json: bool) -> int:
     from acsolve.cli.group import program
 
     try:
-        with program.make_context("acsolve", list(arguments)) as context:
+        with program.make_context("acsolve", list(arguments), obj=tuple(arguments)) as context:
             status = program.invoke(context)
         return int(status or ANSWERED)
     except click.exceptions.Exit as leave:

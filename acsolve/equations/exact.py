@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from random import Random
 
 from acsolve.algebra.cofactor import MinorPlan, minors, plan_minors
 from acsolve.algebra.ring import Polynomial, Ring, common_denominator
@@ -98,7 +99,7 @@ class Symbols:
 
 
 def with_symbols(netlist: Netlist, symbols: Symbols) -> Netlist:
-    """The netlist without the values that stay symbols: a zero among them opens or shorts nothing."""
+    """The netlist without the values that stay symbols: no zero among them opens or shorts."""
     kept = {
         name: replace(value, expression=None)
         for name, value in netlist.values()
@@ -186,13 +187,32 @@ class ExactSystem:
         from flint import fmpz_mat
 
         ones = [1] * max(1, len(self.basis.ring.names))
+        return abs(int(fmpz_mat(self._square(functional, ones)).det()))
+
+    def vanishes(self, functional: Functional) -> bool:
+        """Whether an answer's part is zero, seen before any polynomial is multiplied.
+
+        The determinant at a random point modulo a prime of 61 bits: "not zero" is certain,
+        "zero" is wrong with a probability below degree / 2**61 (J. T. Schwartz, 1980).
+        """
+        from flint import nmod_mat
+
+        random = Random(20)  # noqa: S311 - the same point on every run, no secret
+        point = [random.randrange(1, _PRIME) for _ in self.basis.ring.names] or [1]
+        return int(nmod_mat(self._square(functional, point), _PRIME).det()) == 0
+
+    def _square(self, functional: Functional, point: Sequence[int]) -> list[list[int]]:
+        """The matrix completed by one row, with numbers for the generators."""
         square = [[0] * self.columns for _ in range(self.columns)]
         for row, entries in zip(square, self.rows, strict=False):
             for column, entry in entries.items():
-                row[column] = int(entry(*ones))
+                row[column] = int(entry(*point))
         for column, factor in functional.items():
             square[-1][column] = factor
-        return abs(int(fmpz_mat(square).det()))
+        return square
+
+
+_PRIME = (1 << 61) - 1
 
 
 def exact_system(system: System, expand: Expander) -> ExactSystem:

@@ -78,13 +78,13 @@ def set_magnitude_axis(axes: Axes, sizes: Any, unit: str) -> None:
     axes.yaxis.set_major_formatter(FuncFormatter(lambda value, _: tick_text(value, unit, 4)))
 
 
-_MOST_TICKS = 8
+_MOST_TICKS = 9
 
 
 def log_ticks(low: float, high: float) -> list[float]:
     """Round values for a logarithmic axis: decades, or 1-2-5 steps where it is short."""
     first, last = floor(log10(low)), ceil(log10(high))
-    step = max(1, ceil((last - first) / _MOST_TICKS))
+    step = max(1, ceil((last - first) / (_MOST_TICKS - 1)))
     sets: tuple[tuple[float, ...], ...] = ((1,), (1, 3), (1, 2, 5), tuple(range(1, 10)))
     best: list[float] = []
     for digits in sets if step == 1 else sets[:1]:
@@ -103,7 +103,7 @@ def even_ticks(low: float, high: float) -> list[float]:
     """Three to seven round values at even steps."""
     if high <= low:
         return [low]
-    rough = (high - low) / 4
+    rough = (high - low) / 6
     power = 10.0 ** floor(log10(rough))
     step = next(item * power for item in (1, 2, 5, 10) if item * power >= rough)
     return [k * step for k in range(ceil(low / step), floor(high / step) + 1)]

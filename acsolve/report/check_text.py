@@ -7,8 +7,8 @@ from typing import TYPE_CHECKING
 
 from acsolve.errors import frame
 from acsolve.report.entry import Entry, pair_text
+from acsolve.report.root_text import root_words
 from acsolve.report.table import labelled
-from acsolve.report.transfer_text import root_words
 
 if TYPE_CHECKING:
     from acsolve.analyses.check import Modes
@@ -27,8 +27,8 @@ def check_lines(entry: Entry) -> list[str]:
         ("nodes", str(len(found.nodes))),
         ("parts", f"{len(found.parts)}  ({listed})" if listed else "0"),
     ]
-    for item in found.modes:
-        rows += _mode_rows(item)
+    for modes in found.modes:
+        rows += _mode_rows(modes)
     rows.append(("problems", problem_count(entry)))
     lines = labelled(rows)
     for item in found.problems[:_FRAMES_SHOWN]:
@@ -65,5 +65,5 @@ def _mode_rows(item: Modes) -> list[tuple[str, str]]:
         shown.append(f"… and {len(words) - _MODES_SHOWN} more; --json gives all of them")
     rows += [("natural modes" if place == 0 else "", text) for place, text in enumerate(shown)]
     if words:
-        rows.append(("", "every mode decays" if item.stable else "not every mode decays"))
+        rows.append(("", "every mode decays" if item.decays else "not every mode decays"))
     return rows

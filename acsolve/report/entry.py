@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
@@ -75,12 +76,41 @@ def question_text(ask: Ask) -> str:
         return f"impedance looking into {pair_text(ask.target)}"
     seen = f"the ammeter {ask.ammeter}" if ask.ammeter else pair_text(ask.target)
     if ask.source is None:
-        return f"voltage at {seen}, driven by the file's own sources"
+        what = "current of" if ask.observes_current else "voltage at"
+        return f"{what} {seen}, driven by the file's own sources"
     return f"{_WORDS[ask.quantity]} from {pair_text(ask.source)} to {seen}"
 
 
+def curve_words(asks: Sequence[Ask]) -> tuple[str, tuple[str, ...]]:
+    """What is common to several questions, and what tells them apart, in words."""
+    if len(asks) == 1:
+        return question_text(asks[0]), (question_text(asks[0]),)
+    heads = {(ask.quantity, ask.source) for ask in asks}
+    alike = len(heads) == 1 and asks[0].source is not None
+    labels = [_target_text(ask) if alike else question_text(ask) for ask in asks]
+    source = asks[0].source
+    common = f"{_WORDS[asks[0].quantity]} from {pair_text(source)}" if alike and source else ""
+    return common, tuple(_numbered(labels))
+
+
+def _target_text(ask: Ask) -> str:
+    return f"to the ammeter {ask.ammeter}" if ask.ammeter else f"to {pair_text(ask.target)}"
+
+
+def _numbered(labels: Sequence[str]) -> list[str]:
+    """Distinct names: repeated ones are numbered."""
+    seen: dict[str, int] = {}
+    named = []
+    for label in labels:
+        seen[label] = seen.get(label, 0) + 1
+        named.append(label if seen[label] == 1 else f"{label} ({seen[label]})")
+    return named
+
+
 def letter(ask: Ask) -> str:
-    """The letter of the response: H, Z, Y or V."""
+    """The letter of the response: H, Z, Y, V or I."""
+    if ask.quantity == "response" and ask.observes_current:
+        return "I"
     return _LETTERS[ask.quantity]
 
 

@@ -52,7 +52,8 @@ def engineering(value: float, unit: str, digits: int = DIGITS, *, even: bool = F
     if power not in _PREFIXES:
         return f"{plain(value, digits)} {unit}"
     if even:
-        mantissa = f"{float(mantissa):#.{digits}g}".rstrip(".")
+        whole = len(mantissa.lstrip("-").split(".")[0])
+        mantissa = f"{float(mantissa):.{max(0, digits - whole)}f}"
     return f"{mantissa} {_PREFIXES[power]}{unit}"
 
 

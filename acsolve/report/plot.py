@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import io
 import logging
-from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -12,7 +11,6 @@ import numpy as np
 
 from acsolve.report.axes import (
     degree_steps,
-    picture_unit,
     set_frequency_axis,
     set_magnitude_axis,
 )
@@ -35,13 +33,14 @@ _LINES: tuple[tuple[str, Any], ...] = (
 )
 LARGEST = len(_LINES)
 _INK, _PALE = "#222222", "#c9c9c9"
-_SETTINGS = {
+_SETTINGS: Any = {
     "font.family": "DejaVu Sans",
     "font.size": 9.5,
     "svg.hashsalt": "acsolve",
     "svg.fonttype": "path",
     "axes.unicode_minus": True,
     "path.simplify": True,
+    "text.parse_math": False,  # titles come from users; a dollar sign is one
 }
 
 
@@ -136,34 +135,77 @@ def _draw(upper: Axes, lower: Axes, curve: Curve, place: int, picture: Picture) 
     size = magnitude(curve.sweep, picture.unit)
     upper.plot(curve.sweep.hertz, size, **style)
     lower.plot(curve.sweep.hertz, curve.sweep.phase_deg, **style)
-    for mark in curve.marks:
-        _mark(upper, lower, curve, mark, picture)
+    if curve.marks:
+        _mark(upper, lower, curve, picture)
 
 
-def _mark(upper: Axes, lower: Axes, curve: Curve, mark: float, picture: Picture) -> None:
+def _mark(upper: Axes, lower: Axes, curve: Curve, picture: Picture) -> None:
+    """Dots at the marked frequencies; a single curve also gets lines and numbers."""
+    hertz = np.asarray(curve.sweep.hertz, dtype=float)
+    marks = [mark for mark in curve.marks if hertz[0] <= mark <= hertz[-1]]
+    axis = hertz if picture.linear else np.log(np.maximum(hertz, 1e-300))
+    where = np.array(marks) if picture.linear else np.log(np.array(marks))
+    sizes = np.interp(where, axis, magnitude(curve.sweep, picture.unit))
+    upper.plot(marks, sizes, "o", color=_INK, markersize=4.5, zorder=4)
+    if len(picture.curves) > 1:
+        return
+    line: dict[str, Any] = {
+        "color": _INK,
+        "linewidth": 0.9,
+        "linestyle": (0, (4, 3)),
+        "zorder": 1.5,
+    }
+    for mark in marks:
+        upper.axvline(mark, **line)
+        lower.axvline(mark, **line)
+    shares = (where - axis[0]) / max(axis[-1] - axis[0], 1e-300)
+    for mark, row, left in zip(marks, *label_rows(shares.tolist()), strict=True):
+        _number(upper, mark, row, left=left)
+
+
+_LABEL = 0.15  # width of a number beside its line, as a share of the axis
+_MOST_ROWS = 6
+
+
+def label_rows(shares: list[float]) -> tuple[list[int], list[bool]]:
+    """Row and side of each number, so that none lies over another.
+
+    The first of several stands left of its line, as does one at the right edge.
+    """
+    rows: list[int] = []
+    sides: list[bool] = []
+    taken: list[tuple[int, float, float]] = []
+    for place, share in enumerate(shares):
+        left = share > 1 - _LABEL or (place == 0 and len(shares) > 1 and share > _LABEL)
+        start, end = (share - _LABEL, share) if left else (share, share + _LABEL)
+        row = next(
+            row
+            for row in range(len(shares) + 1)
+            if not any(row == other and start < b and a < end for other, a, b in taken)
+        )
+        taken.append((row, start, end))
+        rows.append(row)
+        sides.append(left)
+    return rows, sides
+
+
+def _number(axes: Axes, mark: float, row: int, *, left: bool) -> None:
     from acsolve.report.axes import tick_text
 
-    hertz = np.asarray(curve.sweep.hertz, dtype=float)
-    if not hertz[0] <= mark <= hertz[-1]:
+    if row >= _MOST_ROWS:
         return
-    line = {"color": _INK, "linewidth": 0.9, "linestyle": (0, (4, 3)), "zorder": 1.5}
-    upper.axvline(mark, **line)
-    lower.axvline(mark, **line)
-    axis = hertz if picture.linear else np.log(np.maximum(hertz, 1e-300))
-    where = mark if picture.linear else np.log(mark)
-    size = np.interp(where, axis, magnitude(curve.sweep, picture.unit))
-    upper.plot([mark], [size], "o", color=_INK, markersize=4.5, zorder=4)
-    upper.annotate(
+    axes.annotate(
         tick_text(mark, "Hz", 4),
-        xy=(mark, 1.0),
+        xy=(mark, 0.0),
         xycoords=("data", "axes fraction"),
-        xytext=(3, -3),
+        xytext=(-4 if left else 4, 5 + 14 * row),
         textcoords="offset points",
-        ha="left",
-        va="top",
+        ha="right" if left else "left",
+        va="bottom",
         color=_INK,
-        backgroundcolor=(1, 1, 1, 0.8),
         fontsize=8.5,
+        bbox={"facecolor": "white", "edgecolor": "none", "pad": 1.0, "alpha": 0.85},
+        zorder=3,
     )
 
 
@@ -213,24 +255,3 @@ def _sizes(picture: Picture) -> Any:
 
 def _hertz(picture: Picture) -> Any:
     return np.concatenate([np.asarray(curve.sweep.hertz) for curve in picture.curves])
-
-
-def curve_labels(labels: Sequence[str]) -> tuple[str, ...]:
-    """Distinct names for the legend: repeated ones are numbered."""
-    seen: dict[str, int] = {}
-    named = []
-    for label in labels:
-        seen[label] = seen.get(label, 0) + 1
-        named.append(label if seen[label] == 1 else f"{label} ({seen[label]})")
-    return tuple(named)
-
-
-__all__ = [
-    "LARGEST",
-    "Curve",
-    "Picture",
-    "curve_labels",
-    "figure",
-    "picture_content",
-    "picture_unit",
-]

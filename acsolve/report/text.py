@@ -2,24 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+import re
+from collections.abc import Iterable
+from importlib import import_module
 
 from acsolve.errors import Diagnostic, frame
-from acsolve.report.check_text import check_lines
-from acsolve.report.cutoff_text import cutoff_lines
 from acsolve.report.entry import Entry, question_text
-from acsolve.report.equations_text import equations_lines
-from acsolve.report.sweep_text import sweep_lines
 from acsolve.report.table import wrapped
-from acsolve.report.transfer_text import transfer_lines
 
-_BODIES: dict[str, Callable[[Entry], list[str]]] = {
-    "transfer": transfer_lines,
-    "impedance": transfer_lines,
-    "cutoff": cutoff_lines,
-    "sweep": sweep_lines,
-    "check": check_lines,
-    "equations": equations_lines,
+#: Kind of answer -> the module and function that write its body, loaded when it occurs.
+_BODIES = {
+    "transfer": ("transfer_text", "transfer_lines"),
+    "impedance": ("transfer_text", "transfer_lines"),
+    "cutoff": ("cutoff_text", "cutoff_lines"),
+    "sweep": ("sweep_text", "sweep_lines"),
+    "check": ("check_text", "check_lines"),
+    "equations": ("equations_text", "equations_lines"),
 }
 _FRAMES_SHOWN = 50
 
@@ -36,11 +34,17 @@ def answers_text(entries: Iterable[Entry]) -> str:
     for entry in listed:
         question = _question(entry)
         lines += [*([""] if lines and question and entry is not listed[0] else []), *question]
-        lines += [*([""] if lines else []), *_BODIES[entry.kind](entry)]
+        lines += [*([""] if lines else []), *_body(entry)]
     for text in heading.cautions:
         first, *rest = wrapped(text, 71)
         lines += ["", f"caution: {first}", *(" " * 9 + line for line in rest)]
     return "\n".join(lines) + "\n"
+
+
+def _body(entry: Entry) -> list[str]:
+    module, function = _BODIES[entry.kind]
+    lines: list[str] = getattr(import_module(f"acsolve.report.{module}"), function)(entry)
+    return lines
 
 
 def _question(entry: Entry) -> list[str]:
@@ -56,7 +60,12 @@ def problems_text(problems: Iterable[Diagnostic]) -> str:
     listed = list(problems)
     texts = [frame(item) for item in listed[:_FRAMES_SHOWN]]
     if len(listed) > _FRAMES_SHOWN:
-        texts.append(
-            f"… and {len(listed) - _FRAMES_SHOWN} more problems; --json gives all of them."
-        )
+        hidden = len(listed) - _FRAMES_SHOWN + _uncounted(listed[-1])
+        texts.append(f"… and {hidden:,} more problems; --json gives the first {len(listed)}.")
     return "\n\n".join(texts) + "\n"
+
+
+def _uncounted(last: Diagnostic) -> int:
+    """How many problems the closing diagnostic of a long list stands for, beside itself."""
+    number = re.search(r"\d+", last.message)
+    return int(number[0]) - 1 if last.code == "limit.problems" and number else 0

@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-from itertools import groupby
+import re
 from typing import TYPE_CHECKING
 
 from acsolve.report.entry import Entry, letter, unit_sign
@@ -16,6 +15,7 @@ from acsolve.report.number import (
     hertz,
     plain,
 )
+from acsolve.report.root_text import root_words
 from acsolve.report.table import labelled
 from acsolve.report.values import limit_number, standard_numbers
 
@@ -148,17 +148,17 @@ def _formula_texts(found: TransferAnswer, formula: TransferAnswer | None) -> dic
     return {
         name: text
         for name, text in spelled.parts.items()
-        if len(text) <= _LONGEST_FORMULA and text not in ("1", "oo")
+        if len(text) <= _LONGEST_FORMULA and text != "oo" and re.search("[A-Za-z]", text)
     }
 
 
-def _quantity(name: str, numbers: dict[str, float], unit: str) -> str:
+def _quantity(name: str, numbers: dict[str, complex], unit: str) -> str:
     if name not in numbers:
         return ""
-    value = numbers[name]
+    if name == "k":
+        return complex_text(numbers[name], unit)
+    value = numbers[name].real
     match name:
-        case "k":
-            return engineering(value, unit)
         case "tau":
             return engineering(value, "s")
         case "w0":
@@ -178,29 +178,6 @@ def _root_rows(found: TransferAnswer) -> list[tuple[str, str]]:
             shown.append(f"… and {len(words) - _ROOTS_SHOWN} more; --json gives all of them")
         rows += [(label if place == 0 else "", text) for place, text in enumerate(shown)]
     return rows
-
-
-def root_words(roots: Iterable[complex]) -> list[str]:
-    """Each root once, a conjugate pair as one, with its frequency and quality factor."""
-    words = []
-    upper = [root for root in roots if root.imag >= 0]
-    for root, same in groupby(upper):
-        count = sum(1 for _ in same)
-        times = "" if count == 1 else f", {count} times"
-        words.append(_root_text(root) + times)
-    return words
-
-
-def _root_text(root: complex) -> str:
-    size = abs(root)
-    if size == 0:
-        return "0"
-    frequency = engineering(hertz(size), "Hz")
-    if root.imag == 0:
-        return f"{plain(root.real)} rad/s  ({frequency})"
-    real = plain(root.real) if root.real else "0"
-    quality = "" if root.real == 0 else f", Q = {plain(size / (-2 * root.real))}"
-    return f"{real} +- j{plain(root.imag)} rad/s  ({frequency}{quality})"
 
 
 def checked_rows(form: ClosedForm | NestedForm) -> list[tuple[str, str]]:

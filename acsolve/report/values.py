@@ -86,24 +86,24 @@ def limit_number(limit: Limit) -> complex | None:
         return as_complex(pair[0] / pair[1])
 
 
-def standard_numbers(form: ClosedForm, names: Mapping[str, object]) -> dict[str, float]:
-    """Numbers for the named quantities of the standard form: tau, w0 and q.
+def standard_numbers(form: ClosedForm, names: Mapping[str, object]) -> dict[str, complex]:
+    """Numbers for the named quantities of the standard form.
 
-    With the denominator d0 + d1·s + d2·s²: w0 = sqrt(d0/d2), q = sqrt(d0·d2)/d1; of first
-    order tau = d1/d0, w0 = d0/d1. `k` is a ratio of two coefficients, chosen by the shape.
+    With the denominator 1 + d1·s + d2·s²: w0 = 1/sqrt(d2), q = sqrt(d2)/d1; of first order
+    tau = d1, w0 = 1/d1. `k` is a ratio of two coefficients, chosen by the shape.
     """
     found = coefficients(form)
-    if found is None or any(value.imag for value in (*found.top, *found.bottom)):
+    if found is None or any(value.imag for value in found.bottom):
         return {}
-    top, bottom = ([value.real for value in item] for item in (found.top, found.bottom))
-    numbers: dict[str, float] = {}
+    bottom = [value.real for value in found.bottom]
+    numbers: dict[str, complex] = {}
     if len(bottom) == 2:
         numbers = {"tau": bottom[1], "w0": 1 / bottom[1]}
     elif len(bottom) == 3 and bottom[2] > 0:
         numbers = {"w0": bottom[2] ** -0.5}
         numbers["q"] = bottom[2] ** 0.5 / bottom[1] if bottom[1] else inf
-    present = [power for power, value in enumerate(top) if value]
+    present = [power for power, value in enumerate(found.top) if value]
     place = present[0] if len(present) == 1 else 0
-    if "k" in names and place < len(bottom) and bottom[place]:
-        numbers["k"] = top[place] / bottom[place]
+    if place < len(bottom) and bottom[place]:
+        numbers["k"] = found.top[place] / bottom[place]
     return {name: numbers[name] for name in names if name in numbers}

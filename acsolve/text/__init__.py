@@ -10,6 +10,7 @@ from acsolve.text.options import (
     parse_pair,
     parse_value,
 )
+from acsolve.text.write import write
 
 __all__ = [
     "Reading",
@@ -22,4 +23,5 @@ __all__ = [
     "parse_pair",
     "parse_value",
     "read",
+    "write",
 ]

@@ -154,7 +154,8 @@ def _count(draft: Draft, book: Book) -> int | None:
 def _pin_nodes(draft: Draft, block: Block, book: Book) -> dict[str, str] | None:
     """The node outside at each pin of a block, or None once a problem is recorded."""
     pins = [pin for pin, _ in block.head.pins]
-    kind, nodes = draft.kind, {}
+    kind = draft.kind
+    nodes: dict[str, str] = {}
     assert kind is not None, "a block is always stated"
     if draft.ends is not None:
         if len(pins) < 2:

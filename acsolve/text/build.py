@@ -7,7 +7,7 @@ from contextlib import suppress
 from dataclasses import replace
 from typing import Any, TypeVar
 
-from acsolve.circuit.netlist import Netlist, Part
+from acsolve.circuit.netlist import Netlist, Part, Variant
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
 from acsolve.source import Source, Span
@@ -102,8 +102,10 @@ class _Builder:
             else:
                 book.blocks[word] = block
             _check_pins(block, self._problems)
-        for item in (*self._of(tree.Block), *self._of(tree.Repeat)):
-            _check_place(item, self._problems)
+        for block in self._of(tree.Block):
+            _check_place(block, self._problems)
+        for repeat in self._of(tree.Repeat):
+            _check_place(repeat, self._problems)
         for statement in self._of(tree.Port):
             if statement.path.name:
                 book.file.ports.setdefault(statement.path.name, statement.path.span)
@@ -164,7 +166,7 @@ class _Builder:
 
     def _with_variants(self, netlist: Netlist, variants: Variants) -> Netlist:
         known = {item.name: item for item in netlist.couplings}
-        found = {}
+        found: dict[str, Variant] = {}
         for body in self._of(tree.VariantBody):
             variant = variants.read(body, known)
             if variant.name in found:

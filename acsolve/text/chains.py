@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from acsolve.errors import Label
@@ -81,7 +82,7 @@ class Chains:
 
     def _ends_with_part(self, items: tuple[Item, ...]) -> None:
         """An even chain: two parts in a row somewhere, or the last node is missing."""
-        for left, right in zip(items[1:], items[2:], strict=False):
+        for left, right in pairwise(items[1:]):
             if _is_designator(left) and _is_designator(right):
                 self._in_a_row(left, right)
                 return
@@ -135,11 +136,11 @@ class Chains:
                 self._arm(unit, left, right, scope, turns)
             return
         leaves = [_leaf(unit, scope, turns, self._book) for unit in item.units]
-        inner = [f"{a}~{b}" for a, b in zip(leaves, leaves[1:], strict=False)]
+        inner = [f"{a}~{b}" for a, b in pairwise(leaves)]
         for local in inner:
             scope.nodes[local] = item.span
         nodes = [left, *(scope.prefix + local for local in inner), right]
-        for unit, first, second in zip(item.units, nodes, nodes[1:], strict=False):
+        for unit, first, second in zip(item.units, nodes[:-1], nodes[1:], strict=True):
             self._arm(unit, first, second, scope, turns)
 
     def _fit(

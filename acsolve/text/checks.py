@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
+from functools import partial
 
 from acsolve.circuit.expression import Number, names
 from acsolve.circuit.kind import KINDS
@@ -125,7 +126,7 @@ def _values_of_nothing(scope: Scope, book: Book) -> None:
                 "name.unplaced",
                 f"{name} has a value and stands nowhere in the circuit",
                 given.span,
-                hint=meant(name, scope.drafts, otherwise),
+                hint=partial(meant, name, scope.drafts, otherwise),
             )
 
 
@@ -133,14 +134,22 @@ def check_overrides(book: Book) -> None:
     """Values given from outside to names that no block holds."""
     for name, given in book.overrides.items():
         first = name.partition("[")[0].partition(".")[0]
-        if name in book.met_overrides or first in book.problems.broken_words:
-            continue
-        owner = name.rpartition(".")[0]
-        copies = [item for item in book.by_name if item.startswith(f"{owner}.")]
-        hint = meant(name, copies or book.by_name)
-        if first not in {key.partition("[")[0] for key in book.copies} and not copies:
-            hint = hint or f"{first} is no block and no part of this circuit."
-        book.problems.add("name.unknown", f"{name} is not known here", given.span, hint=hint)
+        if name not in book.met_overrides and first not in book.problems.broken_words:
+            book.problems.add(
+                "name.unknown",
+                f"{name} is not known here",
+                given.span,
+                hint=partial(_near_override, name, first, book),
+            )
+
+
+def _near_override(name: str, first: str, book: Book) -> str | None:
+    owner = name.rpartition(".")[0]
+    inner = [item for item in book.by_name if item.startswith(f"{owner}.")]
+    otherwise = None
+    if first not in {key.partition("[")[0] for key in book.copies}:
+        otherwise = f"{first} is no copy of a block."
+    return meant(name, inner or book.by_name, otherwise)
 
 
 def known_nodes(book: Book) -> set[str]:
@@ -164,14 +173,18 @@ def check_reached(book: Book) -> None:
             word = place.word if isinstance(place, Path) else name
             if word in book.problems.broken_words:
                 continue
-            owner = name.rpartition(".")[0]
-            near = [item for item in known if item.startswith(f"{owner}.")] if owner else known
             book.problems.add(
                 "name.unknown-node",
                 f"there is no node {name}",
                 place.span,
-                hint=meant(name, near, "Nodes are named in chains and by terminals."),
+                hint=partial(_near_node, name, known),
             )
+
+
+def _near_node(name: str, known: set[str]) -> str | None:
+    owner = name.rpartition(".")[0]
+    near = [item for item in known if item.startswith(f"{owner}.")] if owner else known
+    return meant(name, sorted(near), "Nodes are named in chains and by terminals.")
 
 
 # ---------------------------------------------------------------- values

@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from itertools import combinations
+from typing import TypeVar
 
 from acsolve.circuit.expression import Number
 from acsolve.circuit.netlist import Coupling
@@ -91,12 +92,11 @@ class Couplings:
         span = _mention(local, coupled) or span
         if draft is None:
             if local not in problems.broken_words:
-                known = [name for name, item in self._book.by_name.items() if _is_inductor(item)]
                 problems.add(
                     "name.unknown",
                     f"{local} is not known here",
                     span,
-                    hint=meant(local, known, "Place the inductor in a chain first."),
+                    hint=lambda: self._near(local),
                 )
             return None
         if not _is_inductor(draft):
@@ -109,6 +109,10 @@ class Couplings:
             )
             return None
         return draft
+
+    def _near(self, local: str) -> str | None:
+        known = (name for name, item in self._book.by_name.items() if _is_inductor(item))
+        return meant(local, known, "Place the inductor in a chain first.")
 
     def coefficient(self, coupled: Coupled) -> Value | None:
         """The coupling coefficient, or None once its problem is recorded."""
@@ -124,15 +128,15 @@ class Couplings:
                 statement.value.span,
                 hint="Write 0 for no coupling.",
             )
-        if value is not None and isinstance(value.expression, Number):
-            if abs(value.expression.value) > 1:
-                self._book.problems.add(
-                    "couple.range",
-                    "a coupling coefficient lies between -1 and 1",
-                    statement.value.span,
-                    hint="It is the mutual inductance divided by the root of both inductances.",
-                )
-                return None
+        number = value.expression if value is not None else None
+        if isinstance(number, Number) and abs(number.value) > 1:
+            self._book.problems.add(
+                "couple.range",
+                "a coupling coefficient lies between -1 and 1",
+                statement.value.span,
+                hint="It is the mutual inductance divided by the root of both inductances.",
+            )
+            return None
         return value
 
     def _add(self, first: Draft, second: Draft, value: Value, span: Span) -> None:
@@ -183,14 +187,18 @@ def possible(names: tuple[str, ...], found: Mapping[frozenset[str], Coupling]) -
             row.append(value.value if isinstance(value, Number) else Fraction(0))
         rows.append(row)
     if len(names) <= _EXACT_SIZE:
-        return _semidefinite(rows, Fraction(0))
-    return _semidefinite([[float(item) for item in row] for row in rows], _ROUNDING)
+        return semidefinite(rows, Fraction(0))
+    return semidefinite([[float(item) for item in row] for row in rows], _ROUNDING)
 
 
-def _semidefinite(
-    rows: list[list[Fraction]] | list[list[float]], rounding: Fraction | float
-) -> bool:
-    """Symmetric elimination: no pivot below zero, and a zero pivot only in a zero row."""
+_Real = TypeVar("_Real", Fraction, float)
+
+
+def semidefinite(rows: list[list[_Real]], rounding: _Real) -> bool:
+    """Whether a symmetric matrix has no negative eigenvalue; `rows` is used up.
+
+    Symmetric elimination: no pivot below zero, and a zero pivot only in a zero row.
+    """
     size = len(rows)
     for k in range(size):
         pivot = rows[k][k]
@@ -204,7 +212,7 @@ def _semidefinite(
             factor = rows[i][k] / pivot
             if factor:
                 for j in range(k + 1, size):
-                    rows[i][j] -= factor * rows[k][j]  # type: ignore[operator]
+                    rows[i][j] -= factor * rows[k][j]
     return True
 
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from fractions import Fraction
 from typing import NamedTuple
 
@@ -13,7 +12,7 @@ from acsolve.source import Span
 from acsolve.text import limits
 from acsolve.text.book import Book
 from acsolve.text.literals import Fault, Meaning, meaning
-from acsolve.text.measure import KELVIN, PLAIN, SECOND, Measure, Solver, raised, times, words
+from acsolve.text.measure import KELVIN, PLAIN, Measure, Solver, raised, sign, times, words
 from acsolve.text.references import Lookup
 from acsolve.text.scope import Scope, Turns
 from acsolve.text.tree import (
@@ -33,7 +32,6 @@ _FUNCTIONS: dict[str, FunctionName] = {
     "ln": "ln",
     "log10": "log10",
 }
-_PER_SECOND = raised(SECOND, Fraction(-1))
 
 
 class Made(NamedTuple):
@@ -99,9 +97,9 @@ class Formulas:
                 return self._bounded(Made(value, made.measure, made.depth + 1), formula.span)
             case Terms(first, rest):
                 made = self._make(first, scope, turns, in_s)
-                for sign, term in rest:
+                for joint, term in rest:
                     right = self._make(term, scope, turns, in_s)
-                    made = self._bounded(self._joined(sign, made, right, term.span), formula.span)
+                    made = self._bounded(self._joined(joint, made, right, term.span), formula.span)
                 return made
             case Raised():
                 return self._power(formula, scope, turns, in_s)
@@ -155,17 +153,17 @@ class Formulas:
 
     # ------------------------------------------------------------ operations
 
-    def _joined(self, sign: str, left: Made, right: Made, span: Span) -> Made:
+    def _joined(self, joint: str, left: Made, right: Made, span: Span) -> Made:
         depth = max(left.depth, right.depth) + 1
-        if sign in "+-":
-            combine = ex.add if sign == "+" else ex.subtract
+        if joint in "+-":
+            combine = ex.add if joint == "+" else ex.subtract
             measure = self._same(left.measure, right.measure, span)
             return Made(combine(left.expression, right.expression), measure, depth)
-        power = 1 if sign == "*" else -1
+        power = 1 if joint == "*" else -1
         measure = None
         if left.measure is not None or right.measure is not None:
             measure = times(left.measure or PLAIN, right.measure or PLAIN, power)
-        if sign == "*":
+        if joint == "*":
             return Made(ex.multiply(left.expression, right.expression), measure, depth)
         try:
             return Made(ex.divide(left.expression, right.expression), measure, depth)
@@ -215,10 +213,8 @@ class Formulas:
                 span,
                 "No value of a circuit needs it.",
             )
-        if isinstance(base, Number) and power.denominator == 1:
-            bits = _bits(base.value) * abs(power.numerator)
-            if bits > limits.NUMBER_BITS:
-                self._too_long(span)
+        if _size(base) * abs(power) > limits.NUMBER_BITS:
+            self._too_long(span)
 
     def _applied(self, formula: Applied, scope: Scope, turns: Turns, in_s: bool) -> Made:
         function = _FUNCTIONS.get(formula.function.name or "")
@@ -278,10 +274,22 @@ def _bits(value: Fraction) -> int:
     return max(value.numerator.bit_length(), value.denominator.bit_length())
 
 
+def _size(expression: Expression) -> int:
+    """Binary digits an expression may come to when worked out; a name counts as 16."""
+    match expression:
+        case Number(value):
+            return _bits(value)
+        case ex.Power(base, Number(power)):
+            return _size(base) * max(1, abs(power.numerator))
+        case ex.Name() | ex.Pi() | ex.Frequency():
+            return 16
+        case _:
+            return sum(_size(part) for part in ex.children(expression))
+
+
 def _other_way(found: Meaning) -> str:
     """A spelling of a literal that has no letters that could be a name."""
-    digits = str(found.number) if found.number.denominator == 1 else f"{float(found.number):g}"
-    return f"{digits}" if found.measure is None else f"{digits}, the bare number in SI units"
-
-
-Reader = Callable[[Formula], Made]
+    whole = found.number.denominator == 1
+    digits = str(found.number) if whole else f"{float(found.number):g}"
+    unit = sign(found.measure or PLAIN)
+    return f"{digits} {unit}" if unit and unit != found.word else f"{digits}, in SI units"

@@ -74,7 +74,7 @@ def _quick_path(template: Template) -> Recipe | None:
         if numbers:
             indices = [tokens.text(number) for number in numbers]
             for digits in indices:
-                if not digits.isdigit() or (digits[0] == "0" and digits != "0"):
+                if not digits.isdigit() or len(digits) > 7 or digits[0] == "0" != digits:
                     return slow(tokens)  # type: ignore[no-any-return]
             name = f"{name}[{','.join(indices)}]"
         return tree.Path(name, (), tokens.span(word, last))
@@ -159,7 +159,8 @@ def _slow(template: Template) -> Recipe:
 
 def _path(node: Grown) -> tree.Path:
     first, *suffixes = node.parts
-    joint, word, indices = "", node.text(first), ()
+    joint, word = "", node.text(first)
+    indices: tuple[tree.Index, ...] = ()
     steps = []
     for suffix in suffixes:
         if isinstance(suffix, tuple) and isinstance(suffix[0], tree.Index):

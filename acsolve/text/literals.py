@@ -57,6 +57,7 @@ class Meaning:
             number = ex.divide(ex.number(self.number * 180), ex.PI)
         object.__setattr__(self, "expression", number)
 
+
 @dataclass(frozen=True, slots=True)
 class Fault:
     """Why a literal cannot be read."""
@@ -199,10 +200,12 @@ def _code(code: re.Match[str], unit_word: str | None) -> Meaning | Fault:
     plain = _PREFIXABLE.get(word)
     if plain is None or measure not in (None, plain):
         prefix = "" if letter in "RLF" else letter.replace("K", "k")
+        written = code[0] if attached else f"{code[0]} {word}"
+        unit_word = word if prefix and word.startswith(prefix) else prefix + word
         return Fault(
             "value.spelling",
-            f"{code[0] if attached else f'{code[0]} {word}'} puts a second prefix or unit on a code",
-            f"Write {whole}.{decimals} {prefix}{word.lstrip(prefix) if prefix else word}.",
+            f"{written} puts a second prefix or another unit on a value code",
+            f"Write {whole}.{decimals} {unit_word}.",
         )
     return Meaning(number, plain)
 

@@ -14,51 +14,69 @@ from acsolve.text.tree import (
     Declare,
     Fitted,
     Formula,
-    Item,
     KindText,
+    Let,
     Literal,
     Nested,
+    Reference,
     Repeat,
+    RepeatHead,
 )
 from acsolve.text.words import listed
 
 Uses = Mapping[str, Mapping[str, Span]]
+Numbers = Mapping[str, int]
 
 
-def kinds_in(body: Iterable[Nested]) -> Iterator[tuple[KindText, int]]:
-    """Every kind stated in a body, with how often repeats around it turn, where known."""
+def _statements(body: Iterable[Nested], known: Numbers) -> Iterator[tuple[Nested, int]]:
+    """Every statement of a body, with how often repeats around it turn, where known."""
     stack = [(statement, 1) for statement in body]
     while stack:
         statement, times = stack.pop()
-        match statement:
-            case Repeat(head, inner):
-                turns = times * _turns(head.low, head.high)
-                stack.extend((item, turns) for item in inner)
-            case Declare(_, kind):
-                yield kind, times
-            case Chain(items):
-                yield from ((kind, times) for kind in _stated(items))
+        yield statement, times
+        if isinstance(statement, Repeat):
+            turns = times * _turns(statement.head, known)
+            stack.extend((item, turns) for item in statement.body)
 
 
-def _stated(items: Iterable[Item]) -> Iterator[KindText]:
-    stack = list(items)
-    while stack:
-        item = stack.pop()
-        if isinstance(item, Arm):
-            stack.extend(item.units)
-        elif isinstance(item, Fitted) and item.kind is not None:
-            yield item.kind
+def _kinds(statement: Nested) -> Iterator[KindText]:
+    """Every kind stated in a statement."""
+    if isinstance(statement, Declare):
+        yield statement.kind
+    elif isinstance(statement, Chain):
+        stack = list(statement.items)
+        while stack:
+            item = stack.pop()
+            if isinstance(item, Arm):
+                stack.extend(item.units)
+            elif isinstance(item, Fitted) and item.kind is not None:
+                yield item.kind
 
 
-def _plain(formula: Formula | None) -> int | None:
+def _whole(formula: Formula | None, known: Numbers) -> int | None:
+    """A whole number where it is plain to see."""
     if isinstance(formula, Literal) and formula.unit is None and formula.text.isdigit():
         return int(formula.text) if len(formula.text) < 12 else limits.EXPANSION
+    if isinstance(formula, Reference) and formula.path.name is not None:
+        return known.get(formula.path.name)
     return None
 
 
-def _turns(low: Formula, high: Formula) -> int:
-    first, last = _plain(low), _plain(high)
+def _turns(head: RepeatHead, known: Numbers) -> int:
+    first, last = _whole(head.low, known), _whole(head.high, known)
     return 1 if first is None or last is None else max(1, last - first + 1)
+
+
+def _numbers(body: Iterable[Nested]) -> dict[str, int]:
+    """Named quantities that are plain whole numbers."""
+    found: dict[str, int] = {}
+    for statement in body:
+        if isinstance(statement, Let) and statement.value is not None:
+            number = _whole(statement.value.formula, found)
+            for target in statement.targets:
+                if number is not None and target.name is not None:
+                    found[target.name] = number
+    return found
 
 
 def refuse_loops(book: Book) -> None:
@@ -66,9 +84,10 @@ def refuse_loops(book: Book) -> None:
     uses: dict[str, dict[str, Span]] = {}
     for word, block in book.blocks.items():
         found = uses[word] = {}
-        for kind, _ in kinds_in(block.body):
-            if kind.word in book.blocks:
-                found.setdefault(kind.word, kind.word_span)
+        for statement, _ in _statements(block.body, {}):
+            for kind in _kinds(statement):
+                if kind.word in book.blocks:
+                    found.setdefault(kind.word, kind.word_span)
     for word, block in book.blocks.items():
         route = _route(word, uses)
         if route is None:
@@ -103,24 +122,31 @@ def _route(word: str, uses: Uses) -> list[str] | None:
 
 
 def refuse_size(body: Iterable[Nested], book: Book) -> None:
-    """Refuse a text whose copies alone pass the limit, before any is written out."""
+    """Refuse a text whose copies and repeats pass the limit, before any is written out.
+
+    Counts that are plain to see decide; the rest is counted while it is written out.
+    """
+    content = tuple(body)
+    outer = _numbers(content)
     sizes: dict[str, int] = {}
 
-    def size(content: Iterable[Nested]) -> int:
-        total = 1
-        for kind, times in kinds_in(content):
-            inner = sizes.get(kind.word, 1)
-            total += times * (_plain(kind.count) or 1) * inner
-        return min(total, limits.EXPANSION * 2)
+    def size(statement: Nested, known: Numbers) -> int:
+        copies = sum(
+            (_whole(kind.count, known) or 1) * sizes.get(kind.word, 1) for kind in _kinds(statement)
+        )
+        return 1 + copies
 
-    for _ in range(min(len(book.blocks), limits.NESTING) + 1):  # inner blocks first settle
+    for _ in range(min(len(book.blocks), limits.NESTING) + 1):  # inner blocks settle first
         for word, block in book.blocks.items():
-            sizes[word] = size(block.body)
-    for kind, times in kinds_in(body):
-        if times * (_plain(kind.count) or 1) * sizes.get(kind.word, 1) > limits.EXPANSION:
+            known = {**outer, **_numbers(block.body)}
+            counted = _statements(block.body, known)
+            total = 1 + sum(times * size(item, known) for item, times in counted)
+            sizes[word] = min(total, limits.EXPANSION * 2)
+    for statement, times in _statements(content, outer):
+        if times * size(statement, outer) > limits.EXPANSION:
             book.problems.refuse(
                 "limit.expansion",
                 f"written out, this text has more than {limits.EXPANSION:,} statements",
-                kind.span,
+                statement.span,
                 hint="Use fewer copies, or smaller ranges.",
             )

@@ -45,6 +45,9 @@ def nested(found: list[Statement], problems: Problems) -> tuple[Nested, ...]:
     while len(levels) > 1:
         head = levels[-1].head
         assert head is not None, "only the outermost level has no head"
+        if isinstance(head, Broken):
+            _finish(levels)  # its own problem is recorded
+            continue
         word = _WORDS[type(head)]
         problems.add(
             "syntax.no-end",

@@ -50,15 +50,16 @@ def option(start: str, source: Source, problems: Problems) -> Any:
 
 def _recipe(start: str, statement: Tokens, problems: Problems) -> Recipe | None:
     """How to make the syntax tree of a statement, or None once its problem is recorded."""
-    syntax = None
-    if STRAY not in statement.kinds and OPEN_TEXT not in statement.kinds:
-        if not _bounded(statement, problems):
-            return None
-        syntax = syntax_of(start, statement.kinds)
-        if not isinstance(syntax, Failure):
-            return recipe(syntax)
-    explain(start, statement, syntax, problems)
-    return None
+    if STRAY in statement.kinds or OPEN_TEXT in statement.kinds:
+        explain(start, statement, None, problems)
+        return None
+    if not _bounded(statement, problems):
+        return None
+    syntax = syntax_of(start, statement.kinds)
+    if isinstance(syntax, Failure):
+        explain(start, statement, syntax, problems)
+        return None
+    return recipe(syntax)
 
 
 def _bounded(statement: Tokens, problems: Problems) -> bool:

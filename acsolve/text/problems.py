@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from typing import NoReturn
 
 from acsolve.codes import Code
@@ -34,11 +34,15 @@ class Problems:
         message: str,
         span: Span | None,
         *,
-        hint: str | None = None,
+        hint: str | Callable[[], str | None] | None = None,
         labels: Sequence[Label] = (),
     ) -> None:
-        """Record an error."""
-        self._record(code, message, span, hint, labels, "error")
+        """Record an error; a hint that is a function is worked out only if it is shown."""
+        if callable(hint):
+            hint = hint() if len(self.errors) < limits.PROBLEMS else None
+        self._record(
+            Diagnostic(code=code, message=message, span=span, hint=hint, labels=tuple(labels))
+        )
 
     def warn(
         self,
@@ -50,7 +54,9 @@ class Problems:
         severity: Severity = "warning",
     ) -> None:
         """Record a warning or note."""
-        self._record(code, message, span, hint, (), severity)
+        self._record(
+            Diagnostic(code=code, message=message, span=span, hint=hint, severity=severity)
+        )
 
     def refuse(
         self, code: Code, message: str, span: Span | None, *, hint: str | None = None
@@ -59,33 +65,17 @@ class Problems:
         self.add(code, message, span, hint=hint)
         raise RefusedError
 
-    def _record(
-        self,
-        code: Code,
-        message: str,
-        span: Span | None,
-        hint: str | None,
-        labels: Sequence[Label],
-        severity: Severity,
-    ) -> None:
-        key = (code, span.start if span else -1, span.end if span else -1)
+    def _record(self, found: Diagnostic) -> None:
+        span = found.span
+        key = (found.code, span.start if span else -1, span.end if span else -1)
         if key in self._seen:
             return
         self._seen.add(key)
-        kept = self.errors if severity == "error" else self.warnings
-        if len(kept) >= limits.PROBLEMS:
-            self._beyond += severity == "error"
-            return
-        kept.append(
-            Diagnostic(
-                code=code,
-                message=message,
-                span=span,
-                hint=hint,
-                labels=tuple(labels),
-                severity=severity,
-            )
-        )
+        kept = self.errors if found.severity == "error" else self.warnings
+        if len(kept) < limits.PROBLEMS:
+            kept.append(found)
+        elif found.severity == "error":
+            self._beyond += 1
 
     def finish(self) -> tuple[Diagnostic, ...]:
         """The warnings, sorted by place.

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable
 from fractions import Fraction
+from itertools import chain
 from typing import Any, Literal, get_args
 
 from acsolve.circuit.expression import Number
@@ -80,7 +81,7 @@ class Questions:
             "name.unknown-node",
             message,
             place.span,
-            hint=meant(local, [*file.nodes, *self.ports], "Nodes are named in chains."),
+            hint=lambda: meant(local, chain(file.nodes, self.ports), "Nodes are named in chains."),
         )
         return None
 
@@ -127,15 +128,18 @@ class Questions:
         if low is None or high is None:
             return None
         bottom, top = low.expression, high.expression
-        if isinstance(bottom, Number) and isinstance(top, Number):
-            if not 0 <= bottom.value < top.value:
-                self._book.problems.add(
-                    "value.band",
-                    "a band goes from a lower to a higher frequency, neither negative",
-                    text.span,
-                    hint="Write 10 Hz .. 1 MHz.",
-                )
-                return None
+        if (
+            isinstance(bottom, Number)
+            and isinstance(top, Number)
+            and not 0 <= bottom.value < top.value
+        ):
+            self._book.problems.add(
+                "value.band",
+                "a band goes from a lower to a higher frequency, neither negative",
+                text.span,
+                hint="Write 10 Hz .. 1 MHz.",
+            )
+            return None
         return Band(low=low, high=high)
 
     def level(self, text: tree.LevelText) -> Level | None:
@@ -150,16 +154,16 @@ class Questions:
     def decibels(self, formula: tree.Formula, words: str) -> Value | None:
         """A value that must be stated in dB, so that nobody has to guess a ratio."""
         value = self.quantity(formula, words, DECIBEL)
-        if value is not None and not formula.span.text.rstrip().endswith("dB"):
-            if isinstance(value.expression, Number):
-                self._book.problems.add(
-                    "value.level",
-                    f"{words} is stated in dB",
-                    formula.span,
-                    hint=f"Write {formula.span.text} dB, or half power.",
-                )
-                return None
-        return value
+        stated = formula.span.text.rstrip().endswith("dB")
+        if value is None or stated or not isinstance(value.expression, Number):
+            return value
+        self._book.problems.add(
+            "value.level",
+            f"{words} is stated in dB",
+            formula.span,
+            hint=f"Write {formula.span.text} dB, or half power.",
+        )
+        return None
 
     # ------------------------------------------------------------ questions and goals
 
@@ -274,12 +278,15 @@ class Questions:
         return None
 
     def positive(self, clause: Clause, words: str, need: Measure) -> Value | None:
+        """A value that must be greater than zero."""
         value = self.quantity(clause.content, words, need)  # type: ignore[arg-type]
-        if value is not None and isinstance(value.expression, Number):
-            if value.expression.value <= 0:
-                self._book.problems.add(
-                    "value.positive", f"{words} must be greater than zero", clause.span,
-                    hint="Write a positive value.",
-                )  # fmt: skip
-                return None
-        return value
+        number = value.expression if value is not None else None
+        if not isinstance(number, Number) or number.value > 0:
+            return value
+        self._book.problems.add(
+            "value.positive",
+            f"{words} must be greater than zero",
+            clause.span,
+            hint="Write a positive value.",
+        )
+        return None

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from fractions import Fraction
+from itertools import chain
 
 from acsolve.circuit import expression as ex
 from acsolve.circuit.expression import Expression, Name
@@ -168,7 +170,6 @@ class Lookup:
                 hint=f"Name a quantity with let {local}2 = …, or use the name of a part.",
             )  # fmt: skip
             return
-        known = [*scope.quantities, *self._book.file.quantities, *scope.drafts]
         otherwise = f"Name it first: let {local} = …, or let {local} for a symbol."
         if local[:1] in "RKMmknpu" and local[1:].isdigit():
             otherwise = f"A value code starts with a digit: 0{local}."
@@ -176,18 +177,23 @@ class Lookup:
             "name.unknown",
             f"{local} is not known here",
             path.span,
-            hint=meant(local, known, otherwise),
+            hint=lambda: meant(local, self._known(scope), otherwise),
         )
+
+    def _known(self, scope: Scope) -> Iterator[str]:
+        return chain(scope.quantities, self._book.file.quantities, scope.drafts)
 
     def _missing(self, full: str, path: Path) -> None:
         if path.word in self._book.problems.broken_words:
             return
         owner = full.rpartition(".")[0]
         draft = self._book.by_name.get(owner)
-        hint = meant(full, [*self._book.by_name])
-        if draft is not None and draft.definition is not None:
-            names = [item.name for item in draft.definition.attributes]
-            hint = f"{draft.local} has {', '.join(names)}." if names else None
-        self._book.problems.add(
-            "name.unknown", f"{path.span.text} is not known here", path.span, hint=hint
-        )
+        problems, message = self._book.problems, f"{path.span.text} is not known here"
+        if draft is None or draft.definition is None:
+            problems.add(
+                "name.unknown", message, path.span, hint=lambda: meant(full, self._book.by_name)
+            )
+            return
+        names = [item.name for item in draft.definition.attributes]
+        hint = f"{draft.local} has {', '.join(names)}." if names else None
+        problems.add("name.unknown", message, path.span, hint=hint)

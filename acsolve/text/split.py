@@ -69,6 +69,8 @@ class Splitter:
             self._open.append(token)
         elif kind in _CLOSING:
             self._close(token)
+        elif token[2] - token[1] > limits.NAME_CHARACTERS and kind == "NAME":
+            self._long_name(token)
         self._pending.append(token)
         if self._open and kind in _STOPS_BRACKETS:
             self._unclosed()
@@ -125,6 +127,14 @@ class Splitter:
     def _spoil(self, line: list[Token]) -> None:
         """Remember the names of a dropped line, so that nobody misses them later."""
         self._problems.broken_words.update(self._text(token) for token in line)
+
+    def _long_name(self, token: Token) -> None:
+        self._problems.add(
+            "limit.name",
+            f"this name is longer than {limits.NAME_CHARACTERS} characters",
+            self._span(token),
+            hint="Use a shorter name.",
+        )
 
     def _too_long(self) -> None:
         self._problems.refuse(

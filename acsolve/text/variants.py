@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from itertools import chain
 
 from acsolve.circuit.netlist import Coupling, Variant
 from acsolve.circuit.value import Value
@@ -76,12 +77,15 @@ class Variants:
                     book.used.add(quantity.name)
                     return Place(local, self._lookup.measures.get(local))
         if local.partition("[")[0].partition(".")[0] not in book.problems.broken_words:
-            known = [*book.by_name, *book.file.quantities]
             book.problems.add(
                 "name.unknown",
                 f"{local} is neither a part nor a named quantity of this circuit",
                 span,
-                hint=meant(local, known, "A variant changes what the file already has."),
+                hint=lambda: meant(
+                    local,
+                    chain(book.by_name, book.file.quantities),
+                    "A variant changes what the file already has.",
+                ),
             )
         return None
 

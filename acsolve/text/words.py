@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from difflib import get_close_matches
 
-_MOST_COMPARED = 5000  # names compared with a misspelt one; keeps a large file fast
+_MOST_COMPARED = 2000  # names compared with a misspelt one; keeps a large file fast
 
 
 def nearest(name: str, known: Iterable[str]) -> str | None:

@@ -39,12 +39,14 @@ class Answer:
     """The value of a question at one complex frequency.
 
     `regular` says that nothing in the network is open but the level of each conductive
-    part of it, and that the drive can act.
+    part of it, that no amplifier senses across two of these (`sensible`), and that the
+    drive can act.
     """
 
     state: State
     value: Any
     regular: bool
+    sensible: bool
 
 
 class Values:
@@ -116,6 +118,8 @@ class Dense:
 
     def __init__(self, netlist: Netlist, field: Field, s: Any, *, replaced: Pair | None) -> None:
         self.field, self.s = field, s
+        self.own_sources = replaced is None
+        self.senses: list[Pair] = []
         self.one, self.zero = field.number(Fraction(1)), field.number(Fraction(0))
         self.value = Values(netlist, field, s)
         self.nodes: dict[str, str] = {}  # node -> another of its conductive set, or itself
@@ -147,6 +151,11 @@ class Dense:
         while self.nodes[node] != node:
             node = self.nodes[node]
         return node
+
+    @property
+    def sensible(self) -> bool:
+        """Whether every sensed voltage is one between nodes of one conductive set."""
+        return all(self._top(first) == self._top(second) for first, second in self.senses)
 
     @property
     def levels(self) -> int:
@@ -196,16 +205,16 @@ class Dense:
             line[-1] = right
         pivots = self._eliminate(matrix)
         if len(names) in pivots:
-            return Answer("none", None, False)
+            return Answer("none", None, False, self.sensible)
         wanted = [self.zero] * (len(names) + 1)
         for name, factor in observed.items():
             wanted[place[name]] = factor
         for column, line in pivots.items():
             _subtract(wanted, line, column)
-        regular = len(names) - len(pivots) == self.levels
+        regular = len(names) - len(pivots) == self.levels and self.sensible
         if any(not self.field.is_zero(item) for item in wanted[:-1]):
-            return Answer("open", None, regular)
-        return Answer("determined", -wanted[-1], regular)
+            return Answer("open", None, regular, self.sensible)
+        return Answer("determined", -wanted[-1], regular, self.sensible)
 
     def _eliminate(self, matrix: list[list[Any]]) -> dict[int, list[Any]]:
         """Pivot rows by column; the last column stands for a contradiction."""
@@ -302,15 +311,19 @@ def _in_siemens(net: Dense, part: Part) -> None:
 
 
 @_part("voltage_source")
-def _silent_voltage(net: Dense, part: Part) -> None:
+def _voltage_source(net: Dense, part: Part) -> None:
+    """A source raises the potential from its first node to its second."""
     net.branch(part.name, *part.nodes)
-    net.law(net.voltage(*part.nodes))
+    amplitude = net.value.of(part, "amplitude") if net.own_sources else net.zero
+    net.law(net.voltage(part.nodes[1], part.nodes[0]), equals=amplitude)
 
 
 @_part("current_source")
-def _silent_current(net: Dense, part: Part) -> None:
-    current = net.branch(part.name, *part.nodes, joins=False)
-    net.law({current: net.one})
+def _current_source(net: Dense, part: Part) -> None:
+    """A source drives its current through itself from its first node to its second."""
+    current = net.branch(part.name, *part.nodes, joins=net.own_sources)
+    amplitude = net.value.of(part, "amplitude") if net.own_sources else net.zero
+    net.law({current: net.one}, equals=amplitude)
 
 
 @_part("opamp")
@@ -323,6 +336,7 @@ def _opamp(net: Dense, part: Part) -> None:
         net.law(net.voltage(plus, minus), {current: -get(part, "input_resistance")})
     delivered = net.branch(part.name, ref, out)
     gain, width = (item in part.values for item in ("open_loop_gain", "gain_bandwidth"))
+    net.senses.append((plus, minus))
     if not gain and not width:
         net.law(net.voltage(plus, minus))
         return
@@ -347,6 +361,7 @@ def _controlled(net: Dense, part: Part) -> None:
         control: Row = {current: -gain}
     else:
         control = net.voltage(plus, minus, -gain)
+        net.senses.append((plus, minus))
     delivered = net.branch(part.name, ref, out)
     if part.kind in ("voltage_amplifier", "transresistance"):
         net.law(net.voltage(out, ref), control)
@@ -374,13 +389,18 @@ def answer(
     field: Field,
     s: Any,
     *,
-    source: Pair,
+    source: Pair | None,
     target: Pair,
     quantity: str,
     ammeter: str | None = None,
 ) -> Answer:
-    """The answer to a question as the interface words it, at one complex frequency."""
+    """The answer to a question as the interface words it, at one complex frequency.
+
+    Without a source pair it is the voltage that the network's own sources cause.
+    """
     net = Dense(netlist, field, s, replaced=source)
+    if source is None:
+        return net.answer(net.voltage(*target))
     drive = net.branch("(drive)", source[1], source[0])  # the current enters the first node
     by_voltage = quantity in ("voltage-ratio", "transadmittance")
     net.law(net.voltage(*source) if by_voltage else {drive: net.one}, equals=net.one)
@@ -419,6 +439,8 @@ def _generator(leaf: Expression, root: int, field: Field, s: Any, values: Mappin
             return field.symbol_root(name)
         case Pi(), 1:
             return field.pi()
+        case Pi(), _:
+            return field.pi() ** field.number(Fraction(1, root))
         case Frequency(), 1:
             return s
         case Number(value), 2:

@@ -5,7 +5,7 @@ from __future__ import annotations
 import sys
 
 from acsolve.cli.asking import open_circuit
-from acsolve.cli.deliver import deliver
+from acsolve.cli.deliver import deliver, refuse_unfit
 from acsolve.cli.options import OUTPUT, VALUES, Options, make_command
 from acsolve.cli.progress import progress
 from acsolve.cli.status import WRONG
@@ -14,9 +14,8 @@ from acsolve.cli.status import WRONG
 def work(options: Options) -> int:
     """Say whether the circuit makes sense; status 2 where it does not."""
     from acsolve.report.entry import Entry, Heading
-    from acsolve.report.save import refuse_unfit
 
-    refuse_unfit(options.save, "check")
+    refuse_unfit(options, "check")
     circuit = open_circuit(options)
     with progress("checking"):
         found = circuit.check()
@@ -36,7 +35,7 @@ def work(options: Options) -> int:
 
 command = make_command(
     "check",
-    "Does the file make sense: nodes, parts, order, natural modes, every problem found.",
+    "Does the file make sense: nodes, parts, order, natural modes, every problem.",
     work,
     (*VALUES, *OUTPUT),
     "filter.circuit",

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit
-from acsolve.cli.deliver import deliver
+from acsolve.cli.deliver import deliver, refuse_unfit
 from acsolve.cli.drawing import draw
 from acsolve.cli.options import FORMS, OUTPUT, PAIRS, VALUES, Options, make_command
 from acsolve.cli.progress import progress
@@ -18,9 +18,8 @@ if TYPE_CHECKING:
 def work(options: Options) -> int:
     """Answer with every crossing of each level."""
     from acsolve.report.entry import Entry
-    from acsolve.report.save import refuse_unfit
 
-    refuse_unfit(options.save, "cutoff")
+    refuse_unfit(options, "cutoff")
     circuit = open_circuit(options)
     shared = heading(circuit, options)
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from acsolve import Circuit
 from acsolve.cli.asking import heading, open_circuit
-from acsolve.cli.deliver import deliver
+from acsolve.cli.deliver import deliver, refuse_unfit
 from acsolve.cli.options import FORMS, OUTPUT, VALUES, Options, make_command
 from acsolve.cli.progress import progress
 from acsolve.door import PairLike
@@ -13,9 +13,8 @@ from acsolve.door import PairLike
 def work(options: Options) -> int:
     """Answer with the nodal equations."""
     from acsolve.report.entry import Entry
-    from acsolve.report.save import refuse_unfit
 
-    refuse_unfit(options.save, "equations")
+    refuse_unfit(options, "equations")
     circuit = open_circuit(options)
     shared = heading(circuit, options)
     with progress("writing the equations"):
@@ -40,7 +39,7 @@ _SOURCES = ("voltage_source", "current_source")
 
 command = make_command(
     "equations",
-    "The modified nodal equations: matrix, unknowns, excitation and what each row says.\n"
+    "The modified nodal equations: matrix, unknowns, excitation, meaning of each row.\n"
     "Without --from the file's own sources act, or else its first question drives.",
     work,
     ("from", *VALUES, *FORMS, *OUTPUT),

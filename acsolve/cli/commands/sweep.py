@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from math import pi
 from typing import TYPE_CHECKING
 
 from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit
-from acsolve.cli.deliver import deliver
+from acsolve.cli.deliver import deliver, refuse_unfit
 from acsolve.cli.drawing import band_text, draw, features, no_band
 from acsolve.cli.options import OUTPUT, PAIRS, VALUES, Options, make_command
 from acsolve.cli.progress import progress
@@ -18,9 +19,8 @@ if TYPE_CHECKING:
 def work(options: Options) -> int:
     """Answer with gain, phase and delays over frequency."""
     from acsolve.report.entry import Entry
-    from acsolve.report.save import refuse_unfit
 
-    refuse_unfit(options.save, "sweep")
+    refuse_unfit(options, "sweep")
     circuit = open_circuit(options)
     shared = heading(circuit, options)
 
@@ -43,10 +43,10 @@ def _band(item: Asked, options: Options) -> str:
         return options.band
     if item.question is not None and item.question.band is not None:
         return band_text(item.path.circuit.band(item.question.band))
-    places = features(item.path)
-    if places is None:
+    roots = features(item.path)
+    if roots is None:
         raise no_band()
-    return band_text(natural_band(places))
+    return band_text(natural_band(abs(root) / (2 * pi) for root in roots))
 
 
 command = make_command(

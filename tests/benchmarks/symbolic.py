@@ -1,0 +1,421 @@
+"""Closed forms of RC ladders and meshes: this project beside general libraries, in one run.
+
+    python tests/benchmarks/symbolic.py [--quick]
+
+Every measurement runs in a process of its own, so that each has its own peak memory; times
+are medians and leave out imports. A rival is stopped after a minute.
+"""
+
+from __future__ import annotations
+
+import json
+import resource
+import subprocess
+import sys
+from collections.abc import Callable
+from dataclasses import dataclass
+from statistics import median
+from time import perf_counter
+from typing import Any
+
+LIMIT_S = 60
+RUNS_WITHIN_S = 3.0  # a case is repeated for so long, at least once and at most 15 times
+BUDGET_TERMS = 2_000_000
+
+Edge = tuple[str, str]
+
+
+@dataclass(frozen=True, slots=True)
+class Network:
+    """Resistors between nodes, a capacitor from every node but the driven one to ground."""
+
+    resistors: tuple[Edge, ...]
+    capacitors: tuple[str, ...]
+    source: str
+    target: str
+
+    def text(self) -> str:
+        """The circuit in the text format."""
+        lines = [f"{a} -- R{k} -- {b}" for k, (a, b) in enumerate(self.resistors, 1)]
+        lines += [f"{node} -- C{k} -- gnd" for k, node in enumerate(self.capacitors, 1)]
+        return "\n".join(lines) + "\n"
+
+
+def ladder(sections: int) -> Network:
+    """R in series, C to ground, so many times."""
+    nodes = [f"n{k}" for k in range(sections + 1)]
+    return Network(tuple(zip(nodes, nodes[1:], strict=False)), tuple(nodes[1:]), "n0", nodes[-1])
+
+
+def mesh(rows: int, columns: int) -> Network:
+    """A grid of resistors, driven at a corner, observed at the opposite one."""
+    name = {(i, k): f"m{i}_{k}" for i in range(rows) for k in range(columns)}
+    across = [(name[i, k], name[i, k + 1]) for i in range(rows) for k in range(columns - 1)]
+    down = [(name[i, k], name[i + 1, k]) for i in range(rows - 1) for k in range(columns)]
+    nodes = list(name.values())
+    return Network((*across, *down), tuple(nodes[1:]), nodes[0], nodes[-1])
+
+
+NETWORKS: dict[str, Callable[[], Network]] = {
+    **{f"ladder {n}": lambda n=n: ladder(n) for n in (3, 5, 8, 10, 12, 14, 40)},
+    "mesh 3x3": lambda: mesh(3, 3),
+    "mesh 3x4": lambda: mesh(3, 4),
+    "mesh 8x8": lambda: mesh(8, 8),
+}
+
+
+def ours(network: Network) -> Callable[[], int]:
+    """From the circuit to the finished, checked closed form; terms of the denominator."""
+    import acsolve
+
+    path = acsolve.parse(network.text()).path(network.source, network.target)
+    return lambda: len(path.closed_form().denominator)
+
+
+def flint_loop(network: Network) -> Callable[[], int]:
+    """The floor: a ladder's denominator by its recurrence, two products a section."""
+    import flint
+
+    count = len(network.resistors)
+    names = ("s", *(f"R{k + 1}" for k in range(count)), *(f"C{k + 1}" for k in range(count)))
+
+    def run() -> int:
+        context = flint.fmpz_mpoly_ctx.get(names, "degrevlex")
+        s, *others = context.gens()
+        resistances, capacitances = others[:count], others[count:]
+        voltage, current = context.constant(1), context.constant(0)
+        for k in reversed(range(count)):
+            current = current + s * capacitances[k] * voltage
+            voltage = voltage + resistances[k] * current
+        return len(voltage)
+
+    return run
+
+
+def _nodal(network: Network, one: Any, conductances: Any, susceptances: Any) -> tuple[Any, Any]:
+    """Nodal matrix and excitation with one volt at the driven node."""
+    nodes = list(network.capacitors)
+    place = {node: k for k, node in enumerate(nodes)}
+    zero = one * 0
+    matrix = [[zero] * len(nodes) for _ in nodes]
+    right = [zero] * len(nodes)
+    for (a, b), g in zip(network.resistors, conductances, strict=True):
+        for here, there in ((a, b), (b, a)):
+            if here == network.source:
+                continue
+            matrix[place[here]][place[here]] += g
+            if there == network.source:
+                right[place[here]] += g
+            else:
+                matrix[place[here]][place[there]] -= g
+    for node, y in zip(nodes, susceptances, strict=True):
+        matrix[place[node]][place[node]] += y
+    return matrix, right
+
+
+def _symbols(network: Network) -> tuple[Any, list[Any], list[Any]]:
+    from sympy import Symbol
+
+    count = len(network.resistors), len(network.capacitors)
+    return (
+        Symbol("s"),
+        [Symbol(f"R{k + 1}", positive=True) for k in range(count[0])],
+        [Symbol(f"C{k + 1}", positive=True) for k in range(count[1])],
+    )
+
+
+def sympy_lu(network: Network) -> Callable[[], int]:
+    """What a user types first: the nodal matrix, LUsolve, cancel."""
+    from sympy import Integer, Matrix, cancel, fraction
+
+    s, resistances, capacitances = _symbols(network)
+
+    def run() -> int:
+        matrix, right = _nodal(
+            network, Integer(1), [1 / r for r in resistances], [s * c for c in capacitances]
+        )
+        solution = Matrix(matrix).LUsolve(Matrix(right))
+        found = cancel(solution[network.capacitors.index(network.target)])
+        return len(fraction(found)[1].args)
+
+    return run
+
+
+def sympy_linsolve(network: Network) -> Callable[[], int]:
+    """The same equations by `linsolve`, and `cancel`."""
+    from sympy import Integer, Matrix, cancel, fraction, linsolve, symbols
+
+    s, resistances, capacitances = _symbols(network)
+
+    def run() -> int:
+        matrix, right = _nodal(
+            network, Integer(1), [1 / r for r in resistances], [s * c for c in capacitances]
+        )
+        unknowns = symbols(f"v:{len(right)}")
+        (solution,) = linsolve((Matrix(matrix), Matrix(right)), *unknowns)
+        found = cancel(solution[network.capacitors.index(network.target)])
+        return len(fraction(found)[1].args)
+
+    return run
+
+
+def _domain(
+    network: Network, determinant: Callable[[Any], Any], *, folded: bool
+) -> Callable[[], int]:
+    """Cramer's rule on a sparse DomainMatrix of polynomials in conductances.
+
+    `folded` lets one symbol stand for s·C, which spares the library a generator.
+    """
+    from sympy import ZZ
+    from sympy.polys.matrices import DomainMatrix
+
+    count = len(network.resistors), len(network.capacitors)
+    names = [f"G{k}" for k in range(count[0])] + [f"C{k}" for k in range(count[1])]
+    ring = ZZ[tuple(_named(names if folded else [*names, "s"]))]
+
+    def run() -> int:
+        gens = [ring.from_sympy(item) for item in ring.symbols]
+        conductances, capacitances = gens[: count[0]], gens[count[0] : sum(count)]
+        if not folded:
+            capacitances = [item * gens[-1] for item in capacitances]
+        matrix, right = _nodal(network, ring.one, conductances, capacitances)
+        place = network.capacitors.index(network.target)
+        size = len(right)
+        whole = DomainMatrix(matrix, (size, size), ring).to_sparse()
+        for row, value in enumerate(right):
+            matrix[row][place] = value
+        top = determinant(DomainMatrix(matrix, (size, size), ring).to_sparse())
+        bottom = determinant(whole)
+        assert top
+        return len(bottom)
+
+    return run
+
+
+def _named(names: list[str]) -> list[Any]:
+    from sympy import Symbol
+
+    return [Symbol(name) for name in names]
+
+
+def _charpoly(matrix: Any) -> Any:
+    last = matrix.charpoly()[-1]
+    return last if matrix.shape[0] % 2 == 0 else -last
+
+
+def _det(matrix: Any) -> Any:
+    return matrix.det()
+
+
+def sympy_charpoly(network: Network) -> Callable[[], int]:
+    """Division-free: the last coefficient of the characteristic polynomial."""
+    return _domain(network, _charpoly, folded=False)
+
+
+def sympy_charpoly_folded(network: Network) -> Callable[[], int]:
+    """Division-free, one symbol for each s·C."""
+    return _domain(network, _charpoly, folded=True)
+
+
+def sympy_det_folded(network: Network) -> Callable[[], int]:
+    """The library's own choice of determinant, one symbol for each s·C."""
+    return _domain(network, _det, folded=True)
+
+
+def refusal(network: Network) -> Callable[[], int]:
+    """How long it takes to say that the expanded form is over budget."""
+    import acsolve
+    from acsolve.analyses.transfer import closed_form
+    from acsolve.errors import EquationError
+
+    path = acsolve.parse(network.text()).path(network.source, network.target)
+
+    def run() -> int:
+        try:
+            closed_form(path.circuit.netlist, path.ask, budget=BUDGET_TERMS)
+        except EquationError as problem:
+            assert problem.code == "equations.budget", problem
+            return 0
+        raise AssertionError("not refused")
+
+    return run
+
+
+def nested(network: Network) -> Callable[[], int]:
+    """The nested form; returns its steps."""
+    import acsolve
+    from acsolve.analyses.nested import nested_form
+
+    path = acsolve.parse(network.text()).path(network.source, network.target)
+    return lambda: len(nested_form(path.circuit.netlist, path.ask).steps)
+
+
+def nested_error(network: Network) -> Callable[[], float]:
+    """Largest relative difference of the nested form from the numeric sweep."""
+    from random import Random
+
+    import numpy as np
+
+    import acsolve
+    from acsolve.analyses.nested import nested_form
+    from acsolve.analyses.sweep import response
+
+    path = acsolve.parse(network.text()).path(network.source, network.target)
+    random = Random(7)
+    values = {f"R{k}": random.uniform(1e3, 9e3) for k in range(1, len(network.resistors) + 1)}
+    values |= {
+        f"C{k}": random.uniform(1e-9, 9e-9) for k in range(1, len(network.capacitors) + 1)
+    }
+    hertz = np.logspace(1, 5, 41)
+
+    def run() -> float:
+        form = nested_form(path.circuit.netlist, path.ask)
+        here = form.at(2j * np.pi * hertz, values)
+        there = response(path.circuit.netlist, path.ask, hertz, overrides=values)
+        return float(np.max(np.abs(here - there) / np.abs(there)))
+
+    return run
+
+
+METHODS: dict[str, Callable[[Network], Callable[[], Any]]] = {
+    "ours": ours,
+    "flint loop": flint_loop,
+    "LUsolve": sympy_lu,
+    "linsolve": sympy_linsolve,
+    "charpoly": sympy_charpoly,
+    "charpoly folded": sympy_charpoly_folded,
+    "det folded": sympy_det_folded,
+    "refusal": refusal,
+    "nested": nested,
+    "nested error": nested_error,
+}
+EXPERT = ("charpoly", "charpoly folded", "det folded")
+
+
+@dataclass(frozen=True, slots=True)
+class Measured:
+    """Median seconds, peak memory of the process in MB, and what the method returned."""
+
+    seconds: float
+    megabytes: float
+    result: float
+
+
+def measure(method: str, network: str) -> None:
+    """One measurement, printed as JSON: runs in a process of its own."""
+    run = METHODS[method](NETWORKS[network]())
+    times: list[float] = []
+    result: Any = None
+    while not times or (sum(times) < RUNS_WITHIN_S and len(times) < 15):
+        start = perf_counter()
+        result = run()
+        times.append(perf_counter() - start)
+    if len(times) > 1:
+        times = times[1:]  # the first run also loads what is loaded late
+    peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024
+    print(json.dumps([median(times), peak, result]))
+
+
+def measured(method: str, network: str, limit: float = LIMIT_S) -> Measured | None:
+    """A measurement in a process of its own; None where it takes longer than the limit."""
+    try:
+        done = subprocess.run(
+            [sys.executable, __file__, "--measure", method, network],
+            capture_output=True,
+            text=True,
+            timeout=limit + 15,
+            check=True,
+        )
+    except subprocess.TimeoutExpired:
+        return None
+    except subprocess.CalledProcessError as problem:
+        raise SystemExit(f"{method} on {network} failed:\n{problem.stderr}") from problem
+    found = Measured(*json.loads(done.stdout))
+    return found if found.seconds <= limit else None
+
+
+def _time(found: Measured | None) -> str:
+    if found is None:
+        return "> 60 s"
+    size = found.seconds
+    return f"{size:.3g} s" if size >= 1 else f"{size * 1e3:.3g} ms"
+
+
+def _ratio(rival: Measured | None, own: Measured) -> str:
+    if rival is None:
+        return f"> {LIMIT_S / own.seconds:,.0f}"
+    return f"{rival.seconds / own.seconds:,.3g}" if rival.seconds else "0"
+
+
+def _row(*cells: str) -> None:
+    print("  ".join(f"{cell:>13}" for cell in cells), flush=True)
+
+
+def expanded(names: list[str], *, quick: bool) -> None:
+    """The table of expanded forms."""
+    _row("network", "terms", "ours", "memory", "LUsolve", "linsolve", "expert", "flint loop",
+         "LU/ours", "expert/ours", "ours/loop")  # fmt: skip
+    slow: set[str] = set()
+    for name in names:
+        own = measured("ours", name)
+        assert own is not None, f"{name} takes over a minute"
+        found: dict[str, Measured | None] = {}
+        for method in ("LUsolve", "linsolve", *EXPERT):
+            limit = 5 if quick else LIMIT_S
+            found[method] = None if method in slow else measured(method, name, limit)
+            if found[method] is None and name.startswith("ladder"):
+                slow.add(method)
+        best = min(
+            (item for method in EXPERT if (item := found[method])),
+            key=lambda item: item.seconds,
+            default=None,
+        )
+        loop = measured("flint loop", name) if name.startswith("ladder") else None
+        _row(
+            name,
+            f"{own.result:,.0f}",
+            _time(own),
+            f"{own.megabytes:.0f} MB",
+            _time(found["LUsolve"]),
+            _time(found["linsolve"]),
+            _time(best),
+            _time(loop) if loop else "-",
+            _ratio(found["LUsolve"], own),
+            _ratio(best, own),
+            _ratio(own, loop) if loop else "-",
+        )
+        if best is not None:
+            assert best.result == own.result, f"{name}: the rival finds another answer"
+
+
+def too_large() -> None:
+    """The table of networks whose expanded form nobody could hold."""
+    print()
+    _row("network", "refused in", "nested in", "memory", "steps", "error")
+    for name in ("ladder 40", "mesh 8x8"):
+        no, yes, error = (measured(item, name) for item in ("refusal", "nested", "nested error"))
+        assert no and yes and error, f"{name} takes over a minute"
+        _row(
+            name,
+            _time(no),
+            _time(yes),
+            f"{yes.megabytes:.0f} MB",
+            f"{yes.result:.0f}",
+            f"{error.result:.1e}",
+        )
+
+
+def main(arguments: list[str]) -> None:
+    """Print the tables, or measure one case for them."""
+    if arguments[:1] == ["--measure"]:
+        measure(*arguments[1:])
+        return
+    quick = "--quick" in arguments
+    names = [f"ladder {n}" for n in ((3, 5, 8) if quick else (3, 5, 8, 10, 12, 14))]
+    names += ["mesh 3x3"] if quick else ["mesh 3x3", "mesh 3x4"]
+    expanded(names, quick=quick)
+    too_large()
+
+
+if __name__ == "__main__":
+    main(sys.argv[1:])
