@@ -13,7 +13,7 @@ from acsolve.analyses.question import Ask
 from acsolve.analyses.transfer import ratio
 from acsolve.circuit.check import check, check_question
 from acsolve.circuit.expression import Number
-from acsolve.circuit.netlist import Netlist, Pair, Part, bindings
+from acsolve.circuit.netlist import Netlist, Pair, Part, Question, bindings
 from acsolve.circuit.value import Value
 from acsolve.equations.exact import Symbols
 from acsolve.errors import Diagnostic, EquationError
@@ -66,7 +66,7 @@ def check_answer(netlist: Netlist, remarks: Iterable[Diagnostic] = ()) -> CheckA
     """Everything that can be said about a circuit before it is asked anything."""
     problems = [*remarks, *check(netlist)]
     for question in netlist.questions:
-        problems += check_question(netlist, question.source, question.target)
+        problems += _question_problems(netlist, question)
     asks = _ways_of_driving(netlist)
     refused = any(item.severity == "error" for item in problems)
     modes = (
@@ -79,6 +79,35 @@ def check_answer(netlist: Netlist, remarks: Iterable[Diagnostic] = ()) -> CheckA
     return CheckAnswer(netlist.title, netlist.nodes(), netlist.parts, modes, tuple(ordered))
 
 
+def _question_problems(netlist: Netlist, question: Question) -> Iterable[Diagnostic]:
+    pairs = [question.target] if question.source is None else [question.source, question.target]
+    for first, second in pairs:
+        if first == second:
+            where = f'in the variant "{netlist.variant}" ' if netlist.variant else ""
+            return [
+                Diagnostic(
+                    code="question.same-node",
+                    severity="warning",
+                    message=f"{where}the question's pair is one node, {first}",
+                    span=question.span,
+                    hint="Ask another pair with --from and --to.",
+                )
+            ]
+    if question.kind == "impedance":
+        quantity = "impedance"
+    elif question.source is None:
+        quantity = "response"
+    else:
+        quantity = question.quantity or "voltage-ratio"
+    return check_question(
+        netlist,
+        question.source,
+        question.target,
+        quantity=quantity,
+        ammeter=question.ammeter,
+    )
+
+
 def _distinct(problems: Iterable[Diagnostic]) -> list[Diagnostic]:
     return list({(item.sort_key, item.severity): item for item in problems}.values())
 
@@ -87,8 +116,10 @@ def _ways_of_driving(netlist: Netlist) -> list[Ask]:
     """One question for each way the file's questions hold the network, else the network at rest."""
     seen: dict[tuple[Pair | None, str], Ask] = {}
     for question in netlist.questions:
-        if question.source is None:
+        if question.kind == "impedance":
             ask = Ask(source=question.target, target=question.target, quantity="impedance")
+        elif question.source is None:
+            ask = Ask(source=None, target=question.target, quantity="response")
         else:
             ask = Ask(
                 source=question.source,

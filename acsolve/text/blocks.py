@@ -6,6 +6,7 @@ from acsolve.circuit.kind import KINDS, LETTERS
 from acsolve.errors import Label
 from acsolve.text import limits
 from acsolve.text.book import Book
+from acsolve.text.loops import refuse_parts
 from acsolve.text.scope import Draft, Given, Scope, Turns
 from acsolve.text.spell import node_name, spelled, whole
 from acsolve.text.tree import (
@@ -38,18 +39,9 @@ def settle(scope: Scope, book: Book, walker: Walker) -> None:
             book.parts.append(draft)
             book.by_name[draft.name] = draft
             if len(book.parts) > limits.PARTS:
-                _too_many(draft, book)
+                refuse_parts(draft.span, book)
         else:
             _unknown(draft, word, book)
-
-
-def _too_many(draft: Draft, book: Book) -> None:
-    book.problems.refuse(
-        "limit.parts",
-        f"written out, this circuit has more than {limits.PARTS:,} parts",
-        draft.span,
-        hint="Use fewer copies, or smaller ranges.",
-    )
 
 
 def _unstated(draft: Draft, book: Book) -> None:

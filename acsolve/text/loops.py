@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
+from typing import NamedTuple, NoReturn
 
 from acsolve.errors import Label
 from acsolve.source import Span
@@ -121,6 +122,44 @@ def _route(word: str, uses: Uses) -> list[str] | None:
     return None
 
 
+class _Size(NamedTuple):
+    """Statements and parts that a statement or a block comes to when written out."""
+
+    statements: int
+    parts: int
+
+    def plus(self, other: _Size, times: int) -> _Size:
+        most = limits.EXPANSION * 2  # beyond it nobody needs the exact count
+        return _Size(
+            min(self.statements + times * other.statements, most),
+            min(self.parts + times * other.parts, most),
+        )
+
+
+def _size(statement: Nested, sizes: Mapping[str, _Size], known: Numbers) -> _Size:
+    parts = _parts(statement)
+    total = _Size(1, parts)
+    for kind in _kinds(statement):
+        if kind.word in sizes:
+            total = total.plus(sizes[kind.word], _whole(kind.count, known) or 1)
+            total = _Size(total.statements, total.parts - 1)  # the block itself is no part
+    return total
+
+
+def _parts(statement: Nested) -> int:
+    """Parts that a statement places; those that several statements mention count once."""
+    if not isinstance(statement, Chain):
+        return 0
+    count, stack = 0, list(statement.items[1::2])
+    while stack:
+        item = stack.pop()
+        if isinstance(item, Arm):
+            stack.extend(item.units)
+        else:
+            count += 1
+    return count
+
+
 def refuse_size(body: Iterable[Nested], book: Book) -> None:
     """Refuse a text whose copies and repeats pass the limit, before any is written out.
 
@@ -128,25 +167,38 @@ def refuse_size(body: Iterable[Nested], book: Book) -> None:
     """
     content = tuple(body)
     outer = _numbers(content)
-    sizes: dict[str, int] = {}
-
-    def size(statement: Nested, known: Numbers) -> int:
-        copies = sum(
-            (_whole(kind.count, known) or 1) * sizes.get(kind.word, 1) for kind in _kinds(statement)
-        )
-        return 1 + copies
-
+    sizes: dict[str, _Size] = dict.fromkeys(book.blocks, _Size(1, 0))
     for _ in range(min(len(book.blocks), limits.NESTING) + 1):  # inner blocks settle first
         for word, block in book.blocks.items():
             known = {**outer, **_numbers(block.body)}
-            counted = _statements(block.body, known)
-            total = 1 + sum(times * size(item, known) for item, times in counted)
-            sizes[word] = min(total, limits.EXPANSION * 2)
+            total = _Size(1, 0)
+            for item, times in _statements(block.body, known):
+                total = total.plus(_size(item, sizes, known), times)
+            sizes[word] = total
+    total = _Size(0, 0)
     for statement, times in _statements(content, outer):
-        if times * size(statement, outer) > limits.EXPANSION:
-            book.problems.refuse(
-                "limit.expansion",
-                f"written out, this text has more than {limits.EXPANSION:,} statements",
-                statement.span,
-                hint="Use fewer copies, or smaller ranges.",
-            )
+        total = total.plus(_size(statement, sizes, outer), times)
+        if total.parts > limits.PARTS:
+            refuse_parts(statement.span, book)
+        if total.statements > limits.EXPANSION:
+            refuse_statements(statement.span, book)
+
+
+def refuse_parts(span: Span, book: Book) -> NoReturn:
+    """Refuse a circuit of too many parts."""
+    book.problems.refuse(
+        "limit.parts",
+        f"written out, this circuit has more than {limits.PARTS:,} parts",
+        span,
+        hint="Use fewer copies, or smaller ranges.",
+    )
+
+
+def refuse_statements(span: Span, book: Book) -> NoReturn:
+    """Refuse a text of too many statements."""
+    book.problems.refuse(
+        "limit.expansion",
+        f"written out, this text has more than {limits.EXPANSION:,} statements",
+        span,
+        hint="Use fewer copies, or smaller ranges.",
+    )

@@ -9,14 +9,15 @@ from __future__ import annotations
 from typing import Any, TypeVar
 
 from acsolve.circuit import expression as ex
-from acsolve.circuit.netlist import Band, Level, Netlist, Pair
+from acsolve.circuit.kind import Attribute
+from acsolve.circuit.netlist import Band, Level, Netlist, Pair, Part
 from acsolve.circuit.unit import Dimension
 from acsolve.circuit.value import Value
 from acsolve.source import Source, Span
 from acsolve.text import tree
 from acsolve.text.book import Book
 from acsolve.text.formula import Formulas, UnreadableError
-from acsolve.text.givens import Givens, Place
+from acsolve.text.givens import Givens, PartPlace, Place
 from acsolve.text.measure import DECIBEL, HERTZ, SECOND, Measure, Solver, measure_of
 from acsolve.text.parsing import option
 from acsolve.text.problems import Problems
@@ -34,7 +35,7 @@ def parse_value(
     *,
     dimension: Dimension | None = None,
     netlist: Netlist | None = None,
-    in_s: bool = False,
+    target: str | None = None,
     name: str = "value",
 ) -> Value:
     """Read a value as the format writes it: `2k2`, `4.7 kohm ± 1 %`, `2*R1`.
@@ -44,7 +45,8 @@ def parse_value(
     text : the value
     dimension : what its place needs; a bare number takes it; None accepts any
     netlist : the circuit whose named quantities and parts the value may refer to
-    in_s : whether the complex frequency may occur in it
+    target : the name of the value in that circuit (`R1`, `V1.angle`); it then tells the
+        unit, decibels and degrees included, and whether s may occur
     name : what messages call the text
 
     Returns
@@ -66,9 +68,7 @@ def parse_value(
     """
     desk = _Desk(text, name, netlist)
     content = desk.tree("option_value")
-    need = None if dimension is None else measure_of(dimension)
-    place = Place("this value", need)
-    place.at, place.in_s = True, in_s
+    place = desk.place(target, None if dimension is None else measure_of(dimension))
     if content is not None and content.formula is None:
         desk.problems.add(
             "value.absent",
@@ -210,6 +210,15 @@ class _Desk:
         """The syntax tree, or None once the problem is recorded."""
         return option(start, self.source, self.problems)
 
+    def place(self, target: str | None, need: Measure | None) -> Place:
+        """The place of a named value of the circuit, or of any value of that unit."""
+        found = attribute_of(self.netlist, target) if target else None
+        if found is not None:
+            return PartPlace(found[0].name, found[0].definition, found[1])
+        place = Place("this value", need)
+        place.at = True
+        return place
+
     def questions(self) -> Questions:
         """A reader of pairs, bands and levels."""
         nodes = set(self.netlist.nodes())
@@ -261,14 +270,20 @@ class _Known(Lookup):
 
     def _part_measure(self, name: str) -> Measure | None:
         """The measure of a part's value or attribute."""
-        for owner, attribute in ((name, None), tuple(name.rpartition(".")[::2])):
-            part = self._netlist.part(owner or "")
-            if part is None:
-                continue
+        found = attribute_of(self._netlist, name)
+        if found is None or found[1].name not in found[0].values:
+            return None
+        return need_of(found[0].definition, found[1]) or {}
+
+
+def attribute_of(netlist: Netlist, name: str) -> tuple[Part, Attribute] | None:
+    """The part and the attribute that a name of a value stands for."""
+    for owner, attribute in ((name, None), tuple(name.rpartition(".")[::2])):
+        part = netlist.part(owner or "")
+        if part is not None:
             row = part.definition.attribute(attribute or part.definition.principal or "")
-            if row is not None and (row.name in part.values):
-                return need_of(part.definition, row) or {}
-        return None
+            return None if row is None else (part, row)
+    return None
 
 
 def _whole(source: Source) -> Span:

@@ -95,7 +95,8 @@ class Curve:
                 for rest in (0, 1)
             )
             squares.append(even**2 + odd**2 + np.longdouble(0))
-        return squares[0] / squares[1] + 0 * GRID
+        with np.errstate(divide="ignore", invalid="ignore"):  # a pole on the grid
+            return squares[0] / squares[1] + 0 * GRID
 
     def sign_changes(self, level: Any) -> list[tuple[Any, Any, bool]]:
         """Neighbours on the grid between which |H|² crosses a level: low, high, rises."""
