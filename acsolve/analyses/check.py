@@ -9,7 +9,7 @@ from fractions import Fraction
 from acsolve.algebra.roots import LARGEST_CERTIFIED
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.enclosed import enclosed_roots
-from acsolve.analyses.question import Ask
+from acsolve.analyses.question import Ask, AskedQuantity
 from acsolve.analyses.transfer import ratio
 from acsolve.circuit.check import check, check_question
 from acsolve.circuit.expression import Number
@@ -93,6 +93,7 @@ def _question_problems(netlist: Netlist, question: Question) -> Iterable[Diagnos
                     hint="Ask another pair with --from and --to.",
                 )
             ]
+    quantity: AskedQuantity
     if question.kind == "impedance":
         quantity = "impedance"
     elif question.source is None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
+from fractions import Fraction
 from math import inf
 from random import Random
 from typing import Any
@@ -24,7 +25,7 @@ from acsolve.circuit.expression import (
     names,
 )
 from acsolve.circuit.graph import natural_key
-from acsolve.circuit.netlist import Netlist, Part, bindings
+from acsolve.circuit.netlist import Netlist, Part, bindings, with_values
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import Evaluator, FloatArithmetic, Scalar
 from acsolve.equations.exact import Expander, Symbols, exact_system, with_symbols
@@ -124,7 +125,8 @@ def nested_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> N
         system = ask.system(asked, branch_for=lambda part: _plainly_zero(part, expand))
     probe = _Probe()
     taken = frozenset(bindings(netlist))
-    found = nested(system, ask.observed(system), ask.driven(system), expand, probe, taken)
+    observed, driven = ask.observed(system), ask.driven(system)
+    found = nested(system, observed, driven, expand=expand, probe=probe, taken=taken)
     if found is None:
         raise EquationError(
             Diagnostic(
@@ -168,6 +170,14 @@ class _Probe:
                 return self._known[expression]
 
 
+def _valued(netlist: Netlist, numbers: Mapping[str, float]) -> Netlist:
+    """The netlist with numbers for its free symbols."""
+    return with_values(
+        netlist,
+        {name: Value(expression=Number(Fraction(number))) for name, number in numbers.items()},
+    )
+
+
 _POINTS = 3
 _AGREEMENT = 1e-9
 
@@ -179,7 +189,7 @@ def _check(netlist: Netlist, form: NestedForm) -> Checked:
     random = Random(20)  # noqa: S311 - reproducible points, no secret
     values = {name: 0.5 + random.random() for name in form.symbols}
     hertz = np.array([10 ** random.uniform(-2, 0) for _ in range(_POINTS)])
-    there = response(netlist, form.ask, hertz, overrides=values)
+    there = response(_valued(netlist, values), form.ask, hertz)
     here = np.asarray(form.at(2j * np.pi * hertz, values), dtype=complex)
     worst = float(np.max(np.abs(here - there) / np.abs(there))) if np.all(there) else inf
     if not worst <= _AGREEMENT:
@@ -192,4 +202,3 @@ def _check(netlist: Netlist, form: NestedForm) -> Checked:
             )
         )
     return Checked(_POINTS, worst)
-

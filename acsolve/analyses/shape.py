@@ -135,9 +135,7 @@ def standard_form(form: ClosedForm, *, safe: bool = True) -> StandardForm | None
     return StandardForm(shape, order, {name: str(part) for name, part in parts.items()})
 
 
-def _numerator(
-    write: Writer, top: list[Polynomial], bottom: list[Polynomial]
-) -> dict[str, Phrase]:
+def _numerator(write: Writer, top: list[Polynomial], bottom: list[Polynomial]) -> dict[str, Phrase]:
     """The named parts of a numerator of several terms; empty where it has none."""
     if top[0] == 0:
         return {"k1": write.ratio(top[1], bottom[0]), "tau_z": write.ratio(top[2], top[1])}

@@ -104,9 +104,7 @@ def _agrees_exactly(netlist: Netlist, form: ClosedForm, random: Random) -> bool:
     return bool(there * bottom == top)
 
 
-def _evaluator(
-    netlist: Netlist, arithmetic: Arithmetic, overrides: Mapping[str, Any]
-) -> Evaluator:
+def _evaluator(netlist: Netlist, arithmetic: Arithmetic, overrides: Mapping[str, Any]) -> Evaluator:
     """Over the circuit's values; a symbol that no equation holds (times zero, say) is one."""
     values = bindings(netlist)
     one = arithmetic.number(Fraction(1))

@@ -78,8 +78,9 @@ class FloatArithmetic:
         return result / np.log(10.0) if name == "log10" else result
 
     def rotation(self, degrees: Scalar) -> Scalar:
-        """exp(j·angle) for an angle in degrees."""
-        return np.exp(1j * np.deg2rad(degrees))
+        """exp(j·angle) for an angle in degrees, exact at whole quarter turns."""
+        turn = cmath.rect(1.0, cmath.pi * float(degrees) / 180)
+        return complex(round(turn.real), round(turn.imag)) if float(degrees) % 90 == 0 else turn
 
 
 class BallArithmetic:
@@ -114,9 +115,7 @@ class BallArithmetic:
 
     def rotation(self, degrees: Scalar) -> Scalar:
         """exp(j·angle) for an angle in degrees."""
-        from flint import acb
-
-        return (acb(0, 1) * acb.pi() * degrees / 180).exp()
+        return (degrees / 180).exp_pi_i()
 
 
 class RationalArithmetic:

@@ -120,6 +120,7 @@ def nested(
     system: System,
     observed: Functional,
     driven: Functional,
+    *,
     expand: Callable[[Expression], Expression],
     probe: Probe,
     taken: frozenset[str],
@@ -160,7 +161,9 @@ def _start(
     rows = []
     for law in system.laws:
         entries = {column: expand(entry) for column, entry in law.entries.items()}
-        rows.append({k: _entry(item, image) for k, item in entries.items() if (image := probe(item))})
+        rows.append(
+            {k: _entry(item, image) for k, item in entries.items() if (image := probe(item))}
+        )
     columns: dict[int, set[int]] = {k: set() for k in range(len(system.unknowns))}
     for place, row in enumerate(rows):
         for column in row:
@@ -311,9 +314,7 @@ def _substitute(work: _Work, pivots: list[tuple[int, int]], observed: Functional
     return Nested(_pruned(work.steps, result), result)
 
 
-def _solved(
-    work: _Work, row: int, column: int, values: Mapping[int, _Entry]
-) -> _Entry | None:
+def _solved(work: _Work, row: int, column: int, values: Mapping[int, _Entry]) -> _Entry | None:
     """The unknown of a pivot from those found before; None where it is zero."""
     total: _Entry | None = None
     for k, entry in sorted(work.rows[row].items()):

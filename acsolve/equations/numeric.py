@@ -7,7 +7,6 @@ of vectors, and entries without s stay scalars.
 
 from __future__ import annotations
 
-import cmath
 from collections import Counter
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
@@ -18,7 +17,6 @@ from typing import Any, TypeAlias
 from acsolve.circuit.expression import Expression
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.equations.evaluate import (
-    Arithmetic,
     BallArithmetic,
     Evaluator,
     FloatArithmetic,
@@ -198,38 +196,12 @@ def _not_finite(expression: Expression) -> EquationError:
 
 def float_values(netlist: Netlist, overrides: Mapping[str, Scalar] | None = None) -> Evaluator:
     """An evaluator of the circuit's values in double precision, sources as phasors."""
-    return _with_phasors(netlist, FloatArithmetic(), overrides)
+    return Evaluator(bindings(netlist), FloatArithmetic(), overrides=overrides)
 
 
 def ball_values(netlist: Netlist) -> Evaluator:
     """The same in balls, at the working precision of the moment."""
-    return _with_phasors(netlist, BallArithmetic(), None)
-
-
-def _with_phasors(
-    netlist: Netlist, arithmetic: Arithmetic, overrides: Mapping[str, Scalar] | None
-) -> Evaluator:
-    """An evaluator in which the name of a source with an angle is its complex amplitude."""
-    values = bindings(netlist)
-    plain = Evaluator(values, arithmetic, overrides=overrides)
-    phasors: dict[str, Scalar] = dict(overrides or {})
-    for part in netlist.parts:
-        angle = part.values.get("angle")
-        if angle is None or angle.expression is None:
-            continue
-        amplitude = part.values.get("amplitude")
-        if amplitude is not None and amplitude.expression is not None:
-            degrees = plain(angle.expression)
-            phasors.setdefault(part.name, plain(amplitude.expression) * _turned(degrees))
-    return Evaluator(values, arithmetic, overrides=phasors)
-
-
-def _turned(degrees: Scalar) -> Scalar:
-    """exp(j·degrees), exact at whole quarter turns."""
-    if hasattr(degrees, "exp_pi_i"):
-        return (degrees / 180).exp_pi_i()
-    turn = cmath.rect(1.0, cmath.pi * float(degrees) / 180)
-    return complex(round(turn.real), round(turn.imag)) if float(degrees) % 90 == 0 else turn
+    return Evaluator(bindings(netlist), BallArithmetic())
 
 
 def takes_branch(evaluate: Evaluator, part: Part) -> bool:

@@ -222,9 +222,7 @@ def acting(netlist: Netlist, drive: Pair | None) -> Iterable[Part]:
             yield part
 
 
-def without_idle_loops(
-    netlist: Netlist, parts: list[Part], *, own_sources: bool
-) -> list[Part]:
+def without_idle_loops(netlist: Netlist, parts: list[Part], *, own_sources: bool) -> list[Part]:
     """The parts without shorts that lie in parallel with other shorts.
 
     Two links of zero ohm beside each other share their current in a way that nothing
