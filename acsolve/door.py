@@ -22,7 +22,7 @@ from acsolve.circuit.netlist import (
     with_variant,
 )
 from acsolve.circuit.value import Value
-from acsolve.errors import AnalysisError, CircuitError, Diagnostic
+from acsolve.errors import AnalysisError, CircuitError, Diagnostic, EquationError
 from acsolve.given import level_of, pair_of, reference_of, value_for
 
 if TYPE_CHECKING:
@@ -358,17 +358,26 @@ class Path:
         """
         from acsolve.analyses.cutoff import cutoffs
 
-        formula = None
         form = self.closed_form(symbolic=symbolic, keep=keep)
-        if not form.symbols and self._formula_is_small(form):
-            formula = self.closed_form(symbolic=True)
         return cutoffs(
-            form, level=level_of(level), reference=reference_of(reference), formula=formula
+            form,
+            level=level_of(level),
+            reference=reference_of(reference),
+            formula=self._formula(form),
         )
 
-    def _formula_is_small(self, form: ClosedForm) -> bool:
-        """Whether a symbolic closed form of the cutoffs can be had at all."""
-        return form.rational and all(len(part) <= 3 for part in form.coefficients())
+    def _formula(self, form: ClosedForm) -> ClosedForm | None:
+        """The same question over symbols, where its cutoffs can have a closed form at all."""
+        if form.symbols or not form.rational:
+            return None
+        if any(len(part) > _SECOND_ORDER + 1 for part in form.coefficients()):
+            return None
+        try:
+            return self.closed_form(symbolic=True, budget=_LARGEST_FORMULA)
+        except EquationError as error:
+            if error.code != "equations.budget":
+                raise
+            return None
 
     def response(self, hertz: ArrayLike) -> NDArray[np.complex128]:
         """The complex response at frequencies in hertz; any shape in, the same shape out.
@@ -436,6 +445,10 @@ def _grid(band: HertzBand, points: str | int | None, *, linear: bool) -> NDArray
     if sign:
         return grid.logarithmic(band, per_decade=int(count))
     return grid.logarithmic(band, points=int(count) if count else None)
+
+
+_SECOND_ORDER = 2
+_LARGEST_FORMULA = 2_000  # terms; the closed form of a larger network is no longer read
 
 
 def _symbols(symbolic: bool, keep: Iterable[str]) -> Any:

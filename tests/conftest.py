@@ -1,5 +1,13 @@
-"""Settings of the property tests: the same examples on every run, no clock, no database."""
+"""Settings of the property tests (the same examples on every run, no clock, no database),
+and snapshots: texts kept beside the tests, changed only by `--update-snapshots`.
+"""
 
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
 from hypothesis import HealthCheck, Phase, settings
 
 settings.register_profile(
@@ -11,3 +19,25 @@ settings.register_profile(
     suppress_health_check=[HealthCheck.too_slow],
 )
 settings.load_profile("fixed")
+
+
+def pytest_addoption(parser: pytest.Parser) -> None:
+    parser.addoption(
+        "--update-snapshots",
+        action="store_true",
+        help="write snapshots anew; read every change before it is kept",
+    )
+
+
+@pytest.fixture
+def snapshot(request: pytest.FixtureRequest) -> Callable[[str, Path], None]:
+    """Compare a text with the snapshot in a file, or write it where the flag says so."""
+    update = request.config.getoption("--update-snapshots")
+
+    def compare(text: str, path: Path) -> None:
+        if update:
+            path.write_text(text, encoding="utf-8")
+        assert path.exists(), f"no snapshot {path.name}; run with --update-snapshots"
+        assert text == path.read_text(encoding="utf-8")
+
+    return compare

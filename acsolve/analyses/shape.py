@@ -168,19 +168,22 @@ def natural_frequency(write: Writer, coefficients: list[Polynomial]) -> Phrase:
 
 
 def quality(write: Writer, coefficients: list[Polynomial]) -> Phrase:
-    """sqrt(c0·c2)/c1, the shortest of several spellings."""
+    """sqrt(c2/c0)·c0/c1, the shortest of several spellings."""
     first, middle, last = coefficients
     if middle == 0:
         return Phrase("oo")
+    period = natural_frequency(write, [last, middle, first])
+    whole = product([period], [write.ratio(middle, first)])
+    if _sign(first) == 0:
+        return whole
+    first, middle, last = (value * _sign(first) for value in coefficients)
     outer, inner = _rooted(first * last)
     outer, divisor = cancel(outer, middle)
     ways = [_quotient(write, (outer, divisor), (inner, first * 0 + 1))]
     shared = _radical(inner.gcd(divisor))
     if shared != 1:  # sqrt(x·y)/(x·z) = sqrt(y/x)/z
         ways.append(_quotient(write, (outer, divisor / shared), (inner / shared, shared)))
-    period = natural_frequency(write, [last, middle, first])
-    ways.append(product([period], [write.ratio(middle, first)]))
-    return _shortest(*ways)
+    return _shortest(*ways, whole)
 
 
 def _quotient(

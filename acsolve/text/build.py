@@ -153,7 +153,8 @@ class _Builder:
                 known.update(node for part in parts for node in part.nodes)
             return node in known
 
-        questions = Questions(self._book, self._givens, exists)
+        ammeters = {part.name: part.nodes for part in parts if part.kind == "ammeter"}
+        questions = Questions(self._book, self._givens, exists, ammeters)
         questions.read_ports(self._of(tree.Port))
         asked = [questions.question(item) for item in self._of(tree.Ask)]
         goals = [questions.goal(item) for item in self._of(tree.Goal)]

@@ -255,9 +255,12 @@ def warn(parts: Iterable[Part], symbols: bool, book: Book) -> None:
     ]
     valued = sum(1 for part in parts if part.values) - len(bare)
     if len(bare) == 1 and valued >= 2 and not symbols:
+        part = bare[0]
+        open_ = [name for name, value in part.values.items() if value.expression is None]
+        what = "no value" if part.definition.principal else f"no {listed(open_, 'and no')}"
         book.problems.warn(
             "value.lone-symbol",
-            f"{bare[0].name} has no value while all other parts have one",
+            f"{part.name} has {what} while all other parts have their values",
             bare[0].span,
             hint="It stays a symbol; give it a value if its name was mistyped elsewhere.",
         )

@@ -15,7 +15,7 @@ from acsolve.text.formula import Formulas, Made, UnreadableError
 from acsolve.text.measure import DEGREE, HERTZ, PER_KELVIN, PLAIN, Measure, Solver, sign, words
 from acsolve.text.references import need_of
 from acsolve.text.scope import Scope, Turns
-from acsolve.text.tree import Amount, Formula, ToleranceText, ValueText
+from acsolve.text.tree import Amount, Formula, Literal, ToleranceText, ValueText
 from acsolve.text.words import article
 
 _HUNDREDTH = Fraction(1, 100)
@@ -216,13 +216,16 @@ class Givens:
         if side.measure is None:
             unit = sign(self._solver.reduced(whole))
             number = amount.span.text
+            number = number if isinstance(amount.formula, Literal) else f"({number})"
             self._wrong_tolerance(
                 amount.span,
                 f"± {number} does not say of what",
                 f"Write ± {number} % or ± {number} {unit}." if unit else f"Write ± {number} %.",
             )
         assert side.measure is not None, "the bare number is refused above"
-        if side.measure and self._solver.agree(side.measure, whole, amount.span):
+        known = self._solver.reduced(side.measure)
+        open_ = any(base.startswith("?") for base in known)  # a bare name is a fraction
+        if known and not open_ and self._solver.agree(known, whole, amount.span):
             return side.expression, False
         self._need(side, PLAIN, amount.span)
         return side.expression, True

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Mapping
 from fractions import Fraction
 from itertools import chain
+from types import MappingProxyType
 from typing import Any, Literal, get_args
 
 from acsolve.circuit.expression import Number
@@ -42,10 +43,17 @@ NodeCheck = Callable[[str], bool]
 class Questions:
     """Reads ports, questions and goals of a file."""
 
-    def __init__(self, book: Book, givens: Givens, exists: NodeCheck) -> None:
+    def __init__(
+        self,
+        book: Book,
+        givens: Givens,
+        exists: NodeCheck,
+        ammeters: Mapping[str, tuple[str, ...]] = MappingProxyType({}),
+    ) -> None:
         self._book = book
         self._givens = givens
         self._exists = exists
+        self._ammeters = ammeters  # name -> its two nodes
         self.ports: dict[str, Pair] = {}
 
     # ------------------------------------------------------------ pairs
@@ -258,11 +266,9 @@ class Questions:
         assert isinstance(text, PairText), "to and into are followed by a pair"
         if text.second is None and isinstance(text.first, tree.Path):
             local = node_name(text.first, self._book.file, NO_TURNS, self._book)
-            draft = self._book.by_name.get(local or "")
-            if draft is not None and draft.definition and draft.definition.name == "ammeter":
-                ends = draft.ends or ("gnd", "gnd")
-                find = self._book.nodes.find
-                return draft.name, (find(ends[0]), find(ends[1]))
+            if local is not None and local in self._ammeters:
+                first, second = self._ammeters[local]
+                return local, (first, second)
         return None, self.pair(text)
 
     def _quantity_name(self, clause: Clause) -> QuantityName | None:

@@ -80,7 +80,6 @@ class Scope:
     values: dict[str, Given] = field(default_factory=dict)
     ports: dict[str, Span] = field(default_factory=dict)
     reached: list[tuple[str, Place]] = field(default_factory=list)  # dotted nodes, to be checked
-    inner_used: set[str] = field(default_factory=set)  # arguments that found their value
     depth: int = 0
 
     def node(self, local: str) -> str:

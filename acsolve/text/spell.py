@@ -211,7 +211,7 @@ def _looked_up(
     if name is not None:
         given = scope.arguments.get(name) if name in scope.quantities else None
         if given is not None and given.text.formula is not None:
-            scope.inner_used.add(name)
+            book.used.add(scope.prefix + name)
             return _evaluate(given.text.formula, given.scope, given.turns, book, visited)
         found = book.quantity(name, scope)
         if found is not None:

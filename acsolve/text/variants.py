@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from itertools import chain
 
+from acsolve.circuit.kind import Kind
 from acsolve.circuit.netlist import Coupling, Variant
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
@@ -91,33 +92,36 @@ class Variants:
 
     def value(
         self, found: tuple[Draft, str | None] | Place, text: ValueText, turns: Turns
-    ) -> dict[str, Value]:
-        """The values, by the names under which they are kept, relative to the target."""
+    ) -> Iterator[tuple[str, Value]]:
+        """The values, under the names by which they are kept."""
         file = self._book.file
         if isinstance(found, Place):
             value = self._givens.value(text, found, file, turns)
-            return {} if value is None else {"": value}
+            if value is not None:
+                yield found.words, value
+            return
         draft, attribute = found
         kind = draft.definition
         assert kind is not None, "parts have kinds"
         row = kind.attribute(attribute or kind.principal or "")
         if row is None:
-            self._book.problems.add(
-                "name.not-a-value",
-                f"{draft.name} has no value of its own",
-                text.span,
-                hint=f"Name an attribute of it: {draft.name}.{kind.attributes[0].name}."
-                if kind.attributes
-                else None,
-            )
-            return {}
-        place = PartPlace(draft.name, kind, row)
-        value = self._givens.value(text, place, file, turns)
-        result = {} if value is None else {"" if row.name == kind.principal else row.name: value}
+            self._no_value(draft, kind, text)
+            return
+        value = self._givens.value(text, PartPlace(draft.name, kind, row), file, turns)
+        if value is not None:
+            yield (draft.name if row.name == kind.principal else f"{draft.name}.{row.name}"), value
         angle = self._givens.angle(text, file, turns) if row.shape == "phasor" else None
         if angle is not None:
-            result["angle"] = angle
-        return result
+            yield f"{draft.name}.angle", angle
+
+    def _no_value(self, draft: Draft, kind: Kind, text: ValueText) -> None:
+        first = kind.attributes[0].name if kind.attributes else None
+        self._book.problems.add(
+            "name.not-a-value",
+            f"{draft.name} has no value of its own",
+            text.span,
+            hint=f"Name an attribute of it: {draft.name}.{first}." if first else None,
+        )
 
 
 class _Reader:
@@ -163,16 +167,6 @@ class _Reader:
         found = self._parent.target(local, span)
         if found is None:
             return
-        first = self._given.setdefault(local, span)
-        if first is not span:
-            self._book.problems.add(
-                "value.twice",
-                f"{local} is given two values in one variant",
-                span,
-                hint="Keep one.",
-                labels=(Label(first, "first given here"),),
-            )
-            return
         if is_absent(text):
             if isinstance(found, Place) or found[1] is not None:
                 self._book.problems.add(
@@ -182,10 +176,25 @@ class _Reader:
                     hint="Only whole parts can be left out.",
                 )
             else:
+                self._once(local, span)
                 self.absent.add(local)
             return
-        for name, value in self._parent.value(found, text, turns).items():
-            self.values[f"{local}.{name}" if name else local] = value
+        for name, value in self._parent.value(found, text, turns):
+            if self._once(name, span):
+                self.values[name] = value
+
+    def _once(self, name: str, span: Span) -> bool:
+        first = self._given.setdefault(name, span)
+        if first is span:
+            return True
+        self._book.problems.add(
+            "value.twice",
+            f"{name} is given two values in one variant",
+            span,
+            hint="Keep one.",
+            labels=(Label(first, "first given here"),),
+        )
+        return False
 
     def _couple(self, statement: Couple, turns: Turns) -> None:
         names = [
