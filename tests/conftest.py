@@ -1,5 +1,7 @@
-"""Settings of the property tests (the same examples on every run, no clock, no database),
-and snapshots: texts kept beside the tests, changed only by `--update-snapshots`.
+"""Settings of property tests, and snapshots.
+
+Property tests take the same examples on every run, with no clock and no database;
+snapshots are texts kept beside the tests, changed only by `--update-snapshots`.
 """
 
 from __future__ import annotations
@@ -22,6 +24,7 @@ settings.load_profile("fixed")
 
 
 def pytest_addoption(parser: pytest.Parser) -> None:
+    """Add the flag that writes snapshots anew."""
     parser.addoption(
         "--update-snapshots",
         action="store_true",

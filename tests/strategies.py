@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from collections.abc import Sequence
 from dataclasses import replace
 from fractions import Fraction
@@ -11,7 +12,6 @@ from hypothesis import strategies as st
 from acsolve.circuit.expression import (
     PI,
     Expression,
-    Name,
     Number,
     S,
     add,
@@ -63,17 +63,17 @@ def _expression(item: int | Fraction | Expression | None) -> Expression | None:
     return number(item) if isinstance(item, int | Fraction) else item
 
 
-def R(name: str, a: str, b: str, value: int | Fraction | Expression | None = None) -> Part:
+def R(name: str, a: str, b: str, value: int | Fraction | Expression | None = None) -> Part:  # noqa: N802 - the reference designator
     """A resistor."""
     return part(name, "resistor", a, b, value=value)
 
 
-def L(name: str, a: str, b: str, value: int | Fraction | Expression | None = None) -> Part:
+def L(name: str, a: str, b: str, value: int | Fraction | Expression | None = None) -> Part:  # noqa: N802 - the reference designator
     """An inductor."""
     return part(name, "inductor", a, b, value=value)
 
 
-def C(name: str, a: str, b: str, value: int | Fraction | Expression | None = None) -> Part:
+def C(name: str, a: str, b: str, value: int | Fraction | Expression | None = None) -> Part:  # noqa: N802 - the reference designator
     """A capacitor."""
     return part(name, "capacitor", a, b, value=value)
 
@@ -236,7 +236,9 @@ def islands(draw, *, symbols: bool = False) -> Netlist:
     sides: list[tuple[str, ...]] = []
     for letter in "pqr"[: draw(st.integers(2, 3))]:
         count = draw(st.integers(2, 3))
-        nodes = tuple("gnd" if letter == "p" and at == 0 else f"{letter}{at}" for at in range(count))
+        nodes = tuple(
+            "gnd" if letter == "p" and at == 0 else f"{letter}{at}" for at in range(count)
+        )
         sides.append(nodes)
         for at in range(1, count):
             kind = draw(st.sampled_from(PASSIVE))
@@ -244,9 +246,11 @@ def islands(draw, *, symbols: bool = False) -> Netlist:
             parts.append(draw(lumped(f"{_letter(kind)}{len(parts)}", kind, ends, symbols=symbols)))
         kind = draw(st.sampled_from(PASSIVE))
         parts.append(
-            draw(lumped(f"{_letter(kind)}{len(parts)}", kind, [nodes[0], nodes[-1]], symbols=symbols))
+            draw(
+                lumped(f"{_letter(kind)}{len(parts)}", kind, [nodes[0], nodes[-1]], symbols=symbols)
+            )
         )
-    for first, second in zip(sides, sides[1:], strict=False):
+    for first, second in itertools.pairwise(sides):
         places = [first[0], first[-1], second[0], second[-1]]
         ratio = draw(plain_values(symbols=symbols, sign=True))
         parts.append(
@@ -263,7 +267,9 @@ def islands(draw, *, symbols: bool = False) -> Netlist:
 @st.composite
 def pairs(draw, netlist: Netlist) -> Pair:
     """Two different nodes of a network."""
-    first, second = draw(st.lists(st.sampled_from(netlist.nodes()), min_size=2, max_size=2, unique=True))
+    first, second = draw(
+        st.lists(st.sampled_from(netlist.nodes()), min_size=2, max_size=2, unique=True)
+    )
     return first, second
 
 
@@ -296,7 +302,9 @@ _UNITS = {
 }
 
 
-def scaled(netlist: Netlist, *, impedance: Fraction = Fraction(1), time: Fraction = Fraction(1)) -> Netlist:
+def scaled(
+    netlist: Netlist, *, impedance: Fraction = Fraction(1), time: Fraction = Fraction(1)
+) -> Netlist:
     """Every impedance times a factor, every time constant times another; no parts in s."""
 
     def value(item: Part, attribute: str) -> Value:
@@ -341,5 +349,3 @@ def hertz_value(hertz: Fraction, product: Fraction) -> Expression:
 def quantity(name: str, expression: Expression | None) -> dict[str, Quantity]:
     """A named quantity of a netlist."""
     return {name: Quantity(name=name, value=Value(expression=expression))}
-
-

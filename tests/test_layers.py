@@ -91,16 +91,16 @@ def at_once(tree: ast.Module) -> set[str]:
     """The modules that are imported while the module itself is: no late ones, none for types."""
     found = set()
     for node in tree.body:
-        if isinstance(node, ast.Import | ast.ImportFrom):
-            found |= imported(node)
-        elif isinstance(node, ast.If | ast.Try) and "TYPE_CHECKING" not in ast.dump(node):
+        if isinstance(node, ast.Import | ast.ImportFrom) or (
+            isinstance(node, ast.If | ast.Try) and "TYPE_CHECKING" not in ast.dump(node)
+        ):
             found |= imported(node)
     return found
 
 
 def is_ours(module: str) -> bool:
     """Whether a module belongs to the package."""
-    return module.split(".")[0] == "acsolve"
+    return module.split(".", maxsplit=1)[0] == "acsolve"
 
 
 @pytest.mark.parametrize("name", sorted(MAY_IMPORT))
@@ -180,8 +180,7 @@ def test_importing_the_package_is_cheap():
     """`import acsolve` in a fresh interpreter loads no third-party library at all."""
     watched = [*HOMES, "sympy", "mpmath", "numpy"]
     code = (
-        "import sys, acsolve; "
-        f"print(' '.join(name for name in {watched!r} if name in sys.modules))"
+        f"import sys, acsolve; print(' '.join(name for name in {watched!r} if name in sys.modules))"
     )
     shown = subprocess.run(  # noqa: S603 - our own interpreter and text
         [sys.executable, "-c", code], capture_output=True, text=True, check=True, cwd=PACKAGE.parent

@@ -98,9 +98,9 @@ def test_sixty_three_percent_after_one_time_constant(path):
 
 def test_the_mirrored_section_passes_high_frequencies():
     """Common practice: R and C exchanged, gain 0 at 0 Hz, 1 far above, +45 degrees at cutoff."""
-    path = acsolve.parse(
-        "bridge -- C1 -- out\nout -- R1 -- gnd\nR1 = 1 kohm\nC1 = 100 nF\n"
-    ).path("bridge", "out")
+    path = acsolve.parse("bridge -- C1 -- out\nout -- R1 -- gnd\nR1 = 1 kohm\nC1 = 100 nF\n").path(
+        "bridge", "out"
+    )
     answer = path.transfer()
     assert answer.at_zero == "0"
     assert answer.at_infinity.text() == "1"

@@ -239,6 +239,8 @@ def _above(page: _Page, found: StandardForm, labels: dict[str, Phrase]) -> Phras
             return k
         case "high-pass":
             return product([k, labels["tau"], _S] if first else [k, _relative(page, w0)])
+        case "band-pass" if "k1" in parts:
+            return product([labels["k1"], _S])
         case "band-pass":
             return product([k, Phrase(f"({product([_S], [q, w0])})")])
         case "notch":

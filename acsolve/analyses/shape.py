@@ -99,7 +99,8 @@ class StandardForm:
     1 + s/(q·w0) + s²/w0². `k` is the gain at zero frequency, at infinity for a high-pass,
     at w0 for a band-pass. Of the shape "other" the numerator has parts of its own:
     `tau_z` of 1 + tau_z·s; `w_z` and `q_z` of 1 + s/(q_z·w_z) + s²/w_z², where `w_z` is
-    left out if it is w0; and `k1` stands for `k` in k1·s·(1 + tau_z·s).
+    left out if it is w0; and `k1` stands for `k` in k1·s·(1 + tau_z·s), as in k1·s of a
+    band-pass without loss, whose `q` is "oo". Where parts decide whether what stands under a root is positive, the form holds while it is.
     """
 
     shape: ShapeName
@@ -121,6 +122,8 @@ def standard_form(form: ClosedForm, *, safe: bool = True) -> StandardForm | None
     write = Writer(form.basis, form.spelled(safe=safe))
     if shape == "other":
         parts = _numerator(write, top, bottom)
+    elif shape == "band-pass" and bottom[1] == 0:  # no loss: no gain at w0
+        parts = {"k1": write.ratio(top[1], bottom[0])}
     else:
         place = {"high-pass": order, "band-pass": 1}.get(shape, 0)
         lossless = bottom[place] == 0  # a band-pass without losses: infinite at resonance

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 
 from acsolve.algebra.cofactor import OverBudgetError
-from acsolve.algebra.ring import Polynomial
+from acsolve.algebra.ring import Polynomial, cancel
 from acsolve.analyses.closed_form import ClosedForm, normalised
 from acsolve.analyses.nested import NestedForm, nested_form
 from acsolve.analyses.poles import PolesZeros, poles_zeros
@@ -28,11 +28,16 @@ from acsolve.errors import Diagnostic, EquationError
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Ratio:
-    """Observed over driven, before common factors are removed; `driven` holds hidden modes."""
+    """Observed over driven, before common factors are removed; `driven` holds hidden modes.
+
+    `lean` is the same ratio without the factors that can be seen only while square roots
+    stand as they are: none but those are removed.
+    """
 
     basis: Basis
     observed: Polynomial
     driven: Polynomial
+    lean: tuple[Polynomial, Polynomial]
 
 
 DEFAULT_BUDGET = 4_000_000  # terms at once: about 1 GB and a few seconds (measured)
@@ -61,9 +66,13 @@ def ratio(
         raise _over_budget("more", budget or 0) from None
     ring = exact.basis.ring
     top, bottom = (apply(part, directions, ring) for part in (observed, driven))
-    if bottom == 0:
-        raise _no_answer(ask, singular=top == 0)
-    return Ratio(exact.basis, top, bottom)
+    whole = ring.reduced(top), ring.reduced(bottom)
+    if whole[1] == 0:
+        raise _no_answer(ask, singular=whole[0] == 0)
+    if not ring.squares:
+        return Ratio(exact.basis, *whole, whole)
+    lean = cancel(top, bottom)  # of (s + r)(s - r) = s² - 2, with r the root of 2, only now
+    return Ratio(exact.basis, *whole, (ring.reduced(lean[0]), ring.reduced(lean[1])))
 
 
 def closed_form(
@@ -93,7 +102,7 @@ def closed_form(
     """
     chosen = symbols or Symbols()
     found = ratio(netlist, ask, chosen, budget=budget)
-    form = normalised(ask, found.basis, found.observed, found.driven, bindings(netlist))
+    form = normalised(ask, found.basis, *found.lean, bindings(netlist))
     return replace(form, checked=check_closed_form(with_symbols(netlist, chosen), form))
 
 

@@ -172,10 +172,11 @@ class ExactSystem:
     ) -> Mapping[int, Polynomial]:
         """The components of the null direction that are asked for; zeros are left out.
 
+        Squares of roots are not replaced yet: factors that all components share still show.
+
         Raises OverBudgetError where more terms than `budget` would be held at once.
         """
-        found = minors(self.rows, wanted, self.plan, columns=self.columns, budget=budget)
-        return {column: self.basis.ring.reduced(value) for column, value in found.items()}
+        return minors(self.rows, wanted, self.plan, columns=self.columns, budget=budget)
 
     def coefficient_sum(self, functional: Functional) -> int:
         """The sum of the coefficients of an answer's part, without multiplying it out.

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from typing import TypeAlias
+from typing import Any, TypeAlias
 
-import numpy as np
 from numpy.polynomial.polynomial import polyadd, polymul
+from numpy.typing import NDArray
 
 from acsolve.circuit.expression import Expression, Number, Power, Product, Quotient, Sum
 from acsolve.equations.evaluate import Evaluator, polynomial_in_s
@@ -62,5 +62,5 @@ def _power(base: Ratio | None, exponent: int) -> Ratio | None:
     return total if exponent >= 0 else total[::-1]
 
 
-def _closed(coefficients: np.ndarray[tuple[int], np.dtype[np.complex128]]) -> tuple[complex, ...]:
+def _closed(coefficients: NDArray[Any]) -> tuple[complex, ...]:
     return tuple(complex(item) for item in coefficients)

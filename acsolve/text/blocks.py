@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+import re
+
 from acsolve.circuit.kind import KINDS, LETTERS
 from acsolve.errors import Label
+from acsolve.source import Span
 from acsolve.text import limits
 from acsolve.text.book import Book
 from acsolve.text.loops import refuse_parts
@@ -21,7 +24,7 @@ from acsolve.text.tree import (
     Reference,
 )
 from acsolve.text.walk import Walker
-from acsolve.text.words import listed, meant
+from acsolve.text.words import comma_inside, listed, meant
 
 
 def settle(scope: Scope, book: Book, walker: Walker) -> None:
@@ -251,6 +254,23 @@ def _arguments(
     return plain, inner
 
 
+def refuse_comma(argument: Argument, book: Book) -> bool:
+    """Report a decimal comma, which makes an argument of what follows it."""
+    span = argument.span
+    if argument.path is not None or not comma_inside(span.source.text, span.start):
+        return False
+    left = re.search(r"[0-9]+$", span.source.text[max(0, span.start - 20) : span.start - 1])
+    assert left is not None, "a digit stands before the comma"
+    whole = Span(span.source, span.start - 1 - len(left[0]), span.end)
+    book.problems.add(
+        "value.spelling",
+        f"{whole.text} has a comma where the decimal point belongs",
+        whole,
+        hint=f"Write {left[0]}.{span.text}.",
+    )
+    return True
+
+
 def _check_arguments(draft: Draft, block: Block, child: Scope, book: Book) -> None:
     """Report arguments that name nothing in the block, or name it twice."""
     assert draft.kind is not None, "a block is always stated"
@@ -260,6 +280,8 @@ def _check_arguments(draft: Draft, block: Block, child: Scope, book: Book) -> No
     for argument in draft.kind.arguments:
         path = argument.path
         name = path.name if path else None
+        if refuse_comma(argument, book):
+            continue
         if path is None or (name is not None and name not in known and name not in pins):
             if name in book.problems.broken_words:
                 continue

@@ -26,6 +26,7 @@ from acsolve.text.tree import (
     Terms,
 )
 
+_NO_ZERO = "Write a divisor that is not zero."
 _FUNCTIONS: dict[str, FunctionName] = {
     "sqrt": "sqrt",
     "exp": "exp",
@@ -106,7 +107,9 @@ class Formulas:
             case Applied():
                 return self._applied(formula, scope, turns, in_s)
             case GroundWord(span):
-                self._refuse("name.not-a-value", "gnd is a node, not a value", span)
+                self._refuse(
+                    "name.not-a-value", "gnd is a node, not a value", span, "Write a value."
+                )
         raise AssertionError("every formula is one of these")
 
     def _refuse(
@@ -140,14 +143,16 @@ class Formulas:
             return
         number = literal.text.removesuffix(word)
         labels = () if place is None else (Label(place, f"{word} is named here"),)
-        what = "the complex frequency" if in_s and word == "s" else f"the name {word}"
+        frequency = place is None and word == "s"
+        what = "the complex frequency" if frequency else f"the name {word}"
+        rename = "" if frequency else f" or rename {word}"
         self._refuse(
             "value.two-readings",
             f"{literal.span.text} can be read as a value with a unit or prefix, "
             f"and as {number} times {what}",
             literal.span,
             f"Write {number}*{word} for the product; for the value, "
-            f"write it another way ({_other_way(found)}) or rename {word}.",
+            f"write it another way ({_other_way(found)}){rename}.",
             *labels,
         )
 
@@ -168,7 +173,7 @@ class Formulas:
         try:
             return Made(ex.divide(left.expression, right.expression), measure, depth)
         except ZeroDivisionError:
-            self._refuse("value.zero-division", "this divides by zero", span)
+            self._refuse("value.zero-division", "this divides by zero", span, _NO_ZERO)
             raise
 
     def _same(self, left: Measure | None, right: Measure | None, span: Span) -> Measure | None:
@@ -200,7 +205,7 @@ class Formulas:
         try:
             made = Made(ex.power(base.expression, power), measure, depth)
         except ZeroDivisionError:
-            self._refuse("value.zero-division", "this divides by zero", formula.span)
+            self._refuse("value.zero-division", "this divides by zero", formula.span, _NO_ZERO)
             raise
         return self._bounded(made, formula.span)
 
@@ -224,7 +229,7 @@ class Formulas:
                 "value.function",
                 f"{name} is no function",
                 formula.function.span,
-                f"Functions are sqrt, exp, ln and log10; a product is written {name}*(…).",
+                "Functions are sqrt, exp, ln and log10.",
             )
             raise UnreadableError
         argument = self._make(formula.argument, scope, turns, in_s)
@@ -292,4 +297,4 @@ def _other_way(found: Meaning) -> str:
     whole = found.number.denominator == 1
     digits = str(found.number) if whole else f"{float(found.number):g}"
     unit = sign(found.measure or PLAIN)
-    return f"{digits} {unit}" if unit and unit != found.word else f"{digits}, in SI units"
+    return f"{digits} {unit}" if unit and unit != found.word else digits

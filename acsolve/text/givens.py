@@ -152,7 +152,7 @@ class Givens:
             "value.unit",
             f"{place.words} needs {words(need)}, got {words(got)}",
             formula.span,
-            hint=_unit_hint(place, need, got),
+            hint=_unit_hint(place, need, got, isinstance(formula, Literal)),
             labels=labels,
         )
         raise UnreadableError
@@ -161,7 +161,7 @@ class Givens:
         if not place.at:
             self._book.problems.add(
                 "value.at",
-                f"{place.words} holds at every frequency and takes no at",
+                f"{place.words} takes no frequency: it holds at every one",
                 formula.span,
                 hint="Only quality and loss are stated at a frequency.",
             )
@@ -254,11 +254,13 @@ def _percentage(amount: Amount) -> Fraction:
     return Fraction(text) / 100
 
 
-def _unit_hint(place: Place, need: Measure, got: Measure) -> str | None:
+def _unit_hint(place: Place, need: Measure, got: Measure, literal: bool) -> str:
     """What to write instead."""
     unit = sign(need)
     if words(got) == "decibels":
         return "Write the ratio itself: 20 dB is 10, 40 dB is 100."
+    if not literal:
+        return "Check the units of what the expression is made of."
     advice = f"Write the value in {unit}" if unit else "Write a number without a unit"
     letters = {"ohms": "R", "henries": "L", "farads": "C"}
     other, mine = letters.get(words(got)), letters.get(words(need))

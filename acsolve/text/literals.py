@@ -221,9 +221,12 @@ def _prefix_before_unit(number: str, word: str, unit_word: str) -> Fault:
 
 
 _USUAL_SLIPS = {
-    "ohms": "ohm", "meg": "M", "megohm": "Mohm", "hz": "Hz", "khz": "kHz", "mhz": "MHz",
-    "ghz": "GHz", "sec": "s", "volt": "V", "amp": "A", "farad": "F", "henry": "H", "db": "dB",
-    "degree": "deg", "degrees": "deg", "percent": "%", "uhz": "uHz", "kelvin": "K",
+    "ohms": "ohm", "meg": "M", "megohm": "Mohm", "megohms": "Mohm", "kiloohm": "kohm",
+    "hz": "Hz", "khz": "kHz", "mhz": "MHz", "ghz": "GHz", "hertz": "Hz", "sec": "s",
+    "seconds": "s", "volt": "V", "volts": "V", "amp": "A", "amps": "A", "ampere": "A",
+    "amperes": "A", "farad": "F", "farads": "F", "henry": "H", "henrys": "H", "henries": "H",
+    "siemens": "S", "watt": "W", "watts": "W", "db": "dB", "degree": "deg", "degrees": "deg",
+    "radian": "rad", "radians": "rad", "percent": "%", "kelvin": "K", "kelvins": "K",
 }  # fmt: skip
 
 
@@ -242,11 +245,11 @@ def _unknown_unit(number: str, word: str, *, blank: bool) -> Fault:
         )
     gap = " " if blank else ""
     right = near_unit(word)
-    advice = f"Write {number}{gap}{right}" if right else "Units are " + ", ".join(UNIT_LIST)
+    units = f"Units are {', '.join(UNIT_LIST)}; a product is written {number}*{word}."
     return Fault(
         "value.unit-unknown",
         f"{word} is not a unit",
-        f"{advice}; a product is written {number}*{word}.",
+        f"Write {number}{gap}{right}." if right else units,
     )
 
 

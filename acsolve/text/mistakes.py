@@ -190,7 +190,9 @@ def _tolerance_sign(stop: Stop) -> Told | None:
     text = stop.text(stop.at)
     return Told(
         "value.spelling", f"{text} is the sign of a tolerance and cannot stand here",
-        "Put a blank between plus and minus, or write the tolerance behind the whole value.",
+        "A value has one tolerance, behind its unit."
+        if text == "±"
+        else "Put a blank between plus and minus; a tolerance stands behind the whole value.",
         stop.at, stop.at,
     )  # fmt: skip
 

@@ -9,7 +9,7 @@ from acsolve.circuit.kind import LETTERS, Attribute, Kind
 from acsolve.circuit.netlist import Part
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
-from acsolve.text.blocks import terminal_node
+from acsolve.text.blocks import refuse_comma, terminal_node
 from acsolve.text.book import Book, is_absent
 from acsolve.text.formula import UnreadableError
 from acsolve.text.givens import Givens, PartPlace
@@ -134,6 +134,8 @@ class Parts:
             known.append("tc")
         for argument in draft.kind.arguments:
             if argument.path is None:
+                if refuse_comma(argument, self._book):
+                    continue
                 if kind.principal is None:
                     add(
                         "kind.argument",

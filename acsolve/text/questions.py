@@ -236,12 +236,12 @@ class Questions:
         for clause in clauses:
             if clause.word not in takes:
                 self._clause_problem(
-                    f"{what} takes no {clause.word}", clause.span, f"It takes {listed(takes)}."
+                    f'{what} takes no "{clause.word}"', clause.span, f"It takes {listed(takes)}."
                 )
                 return None
             if clause.word in found:
                 self._clause_problem(
-                    f"{clause.word} stands twice in one line", clause.span, "Keep one."
+                    f'"{clause.word}" stands twice in one line', clause.span, "Keep one."
                 )
                 return None
             found[clause.word] = clause
@@ -253,7 +253,7 @@ class Questions:
     def _has(self, clauses: dict[str, Clause], word: str, span: Span, what: str) -> bool:
         if word in clauses:
             return True
-        self._clause_problem(f"{what} needs {word}", span, f"Write {what} … {word} …")
+        self._clause_problem(f'{what} needs "{word}"', span, f"Write {what} … {word} …")
         return False
 
     def _pair_of(self, clauses: dict[str, Clause], word: str) -> Pair | None:

@@ -167,7 +167,7 @@ class Lookup:
         if what is not None:
             problems.add(
                 "name.not-a-value", f"{local} is {what}, not a value", path.span,
-                hint=f"Name a quantity with let {local}2 = …, or use the name of a part.",
+                hint="A value is a number, a named quantity, or the value of a part.",
             )  # fmt: skip
             return
         otherwise = f"Name it first: let {local} = …, or let {local} for a symbol."

@@ -27,6 +27,15 @@ def meant(name: str, known: Iterable[str], otherwise: str | None = None) -> str 
     return f"Did you mean {near}?" if near else otherwise
 
 
+def comma_inside(text: str, start: int) -> bool:
+    """Whether a decimal comma, and no list, stands before a place in a text."""
+    return (
+        text[start - 1 : start] == ","
+        and text[start - 2 : start - 1].isdigit()
+        and text[start : start + 1].isdigit()
+    )
+
+
 def listed(items: Iterable[str], last: str = "and") -> str:
     """Words in a row: a, b and c."""
     found = list(items)

@@ -69,13 +69,13 @@ def _decimals(denominator: int) -> int | None:
 
 def unit_factor(dimension: Dimension) -> str:
     """A product of units that is the number one in this dimension."""
-    if SIGNS.get(dimension):
+    if SIGNS.get(dimension) and SIGNS[dimension] != "s":
         return f"(1 {SIGNS[dimension]})"
     factors = []
     for sign, power in (
         ("V", dimension.volt),
         ("A", dimension.ampere),
-        ("s", dimension.second),
+        ("Hz", -dimension.second),  # `1 s` would be two readings beside the frequency s
         ("K", dimension.kelvin),
     ):
         if power.denominator == 2:

@@ -20,7 +20,9 @@ def sparse(draw, entries=None):
     columns = st.integers(0, size - 1)
     rows = draw(
         st.lists(
-            st.dictionaries(columns, entry, min_size=0, max_size=4), min_size=size - 1, max_size=size - 1
+            st.dictionaries(columns, entry, min_size=0, max_size=4),
+            min_size=size - 1,
+            max_size=size - 1,
         )
     )
     return [{k: v for k, v in row.items() if v != 0} for row in rows], size
@@ -62,7 +64,9 @@ def test_the_order_of_rows_changes_nothing(matrix, data):
     """Any order of the expansion gives the same minors; the parity of the order is its sign."""
     rows, size = matrix
     order = tuple(data.draw(st.permutations(range(size - 1))))
-    inversions = sum(order[i] > order[j] for i in range(len(order)) for j in range(i + 1, len(order)))
+    inversions = sum(
+        order[i] > order[j] for i in range(len(order)) for j in range(i + 1, len(order))
+    )
     plan = MinorPlan(order, size, (-1) ** inversions)
     found = minors(rows, range(size), plan, columns=size)
     for column in range(size):
@@ -101,7 +105,9 @@ def test_the_plan_is_a_permutation_with_its_parity(matrix):
     plan = plan_minors([sorted(row) for row in rows])
     assert sorted(plan.order) == list(range(len(rows)))
     order = plan.order
-    inversions = sum(order[i] > order[j] for i in range(len(order)) for j in range(i + 1, len(order)))
+    inversions = sum(
+        order[i] > order[j] for i in range(len(order)) for j in range(i + 1, len(order))
+    )
     assert plan.parity == (-1) ** inversions
     assert str(len(rows)) in str(plan)
 

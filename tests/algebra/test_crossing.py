@@ -13,7 +13,9 @@ from acsolve.algebra.crossing import enclosed_crossings, exact_crossings
 positives = st.builds(Fraction, st.integers(1, 40), st.integers(1, 9))
 
 
-def product(roots: dict[Fraction, int], *, leading: int = 1, beside: list[int] | None = None) -> list[Fraction]:
+def product(
+    roots: dict[Fraction, int], *, leading: int = 1, beside: list[int] | None = None
+) -> list[Fraction]:
     """leading · product of (x - root)^count · a polynomial without positive roots."""
     total = flint.fmpq_poly(beside or [1]) * leading
     for root, count in roots.items():
@@ -49,7 +51,11 @@ def test_multiplicities_and_directions(roots, leading, beside):
 
 
 @settings(max_examples=60)
-@given(st.sets(positives, max_size=5), st.sampled_from([1, -3]), st.sampled_from([[1], [0, 1], [1, 1, 1]]))
+@given(
+    st.sets(positives, max_size=5),
+    st.sampled_from([1, -3]),
+    st.sampled_from([[1], [0, 1], [1, 1, 1]]),
+)
 def test_enclosed_coefficients_give_the_same_crossings(places, leading, beside):
     """Simple roots are found from balls as from fractions, and proven for the enclosure."""
     roots = dict.fromkeys(places, 1)
@@ -57,7 +63,9 @@ def test_enclosed_coefficients_give_the_same_crossings(places, leading, beside):
 
     def balls():
         pi = flint.arb.pi()
-        return [pi * flint.fmpq(*item.as_integer_ratio()) if item else flint.arb(0) for item in exact]
+        return [
+            pi * flint.fmpq(*item.as_integer_ratio()) if item else flint.arb(0) for item in exact
+        ]
 
     found = enclosed_crossings(balls)
     assert found.complete

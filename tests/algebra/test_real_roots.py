@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from fractions import Fraction
 
 import flint
@@ -49,7 +50,11 @@ def contains_one(coefficients: list[int], root: Isolated) -> bool:
 
 def evaluate(coefficients):
     """The polynomial as `refined` wants it."""
-    return lambda x: flint.arb_poly([flint.arb(item) for item in coefficients])(x)
+
+    def at(x):
+        return flint.arb_poly([flint.arb(item) for item in coefficients])(x)  # at x's precision
+
+    return at
 
 
 @settings(max_examples=150)
@@ -64,7 +69,7 @@ def test_every_positive_root_is_isolated(coefficients):
         if root.low < root.high:
             step = (root.high - root.low) / 2**400
             assert root.sign == sign_at(coefficients, root.low + step)
-    for first, second in zip(found, found[1:], strict=False):
+    for first, second in itertools.pairwise(found):
         assert first.high <= second.low
 
 
@@ -90,7 +95,7 @@ def test_balls_find_what_integers_find(coefficients):
         third = flint.arb(1) / 3
         balls = [third * item for item in coefficients]
         found = positive_roots(balls)
-        narrow = [refined(root, lambda x: flint.arb_poly(balls)(x)) for root in found]
+        narrow = [refined(root, flint.arb_poly(balls)) for root in found]
     assert len(found) == len(exact)
     for root, other in zip(exact, narrow, strict=True):
         value = refined(root, evaluate(coefficients))

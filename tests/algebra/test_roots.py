@@ -18,7 +18,9 @@ def expanded(*factors: list[Fraction | int]) -> list[Fraction]:
     """The product of polynomials given by rising power."""
     total = flint.fmpq_poly([1])
     for factor in factors:
-        total *= flint.fmpq_poly([flint.fmpq(*Fraction(item).as_integer_ratio()) for item in factor])
+        total *= flint.fmpq_poly(
+            [flint.fmpq(*Fraction(item).as_integer_ratio()) for item in factor]
+        )
     return [Fraction(int(item.p), int(item.q)) for item in total.coeffs()]
 
 
@@ -48,7 +50,9 @@ def test_roots_agree_with_a_second_method(coefficients):
     assert len(found) == len(coefficients) - 1
     with mpmath.workdps(60):
         simple = square_free_part(coefficients)
-        other = mpmath.polyroots(simple[::-1], maxsteps=500, extraprec=400) if len(simple) > 1 else []
+        other = (
+            mpmath.polyroots(simple[::-1], maxsteps=500, extraprec=400) if len(simple) > 1 else []
+        )
         for root in found:
             nearest = min(other, key=lambda item: abs(item - mpmath.mpc(root)))
             assert abs(nearest - mpmath.mpc(root)) <= 3e-16 * abs(nearest)
@@ -107,7 +111,10 @@ def test_clustered_roots_are_told_apart(digits):
 
 def test_roots_at_zero_are_counted():
     """Powers of s in front are roots at zero."""
-    assert complex_roots([Fraction(0), Fraction(0), Fraction(3), Fraction(1)]) == [(0j, 2), (-3 + 0j, 1)]
+    assert complex_roots([Fraction(0), Fraction(0), Fraction(3), Fraction(1)]) == [
+        (0j, 2),
+        (-3 + 0j, 1),
+    ]
     assert complex_roots([Fraction(7)]) == []
 
 

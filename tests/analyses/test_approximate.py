@@ -321,15 +321,17 @@ def test_nothing_can_be_dropped_where_all_terms_count():
 
 
 def test_a_whole_coefficient_whose_terms_cancel_goes_as_one():
-    """A balanced difference R1*R4 - R2*R3 goes as a whole, though its terms are large."""
-    text = "in -- R1 -- a -- R2 -- gnd\nin -- R3 -- b -- R4 -- gnd\na -- C1 -- b\nin -- R5 -- b\n"
-    form, netlist = form_of(
-        text + "R1, R2, R4 = 1 kohm\nR3 = 1 kohm\nR5 = 1 Gohm\nC1 = 1 nF\n", target="a,b"
-    )
-    found = simplify(form, netlist, band=BAND, tolerances=False)
-    assert any(item.coefficient < 0 for item in terms(form))
-    assert found.largest_error <= 0.01
-    assert dense_errors(found, netlist, loose=False) <= 0.01
+    """In a nearly balanced bridge R2*R3 - R1*R4 goes as a whole, though its terms are large."""
+    text = "in -- R1 -- a -- R2 -- gnd\nin -- R3 -- b -- R4 -- gnd\na -- C1 -- gnd\n"
+    values = "R1, R2, R4 = 1 kohm\nR3 = 1000.001 ohm\nC1 = 1 nF\n"
+    form, netlist = form_of(text + values, target="a,b")
+    found = simplify(form, netlist, band=HertzBand(Fraction(1000), Fraction(10**6)))
+    assert {str(item) for item in found.dropped} == {
+        "R2*R3 (numerator, constant term)",
+        "-R1*R4 (numerator, constant term)",
+    }
+    seen = dense_errors(found, netlist, loose=False)
+    assert 1e-4 < seen <= found.bound <= 2e-4
 
 
 def test_terms_that_nearly_cancel_are_not_small():
@@ -416,7 +418,7 @@ def _solved(text: str) -> tuple[ClosedForm, Netlist]:
         raise
 
 
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=40, deadline=None)
 @given(networks(), st.booleans(), st.sampled_from([0.001, 0.01, 0.1]))
 def test_simplify_keeps_its_promise_on_random_networks(text, loose, within):
     """No frequency, corner or value tried in plain NumPy exceeds what was allowed or proven."""
@@ -431,7 +433,7 @@ def test_simplify_keeps_its_promise_on_random_networks(text, loose, within):
         assert max(found.largest_error, seen / slack - 1e-9) <= found.bound
 
 
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=25, deadline=None)
 @given(networks(), st.data())
 def test_the_bound_of_an_assumption_holds_on_random_networks(text, data):
     """Whatever is assumed, no error tried in plain NumPy exceeds the bound."""

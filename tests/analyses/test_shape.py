@@ -15,9 +15,9 @@ from acsolve.analyses.question import impedance_ask
 from acsolve.analyses.shape import limit_text, limits, standard_form
 from acsolve.analyses.transfer import closed_form, transfer_answer
 from acsolve.circuit.netlist import Netlist
+from tests.reference.curve import Curve
+from tests.strategies import C, L, R, any_lumped, network, part, positives
 
-from ..reference.curve import Curve
-from ..strategies import C, L, R, any_lumped, network, part, positives
 from .test_transfer_laws import drawn_pairs, form_of, gnd
 
 
@@ -28,7 +28,7 @@ def response(netlist: Netlist) -> ClosedForm:
     return form
 
 
-@settings(max_examples=60)
+@settings(max_examples=40)
 @given(st.data())
 def test_limits_are_where_the_response_tends(data):
     """The texts at zero and infinite frequency are the limits of the magnitude, `oo` included."""
@@ -44,7 +44,9 @@ def test_limits_are_where_the_response_tends(data):
         if text == "oo":
             assert expected == curve.mp.inf
         else:
-            assert abs(curve.mp.mpf(parse_expr(text).evalf(40)) ** 2 - expected) <= 1e-30 * (1 + expected)
+            assert abs(curve.mp.mpf(parse_expr(text).evalf(40)) ** 2 - expected) <= 1e-30 * (
+                1 + expected
+            )
 
 
 PARTS = {
@@ -74,14 +76,23 @@ def test_standard_forms_rebuild_the_denominator(name, values):
     found = standard_form(form)
     assert found is not None
     assert found.shape == name.removesuffix(" 2")
-    table = {form.spelled(safe=True).name(item): value for item, value in zip(form.symbols, values, strict=False)}
+    table = {
+        form.spelled(safe=True).name(item): value
+        for item, value in zip(form.symbols, values, strict=False)
+    }
 
     def number(text: str):
-        return parse_expr(text, local_dict={item: Symbol(item) for item in table}).subs(table).evalf(30)
+        return (
+            parse_expr(text, local_dict={item: Symbol(item) for item in table})
+            .subs(table)
+            .evalf(30)
+        )
 
     s = Symbol("s")
     top, bottom = form.as_sympy().as_numer_denom()
-    ratio = (top / bottom).subs({Symbol(item, positive=True): value for item, value in table.items()})
+    ratio = (top / bottom).subs(
+        {Symbol(item, positive=True): value for item, value in table.items()}
+    )
     if found.order == 1:
         monic = 1 + s * number(found.parts["tau"])
         assert abs(number(found.parts["tau"]) * number(found.parts["w0"]) - 1) < 1e-25
@@ -93,7 +104,7 @@ def test_standard_forms_rebuild_the_denominator(name, values):
     k = number(found.parts["k"])
     w0 = number(found.parts["w0"])
     expected = {
-        "low-pass": lambda s: k,
+        "low-pass": lambda _: k,
         "high-pass": lambda s: k * (s / w0) ** found.order,
         "band-pass": lambda s: k * s / (q * w0),
         "notch": lambda s: k * (1 + s**2 / w0**2),

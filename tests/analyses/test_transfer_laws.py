@@ -13,15 +13,14 @@ from hypothesis import strategies as st
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.question import Ask, impedance_ask, transfer_ask
 from acsolve.analyses.transfer import closed_form
-from acsolve.circuit.expression import Name, Number, Product, Quotient, Sum, number
+from acsolve.circuit.expression import PI, Name, Number, Product, Quotient, S, Sum, call, number
 from acsolve.circuit.netlist import Netlist, Pair, bindings
 from acsolve.circuit.value import Value
 from acsolve.equations.exact import Symbols
 from acsolve.errors import AcsolveError, AnalysisError, EquationError
-
-from ..reference.dense import Answer, answer, evaluated
-from ..reference.field import Digits, Field, Residues
-from ..strategies import (
+from tests.reference.dense import Answer, answer, evaluated
+from tests.reference.field import Digits, Field, Residues
+from tests.strategies import (
     PASSIVE,
     QUANTITIES,
     SENSING,
@@ -59,7 +58,8 @@ def solved(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> Closed
     try:
         return closed_form(netlist, ask, symbols)
     except (EquationError, AnalysisError) as problem:
-        assert problem.code != "equations.check-failed", problem
+        if problem.code == "equations.check-failed":
+            raise
         return None
 
 
@@ -106,7 +106,7 @@ def gnd(node: str) -> Pair:
 # ------------------------------------------------------------ the dense reference
 
 
-@settings(max_examples=250)
+@settings(max_examples=200)
 @given(st.data(), st.booleans(), st.sampled_from(QUANTITIES))
 def test_closed_forms_equal_the_dense_solution_modulo_a_prime(data, symbols, quantity):
     """A closed form is the same rational function as the dense nodal solution, any lumped part."""
@@ -173,9 +173,7 @@ def test_an_ammeter_shows_the_branch_current(data, quantity):
     ask = transfer_ask(netlist, source, ("mid", ends[0]), quantity=quantity, ammeter="A")
     field = Residues(5)
     s = field.symbol("s")
-    expected = answer(
-        netlist, field, s, source=source, target=ends, quantity=quantity, ammeter="A"
-    )
+    expected = answer(netlist, field, s, source=source, target=ends, quantity=quantity, ammeter="A")
     agrees(solved(netlist, ask), expected, field, s)
 
 
@@ -284,6 +282,59 @@ def test_turning_a_pair_turns_the_sign(data, quantity):
         if first is not None and second is not None:
             assert first.numerator == -second.numerator
             assert first.denominator == second.denominator
+
+
+def rooted(data, netlist: Netlist) -> Netlist:
+    """The network with square roots of primes, or pi, in some of its values."""
+    factors = st.sampled_from([number(1), call("sqrt", number(2)), call("sqrt", number(3)), PI])
+    return replace(
+        netlist,
+        parts=tuple(
+            replace(
+                item,
+                values={
+                    key: replace(value, expression=Product(data.draw(factors), value.expression))
+                    for key, value in item.values.items()
+                },
+            )
+            for item in netlist.parts
+        ),
+    )
+
+
+@settings(max_examples=30)
+@given(st.data())
+def test_a_branch_across_the_drive_changes_no_voltage_ratio(data):
+    """What hangs across an ideal voltage acts on nothing: its modes cancel, roots of primes or not."""
+    netlist = rooted(data, data.draw(connected(symbols=False, most_nodes=4, most_extra=2)))
+    assume(not netlist.couplings)
+    source, target = drawn_pairs(data, netlist)
+    more = rooted(
+        data,
+        network(
+            R("R90", source[0], "x", 2),
+            L("L91", "x", "y", 3),
+            C("C92", "y", source[1], data.draw(st.integers(1, 6))),
+        ),
+    )
+    both = replace(netlist, parts=(*netlist.parts, *more.parts))
+    same(form_of(netlist, source, target), form_of(both, source, target))
+
+
+@settings(max_examples=30)
+@given(st.data())
+def test_a_branch_in_series_with_a_current_changes_nothing(data):
+    """What an ideal current flows through on its way acts on nothing: no answer but its own."""
+    netlist = rooted(data, data.draw(connected(symbols=False, most_nodes=4, most_extra=2)))
+    assume(not netlist.couplings)
+    source, target = drawn_pairs(data, netlist)
+    more = rooted(
+        data,
+        network(R("R90", "x", source[0], 2), L("L91", "x", source[0], 3), C("C92", "x", "y", 1)),
+    )
+    both = replace(netlist, parts=(*netlist.parts, *more.parts))
+    first = form_of(netlist, source, target, "transimpedance")
+    same(first, form_of(both, ("y", source[1]), target, "transimpedance"))
 
 
 # ------------------------------------------------------------ scaling
@@ -553,9 +604,7 @@ def test_a_part_may_have_any_name(name):
     netlist = network(
         R("R1", "in", "out", 1), part(name, "ammeter", "out", "b"), R("R2", "b", "gnd", 1)
     )
-    ask = transfer_ask(
-        netlist, gnd("in"), gnd("b"), quantity="transadmittance", ammeter=name
-    )
+    ask = transfer_ask(netlist, gnd("in"), gnd("b"), quantity="transadmittance", ammeter=name)
     assert closed_form(netlist, ask).text() == "1/2"
     ratio = transfer_ask(netlist, gnd("in"), gnd("b"), quantity="current-ratio", ammeter=name)
     assert closed_form(netlist, ratio).text() == "1"
@@ -577,9 +626,9 @@ def test_a_division_by_zero_among_values_is_reported(value):
         R("R3", "out", "gnd", 2),
         R("R4", "out", "gnd", 2),
     )
+    ask = transfer_ask(netlist, gnd("in"), gnd("out"))
     with pytest.raises(EquationError) as refused:
-        form = transfer_ask(netlist, gnd("in"), gnd("out"))
-        closed_form(netlist, form)
+        closed_form(netlist, ask)
     assert refused.value.code == "equations.evaluation"
     assert "R2" in refused.value.message or "R3, R4" in refused.value.message
 
@@ -588,18 +637,11 @@ def test_an_impedance_in_s_varies_with_s_whatever_stays_a_symbol():
     """A part given as an expression in s is never replaced by a symbol that does not vary."""
     netlist = network(
         R("R1", "in", "out", 2),
-        part("Z1", "impedance", "out", "gnd", value=Quotient(number(3), s_())),
+        part("Z1", "impedance", "out", "gnd", value=Quotient(number(3), S)),
     )
     ask = transfer_ask(netlist, gnd("in"), gnd("out"))
     assert closed_form(netlist, ask).text() == "3/(3 + 2*s)"
     assert closed_form(netlist, ask, Symbols(symbolic=True)).text() == "3/(3 + R1*s)"
-
-
-def s_():
-    """The complex frequency."""
-    from acsolve.circuit.expression import S
-
-    return S
 
 
 def test_a_part_without_effect_leaves_the_form_rational():

@@ -15,8 +15,7 @@ from acsolve.circuit.netlist import bindings
 from acsolve.circuit.value import Value
 from acsolve.equations.exact import Expander, Symbols, apply, exact_system, with_symbols
 from acsolve.errors import EquationError
-
-from ..strategies import C, R, any_lumped, connected, network, pairs, part, quantity
+from tests.strategies import C, R, any_lumped, connected, network, pairs, part, quantity
 
 
 def test_names_expand_down_to_symbols_and_numbers():
@@ -83,7 +82,9 @@ def test_linear_functions_apply_linearly(data):
     ring = exact.basis.ring
     reference = system.groups.reference(first)
     parts = [
-        apply(system.voltage((node, reference)), directions, ring) if node != reference else ring.constant(0)
+        apply(system.voltage((node, reference)), directions, ring)
+        if node != reference
+        else ring.constant(0)
         for node in (first, second)
     ]
     assert apply(ask.observed(system), directions, ring) == parts[0] - parts[1]

@@ -8,7 +8,18 @@ from math import isclose, prod, sqrt
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from acsolve.circuit.expression import Call, Name, Number, Power, Product, Quotient, Sum, call, multiply, number
+from acsolve.circuit.expression import (
+    Call,
+    Name,
+    Number,
+    Power,
+    Product,
+    Quotient,
+    Sum,
+    call,
+    multiply,
+    number,
+)
 from acsolve.equations.leaf import collect, monomial, square_free
 
 positives = st.builds(Fraction, st.integers(1, 3000), st.integers(1, 400))

@@ -11,7 +11,9 @@ from acsolve.equations.naming import is_safe, safe_names
 
 names = st.one_of(
     st.from_regex(r"[A-Za-z][A-Za-z0-9_]{0,4}(\[[0-9]\])?(\.[A-Z])?", fullmatch=True),
-    st.sampled_from(["I", "E", "S", "N", "lambda", "pi", "beta", "gamma", "R1", "k(L1, L2)", "Q", "oo"]),
+    st.sampled_from(
+        ["I", "E", "S", "N", "lambda", "pi", "beta", "gamma", "R1", "k(L1, L2)", "Q", "oo"]
+    ),
 )
 
 

@@ -10,8 +10,7 @@ from acsolve.circuit.expression import ZERO
 from acsolve.circuit.kind import KINDS
 from acsolve.equations.stamp import STAMPS
 from acsolve.equations.system import DRIVE, SHORT, assemble
-
-from ..strategies import R, any_lumped, network, pairs, scattered
+from tests.strategies import R, any_lumped, network, pairs, scattered
 
 
 def test_every_kind_has_a_stamp():
@@ -30,7 +29,9 @@ def test_one_law_fewer_than_unknowns(data, connected, shorted):
     system = assemble(netlist, drive=source, short=target if shorted else None)
     assert len(system.laws) == len(system.unknowns) - 1
     assert len({str(item) for item in system.unknowns}) == len(system.unknowns)
-    assert [system.positions[str(item)] for item in system.unknowns] == list(range(len(system.unknowns)))
+    assert [system.positions[str(item)] for item in system.unknowns] == list(
+        range(len(system.unknowns))
+    )
     for law in system.laws:
         assert ZERO not in law.entries.values()
         assert all(0 <= column < len(system.unknowns) for column in law.entries)

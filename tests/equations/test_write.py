@@ -25,9 +25,8 @@ from acsolve.circuit.expression import (
 )
 from acsolve.equations.naming import safe_names
 from acsolve.equations.write import Spelling, expression_text, power_text
-
-from ..analyses.test_transfer_laws import form_of, gnd
-from ..strategies import C, L, R, any_lumped, coupling, network, pairs, part, quantity
+from tests.analyses.test_transfer_laws import form_of, gnd
+from tests.strategies import C, L, R, any_lumped, coupling, network, pairs, part, quantity
 
 NAMES = ("R1", "lambda", "N1[7].R", "I")
 numbers = st.builds(Fraction, st.integers(-6, 6), st.integers(1, 4)).map(Number)
@@ -109,7 +108,9 @@ def test_closed_forms_are_read_back_by_sympy(data):
     if form is None:
         return
     spelled = form.spelled(safe=True)
-    table = {spelled.name(name): sympy.Symbol(spelled.name(name), positive=True) for name in form.symbols}
+    table = {
+        spelled.name(name): sympy.Symbol(spelled.name(name), positive=True) for name in form.symbols
+    }
     read = parse_expr(form.text(safe=True), local_dict={**table, "s": sympy.Symbol("s")})
     draw = random.Random(1)  # noqa: S311
     points = {item: sympy.Rational(draw.randrange(1, 60), 7) for item in read.free_symbols}

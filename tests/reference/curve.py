@@ -71,7 +71,9 @@ class Curve:
     def peak(self) -> tuple[Any, Any]:
         """The largest |H|² and the angular frequency of it, by grid and golden section."""
         best = int(np.argmax(self.on_grid))
-        low, high = (self.mp.mpf(float(GRID[at])) for at in (max(0, best - 1), min(POINTS, best + 1)))
+        low, high = (
+            self.mp.mpf(float(GRID[at])) for at in (max(0, best - 1), min(POINTS, best + 1))
+        )
         golden = (self.mp.sqrt(5) - 1) / 2
         for _ in range(120):
             left, right = high - golden * (high - low), low + golden * (high - low)

@@ -67,6 +67,7 @@ class Values:
             self.known[f"k({item.first}, {item.second})"] = item.coefficient.expression
 
     def __call__(self, expression: Expression) -> Any:
+        """The number that an expression stands for."""
         match expression:
             case Number(value):
                 return self.field.number(value)
@@ -342,7 +343,9 @@ def _opamp(net: Dense, part: Part) -> None:
         return
     inverse = net.one / get(part, "open_loop_gain") if gain else net.zero
     if width:
-        inverse += net.s / (net.field.number(Fraction(2)) * net.field.pi() * get(part, "gain_bandwidth"))
+        inverse += net.s / (
+            net.field.number(Fraction(2)) * net.field.pi() * get(part, "gain_bandwidth")
+        )
     net.law(
         net.voltage(out, ref, inverse),
         net.voltage(plus, minus, -net.one),
@@ -415,9 +418,9 @@ def answer(
 
 def evaluated(form: Any, field: Field, s: Any, values: Mapping[str, Any] | None = None) -> Any:
     """A closed form's ratio in a field, summed term by term."""
-    points = []
-    for item in form.basis.generators:
-        points.append(_generator(item.leaf, item.root, field, s, values or {}))
+    points = [
+        _generator(item.leaf, item.root, field, s, values or {}) for item in form.basis.generators
+    ]
     sides = []
     for side in (form.numerator, form.denominator):
         total = field.number(Fraction(0))

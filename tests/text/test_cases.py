@@ -17,6 +17,7 @@ CIRCUITS = sorted((Path(__file__).parents[2] / "circuits").glob("*.circuit"))
 
 
 def ids(path: Path) -> str:
+    """A case is named by its file."""
     return path.stem
 
 
