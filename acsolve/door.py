@@ -29,6 +29,7 @@ if TYPE_CHECKING:
     import numpy as np
     from numpy.typing import ArrayLike, NDArray
 
+    from acsolve.analyses.approximate import Approximation
     from acsolve.analyses.check import CheckAnswer
     from acsolve.analyses.closed_form import ClosedForm
     from acsolve.analyses.cutoff import CutoffAnswer
@@ -165,15 +166,21 @@ class Circuit:
         AnalysisError
             [sweep.band], [sweep.points]; codes of the text format for the text.
         """
-        from acsolve.analyses.grid import HertzBand, explicit
-        from acsolve.text import parse_band, parse_frequencies
+        from acsolve.analyses.grid import explicit
+        from acsolve.text import parse_frequencies
 
         if ".." not in text:
             found = parse_frequencies(text, netlist=self.netlist)
             return explicit([self._number(value) for value in found])
+        return _grid(self.edges(text), points, linear=linear)
+
+    def edges(self, text: str) -> HertzBand:
+        """The edges of a band given as text ("10 Hz .. 1 MHz"), exact."""
+        from acsolve.analyses.grid import HertzBand
+        from acsolve.text import parse_band
+
         band = parse_band(text, netlist=self.netlist)
-        edges = HertzBand(self._number(band.low), self._number(band.high))
-        return _grid(edges, points, linear=linear)
+        return HertzBand(self._number(band.low), self._number(band.high))
 
     def _number(self, value: Value) -> Fraction:
         """A value of this circuit as a number: exact where it is stated as one."""
@@ -334,6 +341,53 @@ class Path:
             as_nested=nested,
         )
         return transfer_answer(form)
+
+    def assume(self, assumptions: str | Iterable[str], *, band: str | None = None) -> Approximation:
+        """The closed form to leading order in assumed small ratios, with its error.
+
+        Parameters
+        ----------
+        assumptions : "R2 >> R1", or several, with commas or as several texts.
+        band : where the error is measured ("10 Hz .. 1 MHz"); by default from a decade
+            below the lowest to a decade above the highest natural frequency.
+
+        Raises
+        ------
+        AnalysisError
+            [option.value] an assumption that does not read, or names what is no symbol.
+        """
+        from acsolve.analyses.approximate import assume
+
+        edges = None if band is None else self.circuit.edges(band)
+        form = self.closed_form(symbolic=True)
+        return assume(form, assumptions, netlist=self.circuit.netlist, band=edges)
+
+    def simplify(
+        self, band: str, *, within: float = 0.01, tolerances: bool = True
+    ) -> Approximation:
+        """The closed form without the terms that hardly change the response over a band.
+
+        Parameters
+        ----------
+        band : "10 Hz .. 1 MHz".
+        within : the largest relative change of the response, 0.01 for 1 %.
+        tolerances : whether that holds over the tolerances of the parts too.
+
+        Raises
+        ------
+        EquationError
+            [question.no-value] a part has no value.
+        """
+        from acsolve.analyses.approximate import simplify
+
+        form = self.closed_form(symbolic=True)
+        return simplify(
+            form,
+            self.circuit.netlist,
+            band=self.circuit.edges(band),
+            within=within,
+            tolerances=tolerances,
+        )
 
     def cutoffs(
         self,

@@ -100,7 +100,8 @@ class StandardForm:
     at w0 for a band-pass. Of the shape "other" the numerator has parts of its own:
     `tau_z` of 1 + tau_z·s; `w_z` and `q_z` of 1 + s/(q_z·w_z) + s²/w_z², where `w_z` is
     left out if it is w0; and `k1` stands for `k` in k1·s·(1 + tau_z·s), as in k1·s of a
-    band-pass without loss, whose `q` is "oo". Where parts decide whether what stands under a root is positive, the form holds while it is.
+    band-pass without loss, whose `q` is "oo". Where the values decide whether what stands
+    under a root is positive, the form holds while it is.
     """
 
     shape: ShapeName

@@ -24,6 +24,7 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
     from acsolve.report.entry import Entry
 
     refuse_unfit(options, kind)
+    _ = options.readings, options.share  # refused before any work where they do not read
     circuit = open_circuit(options)
     shared = heading(circuit, options)
 
@@ -37,11 +38,31 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
         twin = None if options.as_json else symbolic_twin(item, found)
         here = with_remarks(shared, item.path, options) if _is_nothing(found) else shared
         ask = item.path.ask
-        return [Entry(kind=kind, heading=here, ask=ask, transfer=found, formula=twin)]
+        return [
+            Entry(
+                kind=kind,
+                heading=here,
+                ask=ask,
+                transfer=found,
+                formula=twin,
+                readings=options.readings,
+                approximations=_approximations(item, options),
+            )
+        ]
 
     with progress("working out the closed form"):
         answered, errors = answer_all(asked(circuit, kind, options), answer)
     return deliver(answered, options, errors=errors, draw=draw)
+
+
+def _approximations(item: Asked, options: Options) -> tuple[Any, ...]:
+    """What --assume and --within ask for, in this order."""
+    found: list[Any] = []
+    if options.assume:
+        found.append(item.path.assume(options.assume, band=options.band))
+    if options.share is not None:
+        found.append(item.path.simplify(options.band or "", within=options.share))
+    return tuple(found)
 
 
 def symbolic_twin(item: Asked, found: Any) -> Any:

@@ -31,6 +31,9 @@ class Options:
     keep: str | None = None
     nested: bool = False
     budget: str | None = None
+    form: str | None = None
+    assume: tuple[str, ...] = ()
+    within: str | None = None
     band: str | None = None
     points: str | None = None
     linear: bool = False
@@ -65,9 +68,37 @@ class Options:
         return found
 
     @property
+    def readings(self) -> tuple[str, ...]:
+        """The shapes that the closed form is to be written in."""
+        chosen = split_names(self.form or "")
+        for name in chosen:
+            if name not in READINGS:
+                raise refused(f"there is no form {name}", f"The forms are {', '.join(READINGS)}.")
+        return chosen
+
+    @property
+    def share(self) -> float | None:
+        """The largest relative change that --within allows, 0.01 for 1%."""
+        if self.within is None:
+            return None
+        number, percent, rest = self.within.strip().partition("%")
+        try:
+            found = float(number) / (100 if percent else 1)
+        except ValueError:
+            found = 0.0
+        if rest or not 0 < found < 1:
+            raise refused(f"--within {self.within} is no share below one", "Write, say, 1%.")
+        if self.band is None:
+            raise refused("--within needs to know where", "Add --band, say 10Hz..1MHz.")
+        return found
+
+    @property
     def asks(self) -> bool:
         """Whether the command line itself says where to drive or observe."""
         return any((self.source, self.target, self.into, self.through))
+
+
+READINGS = ("collected", "unit", "factored", "standard", "real", "delay", "asymptotes")
 
 
 def split_names(text: str) -> tuple[str, ...]:
@@ -101,6 +132,11 @@ _TABLE = {
     "keep": _option("--keep", "R1,C1", "only these stay symbols"),
     "nested": _option("--nested", None, "as named steps, short for large networks"),
     "budget": _option("--budget", "TERMS", "most terms to multiply out, four million"),
+    "form": _option("--form", "NAMES", ", ".join(READINGS)),
+    "assume": _option(
+        "--assume", "'R2 >> R1'", "leading order only; may be repeated", multiple=True
+    ),
+    "within": _option("--within", "1%", "drop terms that change less than this over --band"),
     "band": _option("--band", "10Hz..1MHz", "lowest and highest frequency"),
     "points": _option("--points", "NUMBER", "so many in all, or 50/decade"),
     "linear": _option("--linear", None, "even steps instead of even ratios"),
@@ -115,6 +151,7 @@ PAIRS = ("from", "to", "through", "quantity")
 VALUES = ("variant", "let")
 FORMS = ("symbolic", "keep")
 SIZES = ("nested", "budget")
+READ = ("form", "assume", "within", "band")
 OUTPUT = ("save", "json")
 
 

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
+    from acsolve.analyses.approximate import Approximation
     from acsolve.analyses.check import CheckAnswer
     from acsolve.analyses.cutoff import CutoffAnswer
     from acsolve.analyses.equations import Equations
@@ -33,7 +34,8 @@ class Entry:
     """One answer. Exactly the field that its kind names is filled.
 
     `formula` is the same question with every part a symbol, where that is small: it gives
-    the numbers of a standard form their formulas.
+    the numbers of a standard form their formulas. `readings` name the shapes the form is
+    written in besides, `approximations` go with it.
     """
 
     kind: Kind
@@ -41,6 +43,8 @@ class Entry:
     ask: Ask | None = None
     transfer: TransferAnswer | None = None
     formula: TransferAnswer | None = None
+    readings: tuple[str, ...] = ()
+    approximations: tuple[Approximation, ...] = ()
     cutoff: CutoffAnswer | None = None
     sweep: Sweep | None = None
     check: CheckAnswer | None = None

@@ -117,6 +117,49 @@ def _closed_form(entry: Entry) -> dict[str, Any]:
         "zeros": _roots(found, "zeros"),
         "checked": _checked(found.form),
         "symbols": _replaced(found.form.spelled(safe=True).names),
+        **_readings(entry),
+        **_approximations(entry),
+    }
+
+
+def _readings(entry: Entry) -> dict[str, Any]:
+    """The shapes that were asked for: name -> list of [label, text]."""
+    from acsolve.analyses.closed_form import ClosedForm
+    from acsolve.analyses.reading import FORM_NAMES, reading
+
+    answer: TransferAnswer = _filled(entry.transfer)
+    form = answer.form
+    if not entry.readings or not isinstance(form, ClosedForm):
+        return {}
+    found = {name: reading(form, name, safe=True) for name in FORM_NAMES if name in entry.readings}
+    return {
+        "forms": {
+            name: [[line.label, line.text] for line in lines] for name, lines in found.items()
+        }
+    }
+
+
+def _approximations(entry: Entry) -> dict[str, Any]:
+    if not entry.approximations:
+        return {}
+    return {
+        "approximations": [
+            {
+                **_expression(item.form),
+                "dropped": [{"place": part.place, "term": part.term} for part in item.dropped],
+                "largest_error": number(item.largest_error),
+                "at_hertz": number(item.at_hertz),
+                "at_values": {name: number(value) for name, value in item.at_values.items()},
+                "bound": number(item.bound),
+                "band": [float(item.band.low), float(item.band.high)] if item.band else None,
+                "assumptions": [
+                    {"text": str(part.assumption), "ratio": number(part.ratio), "holds": part.holds}
+                    for part in item.assumptions
+                ],
+                "remarks": list(item.remarks),
+            }
+            for item in entry.approximations
+        ]
     }
 
 
@@ -127,7 +170,14 @@ def _expression(form: ClosedForm | NestedForm) -> dict[str, Any]:
     found: dict[str, Any] = {"expression": form.text(safe=True)}
     if not isinstance(form, ClosedForm):
         steps = [[name, text] for name, text in form.step_texts(safe=True)]
-        return {**found, "numerator": None, "denominator": None, "form": "nested", "steps": steps}
+        return {
+            **found,
+            "numerator": None,
+            "denominator": None,
+            "form": "nested",
+            "steps": steps,
+            "meanings": [step.meaning for step in form.steps],
+        }
     top, bottom = form.coefficients() if form.rational else (None, None)
     return {
         **found,

@@ -26,6 +26,11 @@ if TYPE_CHECKING:
     from acsolve.analyses.transfer import TransferAnswer
 
 _ROOTS_SHOWN = 12
+_NESTED_NOTES = (
+    "Z and Y are impedances and admittances looking away from the drive, V and I voltages and "
+    "currents for a drive of one, T intermediate values",
+    "limits, poles and zeros need the expanded form",
+)
 _LONGEST_EXACT = 14  # characters of an exact fraction that is shown beside the decimal one
 _LONGEST_FORMULA = 160
 
@@ -45,7 +50,7 @@ def transfer_lines(entry: Entry) -> list[str]:
     lines = formula_lines(form, f"{letter(entry.ask)}(s)")
     rows: list[tuple[str, str]] = []
     if isinstance(form, NestedForm):
-        rows.append(("note", "named steps: limits, poles and zeros need the expanded form"))
+        rows += [("note", text) for text in _NESTED_NOTES]
     elif form.rational:
         rows += [
             ("at 0 Hz", limit_words(found.at_zero, unit)),
@@ -57,7 +62,15 @@ def transfer_lines(entry: Entry) -> list[str]:
     rows += _standard_rows(found, entry.formula, unit)
     rows += _root_rows(found)
     rows += checked_rows(form)
-    return [*lines, "", *labelled(rows)]
+    from acsolve.report.reading_text import approximation_lines, reading_lines
+
+    return [
+        *lines,
+        *reading_lines(entry),
+        "",
+        *labelled(rows),
+        *approximation_lines(entry),
+    ]
 
 
 def limit_words(limit: Limit, unit: str) -> str:

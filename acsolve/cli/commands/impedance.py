@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from acsolve.cli.forms import answer_forms
-from acsolve.cli.options import FORMS, OUTPUT, SIZES, VALUES, Options, make_command
+from acsolve.cli.options import FORMS, OUTPUT, READ, SIZES, VALUES, Options, make_command
 
 
 def work(options: Options) -> int:
@@ -16,6 +16,6 @@ command = make_command(
     "The closed form of the impedance looking into a pair.\n"
     "Without --into it answers the file's own ask lines.",
     work,
-    ("into", *VALUES, *FORMS, *SIZES, *OUTPUT),
+    ("into", *VALUES, *FORMS, *SIZES, *READ, *OUTPUT),
     "filter.circuit --into out",
 )

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from acsolve.cli.forms import answer_forms
-from acsolve.cli.options import FORMS, OUTPUT, PAIRS, SIZES, VALUES, Options, make_command
+from acsolve.cli.options import FORMS, OUTPUT, PAIRS, READ, SIZES, VALUES, Options, make_command
 
 
 def work(options: Options) -> int:
@@ -16,6 +16,6 @@ command = make_command(
     "The closed form from one pair to another, with limits, poles and zeros.\n"
     "Without --from and --to it answers the file's own ask lines.",
     work,
-    (*PAIRS, *VALUES, *FORMS, *SIZES, *OUTPUT),
+    (*PAIRS, *VALUES, *FORMS, *SIZES, *READ, *OUTPUT),
     "filter.circuit --from in --to out --symbolic",
 )
