@@ -309,8 +309,7 @@ def _real(page: _Page) -> tuple[Line, ...]:
         [*gain.top, page.power(w, max(shift, 0)), _size(page, top)],
         [*gain.bottom, page.power(w, max(-shift, 0)), _size(page, bottom)],
     )
-    lines = (Line(f"gain({w})", size.text), Line(f"phase({w})", str(_phase(page))))
-    return lines
+    return (Line(f"gain({w})", size.text), Line(f"phase({w})", str(_phase(page))))
 
 
 def _sign(polynomial: Polynomial) -> int:

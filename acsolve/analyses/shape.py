@@ -127,8 +127,7 @@ def standard_form(form: ClosedForm, *, safe: bool = True) -> StandardForm | None
         parts = {"k1": write.ratio(top[1], bottom[0])}
     else:
         place = {"high-pass": order, "band-pass": 1}.get(shape, 0)
-        lossless = bottom[place] == 0  # a band-pass without losses: infinite at resonance
-        parts = {"k": Phrase("oo") if lossless else write.ratio(top[place], bottom[place])}
+        parts = {"k": write.ratio(top[place], bottom[place])}
     if order == 1:
         parts |= {
             "tau": write.ratio(bottom[1], bottom[0]),

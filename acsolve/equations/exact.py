@@ -5,6 +5,8 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from functools import reduce
+from operator import add
 from random import Random
 
 from acsolve.algebra.cofactor import MinorPlan, minors, plan_minors
@@ -230,11 +232,12 @@ def exact_system(system: System, expand: Expander) -> ExactSystem:
 
 def apply(functional: Functional, directions: Mapping[int, Polynomial], ring: Ring) -> Polynomial:
     """The value of a linear function of the unknowns on the null direction."""
-    total = ring.constant(0)
-    for column, factor in functional.items():
-        if column in directions:
-            total += factor * directions[column]
-    return total
+    parts = [
+        directions[column] if factor == 1 else factor * directions[column]
+        for column, factor in functional.items()
+        if column in directions
+    ]
+    return reduce(add, parts) if parts else ring.constant(0)  # adding to 0 copies slowly
 
 
 def _basis(entries: list[Expression]) -> Basis:

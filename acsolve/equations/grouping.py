@@ -11,6 +11,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from itertools import combinations
 from operator import ge, sub
+from typing import Any
 
 from acsolve.algebra.ring import Polynomial, cancel, positive
 from acsolve.circuit.expression import Name
@@ -22,6 +23,7 @@ LARGEST_GROUPED = 200  # terms; above it factoring out by hand is no longer read
 _BRANCHES = ((6, 8), (12, 3))  # (terms up to, factors tried): the search for the shortest text
 
 Factors = list[tuple[Polynomial, int]]
+Terms = dict[tuple[int, ...], Any]  # exponents -> whole number of python-flint
 
 
 @dataclass(frozen=True, slots=True)
@@ -102,7 +104,8 @@ class Writer:
         return known
 
     def _taken_out(self, polynomial: Polynomial, place: int) -> Phrase:
-        inside, rest = {}, {}
+        inside: Terms = {}
+        rest: Terms = {}
         for exponents, coefficient in polynomial.terms():
             (inside if exponents[place] else rest)[exponents] = coefficient
         make = polynomial.context().from_dict
@@ -247,7 +250,7 @@ def _multiples(factor: Polynomial, divisor: Polynomial) -> tuple[Polynomial, Pol
     make = factor.context().from_dict
     left = dict(factor.terms())
     (least, size), *_ = divisor.terms()
-    whole = {}
+    whole: Terms = {}
     for exponents, coefficient in factor.terms():
         if coefficient % size or not all(map(ge, exponents, least)):
             continue

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from typing import NamedTuple
 
 from acsolve.circuit.kind import KINDS, LETTERS
 from acsolve.errors import Label
@@ -73,6 +74,17 @@ def _unknown(draft: Draft, word: str, book: Book) -> None:
 # ---------------------------------------------------------------- copies
 
 
+class _Copies(NamedTuple):
+    """What all copies of one block share."""
+
+    draft: Draft
+    block: Block
+    count: int
+    outer: dict[str, str]  # pin -> node outside
+    arguments: dict[str, Given]
+    inner: list[tuple[Path, Given]]  # values for names deeper inside
+
+
 def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
     """Write out the copies of a block that a draft asks for."""
     scope, kind = draft.scope, draft.kind
@@ -90,35 +102,43 @@ def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
     if count is None or outer is None:
         return
     arguments, inner = _arguments(kind, block, scope, draft.kind_turns)
-    pins = [pin for pin, _ in block.head.pins]
+    shared = _Copies(draft, block, count, outer, arguments, inner)
     for number in range(1, count + 1):
         book.step(kind.span)
-        stem = f"{draft.name}[{number}]" if count > 1 else draft.name
-        nodes = dict(outer)
-        if number > 1:
-            nodes[pins[0]] = f"{draft.name}[{number - 1}].{pins[1]}"
-        if number < count:
-            nodes[pins[1]] = f"{stem}.{pins[1]}"
-        for path, given in inner:
-            local = spelled(path, scope, draft.kind_turns, book)
-            if local is not None:
-                book.overrides.setdefault(f"{stem}.{local}", given)
-        child = Scope(
-            prefix=f"{stem}.",
-            parent=scope.file,
-            block=block,
-            pins=nodes,
-            arguments=arguments,
-            depth=scope.depth + 1,
-        )
-        for pin, node in nodes.items():
-            child.nodes[pin] = draft.span
-            if f"{stem}.{pin}" != node:
-                book.nodes.unite((node, f"{stem}.{pin}"))
+        child = _copy(shared, number, book)
         walker.enter(block.body, child)
         settle(child, book, walker)
         if number == 1:
             _check_arguments(draft, block, child, book)
+
+
+def _copy(shared: _Copies, number: int, book: Book) -> Scope:
+    """The scope of one copy, its pins connected to the nodes outside and to its neighbours."""
+    draft, count = shared.draft, shared.count
+    pins = [pin for pin, _ in shared.block.head.pins]
+    stem = f"{draft.name}[{number}]" if count > 1 else draft.name
+    nodes = dict(shared.outer)
+    if number > 1:
+        nodes[pins[0]] = f"{draft.name}[{number - 1}].{pins[1]}"
+    if number < count:
+        nodes[pins[1]] = f"{stem}.{pins[1]}"
+    for path, given in shared.inner:
+        local = spelled(path, draft.scope, draft.kind_turns, book)
+        if local is not None:
+            book.overrides.setdefault(f"{stem}.{local}", given)
+    child = Scope(
+        prefix=f"{stem}.",
+        parent=draft.scope.file,
+        block=shared.block,
+        pins=nodes,
+        arguments=shared.arguments,
+        depth=draft.scope.depth + 1,
+    )
+    for pin, node in nodes.items():
+        child.nodes[pin] = draft.span
+        if f"{stem}.{pin}" != node:
+            book.nodes.unite((node, f"{stem}.{pin}"))
+    return child
 
 
 def _count(draft: Draft, book: Book) -> int | None:
@@ -150,19 +170,28 @@ def _pin_nodes(draft: Draft, block: Block, book: Book) -> dict[str, str] | None:
     """The node outside at each pin of a block, or None once a problem is recorded."""
     pins = [pin for pin, _ in block.head.pins]
     kind = draft.kind
-    nodes: dict[str, str] = {}
     assert kind is not None, "a block is always stated"
-    if draft.ends is not None:
-        if len(pins) < 2:
-            book.problems.add(
-                "block.pins",
-                f"{block.head.word} has one pin and cannot stand in a chain",
-                draft.span,
-                hint=f"Write {draft.local} : {block.head.word}({pins[0]} = node) by itself.",
-            )
-            return None
-        nodes.update(zip(pins, draft.ends, strict=False))
-    for argument in kind.arguments:
+    if len(pins) < 2 and (draft.ends is not None or kind.count is not None):
+        book.problems.add(
+            "block.pins",
+            f"{block.head.word} has one pin and can neither stand in a chain nor be cascaded",
+            draft.span,
+            hint=f"Write {draft.local} : {block.head.word}({pins[0]} = node) by itself.",
+        )
+        return None
+    nodes = dict(zip(pins, draft.ends or (), strict=False))
+    if not _stated_pins(draft, pins, nodes, book):
+        return None
+    missing = [pin for pin in pins if pin not in nodes]
+    if missing:
+        _missing_pins(draft, kind, missing, pins, book)
+        return None
+    return nodes
+
+
+def _stated_pins(draft: Draft, pins: list[str], nodes: dict[str, str], book: Book) -> bool:
+    """Add the pins that arguments connect; whether all is well."""
+    for argument in draft.kind.arguments if draft.kind else ():
         if argument.path is None or argument.path.name not in pins:
             continue
         pin = argument.path.name
@@ -173,24 +202,12 @@ def _pin_nodes(draft: Draft, block: Block, book: Book) -> dict[str, str] | None:
                 argument.span,
                 hint="In a chain a block stands between its first two pins; name the others only.",
             )
-            return None
+            return False
         node = terminal_node(argument, draft.scope, draft.kind_turns, book)
         if node is None:
-            return None
+            return False
         nodes[pin] = node
-    missing = [pin for pin in pins if pin not in nodes]
-    if missing:
-        _missing_pins(draft, kind, missing, pins, book)
-        return None
-    if kind.count is not None and len(pins) < 2:
-        book.problems.add(
-            "block.pins",
-            f"{block.head.word} has one pin and cannot be cascaded",
-            kind.span,
-            hint="A cascade joins pin two of each copy to pin one of the next.",
-        )
-        return None
-    return nodes
+    return True
 
 
 def _missing_pins(

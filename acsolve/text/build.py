@@ -184,8 +184,10 @@ class _Builder:
         checks.check_mentions(self._lookup.mentioned, values, self._book)
         checks.check_circles(values, spans, self._book)
         for variant in netlist.variants.values():
-            if any(value.expression is not None for value in variant.values.values()):
-                checks.check_circles({**values, **variant.values}, spans, self._book)
+            changed = {**values, **variant.values}
+            checks.check_variant(variant, changed, self._book)
+            if variant.values:
+                checks.check_circles(changed, spans, self._book)
         symbols = any(item.value.expression is None for item in netlist.quantities.values())
         checks.warn(netlist.parts, symbols, self._book)
 

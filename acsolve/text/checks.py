@@ -7,7 +7,7 @@ from functools import partial
 
 from acsolve.circuit.expression import Number, names
 from acsolve.circuit.kind import KINDS
-from acsolve.circuit.netlist import Part
+from acsolve.circuit.netlist import Part, Variant
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
 from acsolve.source import Span
@@ -209,6 +209,29 @@ def check_mentions(mentioned: Mapping[str, Span], values: Mapping[str, Value], b
                 span,
                 hint="State it where the part is declared.",
             )
+
+
+def check_variant(variant: Variant, values: Mapping[str, Value], book: Book) -> None:
+    """No value that stays may be made of a part that the variant leaves out."""
+    for name, value in values.items():
+        if value.expression is None or isinstance(value.expression, Number):
+            continue
+        if _owner(name, variant.absent) is not None:
+            continue
+        for inner in sorted(names(value.expression)):
+            missing = _owner(inner, variant.absent)
+            if missing is not None:
+                book.problems.add(
+                    "name.absent",
+                    f"{missing} is not fitted in {variant.name}, and {name} is made of its value",
+                    value.span,
+                    hint=f"Give {name} another value in the variant.",
+                )
+
+
+def _owner(name: str, parts: frozenset[str]) -> str | None:
+    """The part among these that a name of a value belongs to."""
+    return next((item for item in (name, name.rpartition(".")[0]) if item in parts), None)
 
 
 def check_circles(values: Mapping[str, Value], spans: Mapping[str, Span], book: Book) -> None:

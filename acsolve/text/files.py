@@ -137,6 +137,8 @@ def _content(path: Path, name: str) -> bytes:
             return stream.read(limits.FILE_BYTES + 1)
     except FileNotFoundError:
         _fail("file.missing", f"there is no file {name}", _near_file(path))
+    except TextError:
+        raise
     except (OSError, ValueError) as stop:
         reason = stop.strerror if isinstance(stop, OSError) else str(stop)
         _fail("file.unreadable", f"{name} cannot be read: {reason}", "Check its permissions.")

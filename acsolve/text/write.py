@@ -30,7 +30,7 @@ def write(netlist: Netlist) -> str:
     --------
     >>> from acsolve.text import parse
     >>> print(write(parse("in -- R1 = 4k7 -- out").netlist), end="")
-    in -- R1 = 4700 ohm -- out
+    in -- R1 = 4.7 kohm -- out
 
     """
     return "".join(f"{line}\n" for line in _Writer(netlist).lines())

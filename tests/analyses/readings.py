@@ -28,7 +28,7 @@ def same(first: Any, second: Any) -> bool:
 
 
 def _zero_at(expression: Any, seed: int) -> bool:
-    random = Random(seed)
+    random = Random(seed)  # noqa: S311 - reproducible points, no secret
     free = [*sorted(expression.free_symbols, key=str), sympy.pi]
     point = {
         item: sympy.Rational(random.randrange(1, 1 << 10), random.randrange(1, 1 << 5)) ** 2
@@ -67,13 +67,13 @@ class Reader:
 class _Parallel(ast.NodeTransformer):
     """`a | b` becomes parallel(a, b), a number an exact one."""
 
-    def visit_BinOp(self, node: ast.BinOp) -> ast.AST:  # noqa: N802 - the library's name
+    def visit_BinOp(self, node: ast.BinOp) -> ast.AST:
         self.generic_visit(node)
         if not isinstance(node.op, ast.BitOr):
             return node
         return ast.Call(ast.Name("parallel", ast.Load()), [node.left, node.right], [])
 
-    def visit_Constant(self, node: ast.Constant) -> ast.AST:  # noqa: N802
+    def visit_Constant(self, node: ast.Constant) -> ast.AST:
         return ast.Call(ast.Name("whole", ast.Load()), [node], [])
 
 
@@ -141,9 +141,11 @@ def agree(quality: Any, corner: Any, rate: Any) -> None:
 
 def numbers(*expressions: Any, seed: int = 3) -> dict[Any, Any]:
     """A random rational for every symbol but s, the same on every run."""
-    random = Random(seed)
+    random = Random(seed)  # noqa: S311 - reproducible points, no secret
     free = sorted(set().union(*(item.free_symbols for item in expressions)) - {S}, key=str)
-    return {item: sympy.Rational(random.randrange(20, 90), random.randrange(20, 90)) for item in free}
+    return {
+        item: sympy.Rational(random.randrange(20, 90), random.randrange(20, 90)) for item in free
+    }
 
 
 def check_asymptotes(form: ClosedForm, whole: Any, read: Reader, *, safe: bool) -> None:

@@ -13,7 +13,7 @@ from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.reading import reading
 from acsolve.analyses.shape import standard_form
 
-from ..strategies import PASSIVE, any_lumped, connected, pairs
+from ..strategies import any_lumped, connected, pairs
 from .readings import check, lines
 from .test_transfer_laws import asked, solved
 
@@ -74,8 +74,8 @@ def test_networks_of_any_parts_read_exactly(data):
 
 
 DIVIDER = "in -- R1 -- out\nout -- R2 || C1 -- gnd\n"
-LOW_PASS = "in -- R1 -- out\nout -- C1 -- gnd\n"
-HIGH_PASS = "in -- C1 -- out\nout -- R1 -- gnd\n"
+LOW_RC = "in -- R1 -- out\nout -- C1 -- gnd\n"
+HIGH_RC = "in -- C1 -- out\nout -- R1 -- gnd\n"
 LEAD = "in -- R1 || C1 -- out\nout -- R2 -- gnd\n"
 LAG = "in -- R1 -- out\nout -- R2 + C1 -- gnd\n"
 SHELF = "in -- R1 -- out\nout -- R2 || (R3 + C1) -- gnd\n"
@@ -89,7 +89,7 @@ GROUPS = "in -- R1 + R2 -- out\nout -- R3 || C1 -- gnd\n"
 @pytest.mark.parametrize(
     ("text", "name", "expected"),
     [
-        (LOW_PASS, "unit", {"H": "1/(1 + R1*C1*s)"}),
+        (LOW_RC, "unit", {"H": "1/(1 + R1*C1*s)"}),
         (DIVIDER, "unit", {"H": "R2/((R1 + R2)*(1 + (R1 || R2)*C1*s))"}),
         (GROUPS, "unit", {"H": "R3/((R1 + R2 + R3)*(1 + ((R1 + R2) || R3)*C1*s))"}),
         (DOUBLE, "unit", {"H": "1/(1 + (R1*(C1 + C2) + R2*C2)*s + R1*R2*C1*C2*s^2)"}),
@@ -128,19 +128,19 @@ GROUPS = "in -- R1 + R2 -- out\nout -- R3 || C1 -- gnd\n"
             "w0": "1/sqrt(L1*C1)",
             "Q": "sqrt(L1/C1)/R1",
         }),
-        (LOW_PASS, "real", {
+        (LOW_RC, "real", {
             "gain(w)": "1/sqrt(1 + (R1*C1*w)^2)",
             "phase(w)": "-atan(R1*C1*w)",
         }),
-        (HIGH_PASS, "real", {
+        (HIGH_RC, "real", {
             "gain(w)": "R1*C1*w/sqrt(1 + (R1*C1*w)^2)",
             "phase(w)": "pi/2 - atan(R1*C1*w)",
         }),
-        (LOW_PASS, "delay", {
+        (LOW_RC, "delay", {
             "phase_delay(w)": "atan(R1*C1*w)/w",
             "group_delay(w)": "R1*C1/(1 + R1^2*C1^2*w^2)",
         }),
-        (HIGH_PASS, "asymptotes", {
+        (HIGH_RC, "asymptotes", {
             "H, low frequencies, +20 dB/decade": "R1*C1*s",
             "H, high frequencies, flat": "1",
         }),

@@ -59,7 +59,9 @@ class Published:
         return self.k * tops[self.shape] / (1 + middle + square)
 
 
-def follower(w0: Any, loss: Any, shape: str, section: str, gain: Any = sympy.Integer(1)) -> Published:
+def follower(
+    w0: Any, loss: Any, shape: str, section: str, gain: Any = 1
+) -> Published:
     """A section with one amplifier: `loss` is 1/(Q·w0)."""
     return Published(section, 0, gain, shape, w0, 1 / (w0 * loss))
 
@@ -102,10 +104,10 @@ PUBLISHED = [
     # A. Antoniou, Proc. IEE 116 (1969), 1838-1850: L = C4·R1·R3·R5/R2.
     Published("impedance-converter", 0, s * C4 * R1 * R3 * R5 / R2),
     # Common practice.
-    Published("all-pass-first", 0, sympy.Integer(1), "all-pass", 1 / (R3 * C1)),
+    Published("all-pass-first", 0, 1, "all-pass", 1 / (R3 * C1)),
     # Common practice: 1 less twice a band-pass, its centre gain set by R3 = 4·R1.
     Published(
-        "all-pass-second", 0, -sympy.Integer(1), "all-pass", DELAYED, sqrt(1 + R1 / R2)
+        "all-pass-second", 0, -1, "all-pass", DELAYED, sqrt(1 + R1 / R2)
     ),
     # Common practice.
     Published("instrumentation-amplifier", 0, (1 + 2 * Rf / Rg) * Rd / Rs),
@@ -124,7 +126,7 @@ PUBLISHED = [
     Published(
         "twin-t-bootstrapped",
         0,
-        sympy.Integer(1),
+        1,
         "notch",
         1 / (Rx * Cx),
         1 / (4 * (1 - Rb / (Ra + Rb))),
@@ -232,7 +234,7 @@ def test_every_section_is_compared():
         ("twin-t-bootstrapped", 0, {
             "k": "1",
             "w0": "1/(Rx*Cx)",
-            "q": "(Ra + Rb)/(4*Ra)",
+            "q": "(1 + Rb/Ra)/4",
         }),
     ],
 )  # fmt: skip

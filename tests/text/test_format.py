@@ -255,3 +255,38 @@ def test_continued_lines():
 def test_statements_end_with_their_line():
     """A line that does not go on ends its statement."""
     assert refused("a -- R1\n-- b") == ["chain.end", "chain.end"]
+
+
+def test_the_cascade_of_the_description():
+    """Two hundred sections, one of them with another capacitor."""
+    text = """
+    block section(a, b)
+        a -- R -- b
+        b -- C -- gnd
+        R = 100 ohm
+        C = 1 nF
+    end
+
+    src -- N1 : 200 * section(R = 120 ohm) -- far
+    N1[7].C = 2 nF
+    """
+    found = parts(text)
+    assert len(found) == 400
+    assert found["N1[7].C"].values["value"].expression == ex.number(Fraction(2, 10**9))
+    assert found["N1[8].C"].values["value"].expression == ex.number(Fraction(1, 10**9))
+    assert {found[f"N1[{copy}].R"].values["value"].expression for copy in range(1, 201)} == {
+        ex.number(120)
+    }
+
+
+def test_the_repetition_of_the_description():
+    """A ladder of twenty sections."""
+    text = """
+    repeat k = 1 .. 20
+        n[k-1] -- R[k] -- n[k]
+        n[k]   -- C[k] -- gnd
+    end
+    """
+    found = parts(text)
+    assert len(found) == 40
+    assert found["R[20]"].nodes == ("n[19]", "n[20]")

@@ -47,7 +47,7 @@ MORE = [
     ("limit.parts", "let n = 1000\n" + copies("n")),
     ("limit.parts", "repeat k = 1 .. 1000001\nn[k] -- R[k] -- gnd\nend"),
     ("limit.range", "n[1, 1] -- R[1, 1] -- gnd\nR[1 .. 2000, 1 .. 2000] = 5 ohm"),
-    ("limit.range", "block b(p, q)\nend\nlet n = 1000\nin -- N : n*n/1*2 * b -- out"),
+    ("limit.range", "block b(p, q)\nend\nlet n = 1000\nin -- N : (n*n*2) * b -- out"),
     ("limit.nesting", "repeat k = 1 .. 2\n" * 40),
     ("limit.digits", "in -- R1 = ((((9^60)^60)^60)^60) -- out"),
     ("limit.digits", "in -- R1 = ((((R2^400)^400)^400)^400) -- out\nout -- R2 = 5 ohm -- gnd"),
@@ -87,13 +87,11 @@ def test_problems_are_counted_beyond_the_cap():
     assert "800 more" in found[-1].message
 
 
-@pytest.mark.parametrize("sign", ["-", "- "])
-def test_many_signs_are_no_danger(sign):
-    """Ten thousand signs in a row end in an answer, not in the depth of Python's stack."""
-    try:
-        parse(f"in -- R1 -- out\nR1 = {sign * 10_000} 1")
-    except AcsolveError as error:
-        assert error.diagnostics
+def test_many_signs_are_no_danger():
+    """Ten thousand signs in a row are read, or refused, without exhausting Python's stack."""
+    assert len(parse(f"in -- R1 -- out\nR1 = {'- ' * 10_000} 1").netlist.parts) == 1
+    with pytest.raises(AcsolveError):
+        parse(f"in -- R1 -- out\nR1 = {'-' * 10_000} 1")
 
 
 def test_a_long_tapered_ladder():
