@@ -126,6 +126,7 @@ Code = Literal[
     "syntax.sign",
     "syntax.text",
     "value.missing",
+    "limit.nodes",
     "syntax.bracket",
     "syntax.statement",
     "limit.brackets",

@@ -16,7 +16,7 @@ from acsolve.algebra.crossing import (
 )
 from acsolve.algebra.ring import Polynomial, lowest_part, univariate
 from acsolve.analyses.closed_form import ClosedForm
-from acsolve.analyses.enclosed import ball_coefficients
+from acsolve.analyses.enclosed import axis_coefficients, axis_part, ball_coefficients
 
 ReferenceName = Literal["dc", "infinity", "peak", "stated"]
 #: A squared gain that is exact, as numerator and denominator over the form's ring.
@@ -102,8 +102,9 @@ class Magnitude:
         return self._roots(first * self.bottom - self.top * second)
 
     def axis_poles(self) -> Crossings:
-        """The x > 0 at which |H|² is infinite."""
-        return self._roots(self.bottom)
+        """The x > 0 at which |H|² is infinite: there D(jω) itself is zero, |D|² doubly so."""
+        part = axis_part(self.form, self.form.denominator)
+        return enclosed_crossings(partial(axis_coefficients, self.form, part))
 
     def _roots(self, polynomial: Polynomial) -> Crossings:
         """The positive roots in x, from an exact square-free factorisation."""

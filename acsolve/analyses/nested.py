@@ -4,8 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
-from fractions import Fraction
-from math import inf
 from random import Random
 from typing import Any
 
@@ -13,6 +11,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from acsolve.analyses.closed_form import Checked
+from acsolve.analyses.engine_check import engine_difference
 from acsolve.analyses.question import Ask, refuse_unreferenced
 from acsolve.circuit.expression import (
     Expression,
@@ -25,7 +24,7 @@ from acsolve.circuit.expression import (
     names,
 )
 from acsolve.circuit.graph import natural_key
-from acsolve.circuit.netlist import Netlist, Part, bindings, with_values
+from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import Evaluator, FloatArithmetic, Scalar
 from acsolve.equations.exact import Expander, Symbols, exact_system, with_symbols
@@ -170,28 +169,17 @@ class _Probe:
                 return self._known[expression]
 
 
-def _valued(netlist: Netlist, numbers: Mapping[str, float]) -> Netlist:
-    """The netlist with numbers for its free symbols."""
-    return with_values(
-        netlist,
-        {name: Value(expression=Number(Fraction(number))) for name, number in numbers.items()},
-    )
-
-
 _POINTS = 3
 _AGREEMENT = 1e-9
 
 
 def _check(netlist: Netlist, form: NestedForm) -> Checked:
     """Against the numeric engine at random frequencies, symbols at random values."""
-    from acsolve.analyses.sweep import response
-
     random = Random(20)  # noqa: S311 - reproducible points, no secret
     values = {name: 0.5 + random.random() for name in form.symbols}
     hertz = np.array([10 ** random.uniform(-2, 0) for _ in range(_POINTS)])
-    there = response(_valued(netlist, values), form.ask, hertz)
     here = np.asarray(form.at(2j * np.pi * hertz, values), dtype=complex)
-    worst = float(np.max(np.abs(here - there) / np.abs(there))) if np.all(there) else inf
+    worst = engine_difference(netlist, form.ask, hertz, values, here)
     if not worst <= _AGREEMENT:
         raise EquationError(
             Diagnostic(

@@ -36,7 +36,7 @@ def settle(scope: Scope, book: Book, walker: Walker) -> None:
         if word is None:
             _unstated(draft, book)
         elif word in book.blocks and (draft.kind is not None):
-            if word not in book.refused_blocks:
+            if word not in book.refused_blocks and _is_fitted(draft, book):
                 _copies(draft, book.blocks[word], book, walker)
         elif word in KINDS:
             draft.definition = KINDS[word]
@@ -46,6 +46,27 @@ def settle(scope: Scope, book: Book, walker: Walker) -> None:
                 refuse_parts(draft.span, book)
         else:
             _unknown(draft, word, book)
+
+
+def _is_fitted(draft: Draft, book: Book) -> bool:
+    """Whether a block is written out; it may be left out, but has no value."""
+    scope = draft.scope
+    given = scope.values.get(draft.local) or scope.arguments.get(draft.local)
+    value = given.text if given is not None else draft.value
+    if value is None:
+        return True
+    if value.formula is not None:
+        word = draft.kind.word if draft.kind else "a block"
+        book.problems.add(
+            "name.not-a-value",
+            f"{draft.local} is a copy of {word} and has no value of its own",
+            value.span,
+            hint=f"Give values to the parts inside: {draft.local}.R = …",
+        )
+        return True
+    book.left_out.add(draft.name)
+    book.copies[draft.name] = draft
+    return False
 
 
 def _unstated(draft: Draft, book: Book) -> None:
@@ -79,7 +100,7 @@ class _Copies(NamedTuple):
 
     draft: Draft
     block: Block
-    count: int
+    number: int
     outer: dict[str, str]  # pin -> node outside
     arguments: dict[str, Given]
     inner: list[tuple[Path, Given]]  # values for names deeper inside
@@ -114,7 +135,7 @@ def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
 
 def _copy(shared: _Copies, number: int, book: Book) -> Scope:
     """The scope of one copy, its pins connected to the nodes outside and to its neighbours."""
-    draft, count = shared.draft, shared.count
+    draft, count = shared.draft, shared.number
     pins = [pin for pin, _ in shared.block.head.pins]
     stem = f"{draft.name}[{number}]" if count > 1 else draft.name
     nodes = dict(shared.outer)

@@ -69,8 +69,9 @@ class Book:
     coupled: list[Coupled] = field(default_factory=list)
     nodes: Nodes = field(default_factory=Nodes)
     used: set[str] = field(default_factory=set)  # full names of quantities in use
-    joins: list[tuple[Scope, tuple[str, ...]]] = field(default_factory=list)
+    joins: list[list[str]] = field(default_factory=list)
     suspects: dict[tuple[str, str], list[tuple[Item, Path, Item]]] = field(default_factory=dict)
+    asked: set[str] = field(default_factory=set)  # nodes that questions, ports and joins name
     steps: int = 0
 
     def step(self, span: Span, count: int = 1) -> None:

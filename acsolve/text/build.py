@@ -11,7 +11,7 @@ from acsolve.circuit.netlist import Netlist, Part, Variant
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
 from acsolve.source import Source, Span
-from acsolve.text import checks, tree
+from acsolve.text import checks, limits, tree
 from acsolve.text.blocks import settle
 from acsolve.text.book import Book
 from acsolve.text.couplings import Couplings
@@ -66,7 +66,6 @@ class _Builder:
         quantities.read()
         parts = self._connected(Parts(book, self._givens).all())
         checks.check_names(book)
-        checks.check_suspects(book)
         checks.check_overrides(book)
         checks.check_reached(book)
         couplings = Couplings(book, self._givens)
@@ -80,6 +79,7 @@ class _Builder:
             source=book.source,
         )
         netlist = self._asked(netlist, parts)
+        checks.check_suspects(book)
         variants = Variants(book, self._givens, self._lookup, self._walker, couplings)
         netlist = self._with_variants(netlist, variants)
         netlist = replace(netlist, quantities=quantities.finished())
@@ -126,16 +126,30 @@ class _Builder:
         refuse_size(self._body, book)
         self._walker.enter(self._body, book.file)
         settle(book.file, book, self._walker)
-        for _, group in book.joins:
+        for group in book.joins:
             book.nodes.unite(group)
 
     def _connected(self, parts: list[Part]) -> list[Part]:
         """The parts at the nodes that are left after joining."""
         nodes = self._book.nodes
-        if not nodes.above:
-            return parts
-        find = nodes.find
-        return [replace(part, nodes=tuple(map(find, part.nodes))) for part in parts]
+        if nodes.above:
+            find = nodes.find
+            parts = [replace(part, nodes=tuple(map(find, part.nodes))) for part in parts]
+        if len(parts) > limits.NODES // 4:  # no kind has more than four terminals
+            self._count_nodes(parts)
+        return parts
+
+    def _count_nodes(self, parts: list[Part]) -> None:
+        seen: set[str] = set()
+        for part in parts:
+            seen.update(part.nodes)
+            if len(seen) > limits.NODES:
+                self._problems.refuse(
+                    "limit.nodes",
+                    f"this circuit has more than {limits.NODES:,} nodes",
+                    part.span,
+                    hint="Use fewer copies, or smaller ranges.",
+                )
 
     def _title(self) -> str | None:
         titles = self._of(tree.Title)
@@ -148,8 +162,11 @@ class _Builder:
         known: set[str] = set()
 
         def exists(node: str) -> bool:
+            if self._book.flattened:
+                return True  # nodes whose parts are not fitted may still be asked about
             if not known:
                 known.update(checks.known_nodes(self._book))
+                known.update(self._book.nodes.above)
                 known.update(node for part in parts for node in part.nodes)
             return node in known
 

@@ -16,7 +16,7 @@ from acsolve.text.tree import Arm, Chain, Fitted, Item, Numbered, Path
 if TYPE_CHECKING:
     from acsolve.text.walk import Walker
 
-DESIGNATOR = re.compile(r"[RLC][0-9]+[a-z]?(\[.*\])?")
+DESIGNATOR = re.compile(r"[RLC][0-9]+(\[.*\])?")
 _WORD = re.compile(r"[A-Za-z_][A-Za-z0-9_]*")
 
 

@@ -90,6 +90,8 @@ def check_suspects(book: Book) -> None:
         scope = scopes.get(prefix)
         if scope is None or name in scope.drafts or not DESIGNATOR.fullmatch(name):
             continue
+        if scope.node(name) in book.asked:
+            continue
         if len(places) == 1 and met.get(scope.node(name), 0) <= 2 and name not in scope.pins:
             left, item, right = places[0]
             _in_a_row(left.span.text, item, right.span.text, book)
@@ -144,7 +146,11 @@ def check_overrides(book: Book) -> None:
 
 
 def _near_override(name: str, first: str, book: Book) -> str | None:
-    owner = name.rpartition(".")[0]
+    owner, _, attribute = name.rpartition(".")
+    draft = book.by_name.get(owner)
+    if draft is not None and draft.definition is not None:
+        known = [item.name for item in draft.definition.attributes]
+        return meant(attribute, known, f"{owner} has {listed(known)}.")
     inner = [item for item in book.by_name if item.startswith(f"{owner}.")]
     otherwise = None
     if first not in {key.partition("[")[0] for key in book.copies}:
@@ -153,8 +159,8 @@ def _near_override(name: str, first: str, book: Book) -> str | None:
 
 
 def known_nodes(book: Book) -> set[str]:
-    """The full name of every node, those inside copies and joined ones included."""
-    known = {"gnd", *book.nodes.above}
+    """The full name of every node, those inside copies included."""
+    known = {"gnd"}
     for scope in book.scopes:
         known.update([scope.node(local) for local in scope.nodes])
         known.update([scope.prefix + pin for pin in scope.pins])

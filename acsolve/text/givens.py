@@ -210,11 +210,13 @@ class Givens:
             self._need(side, PLAIN, amount.span)
             return ex.multiply(side.expression, factor), True
         whole = made.measure if place.need is None else place.need
-        if whole is None or not self._solver.reduced(whole):
+        known = self._solver.reduced(whole) if whole is not None else PLAIN
+        bare = made.measure is None and side.measure is None  # let x = 3 ± 1
+        if not known or (bare and all(base.startswith("?") for base in known)):
             self._need(side, PLAIN, amount.span)
             return side.expression, False
         if side.measure is None:
-            unit = sign(self._solver.reduced(whole))
+            unit = sign(known)
             number = amount.span.text
             number = number if isinstance(amount.formula, Literal) else f"({number})"
             self._wrong_tolerance(
@@ -223,9 +225,9 @@ class Givens:
                 f"Write ± {number} % or ± {number} {unit}." if unit else f"Write ± {number} %.",
             )
         assert side.measure is not None, "the bare number is refused above"
-        known = self._solver.reduced(side.measure)
-        open_ = any(base.startswith("?") for base in known)  # a bare name is a fraction
-        if known and not open_ and self._solver.agree(known, whole, amount.span):
+        mine = self._solver.reduced(side.measure)
+        open_ = any(base.startswith("?") for base in mine)  # a bare name is a fraction
+        if mine and not open_ and self._solver.agree(mine, known, amount.span):
             return side.expression, False
         self._need(side, PLAIN, amount.span)
         return side.expression, True

@@ -70,14 +70,16 @@ def _quick_path(template: Template) -> Recipe | None:
     slow = _slow(template)
 
     def path(tokens: Tokens) -> tree.Path:
-        name = tokens.text(word)
+        base, starts, ends, text = tokens.base, tokens.starts, tokens.ends, tokens.script.text
+        name = text[base + starts[word] : base + ends[word]]
         if numbers:
-            indices = [tokens.text(number) for number in numbers]
+            indices = [text[base + starts[number] : base + ends[number]] for number in numbers]
             for digits in indices:
                 if not digits.isdigit() or len(digits) > 7 or digits[0] == "0" != digits:
                     return slow(tokens)  # type: ignore[no-any-return]
             name = f"{name}[{','.join(indices)}]"
-        return tree.Path(name, (), tokens.span(word, last))
+        span = Span(tokens.script.source, base + starts[word], base + ends[last])
+        return tree.Path(name, (), span)
 
     return path
 

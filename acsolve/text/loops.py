@@ -166,6 +166,8 @@ def refuse_size(body: Iterable[Nested], book: Book) -> None:
     Counts that are plain to see decide; the rest is counted while it is written out.
     """
     content = tuple(body)
+    if not book.blocks and not any(isinstance(item, Repeat) for item in content):
+        return  # nothing is written out; the parts are counted as they come
     outer = _numbers(content)
     sizes: dict[str, _Size] = dict.fromkeys(book.blocks, _Size(1, 0))
     for _ in range(min(len(book.blocks), limits.NESTING) + 1):  # inner blocks settle first

@@ -255,13 +255,20 @@ def _needs_brackets(stop: Stop) -> Told | None:
         return None
     signs = ("STAR", "SLASH", "_POWER_SIGN", "MINUS")
     named = stop.before in ("EQUALS", "MINUS") and stop.kind and stop.word(stop.at)
-    if stop.kind not in signs and not named:
+    if stop.kind not in signs and not named and not _is_sum(stop):
         return None
     return Told(
         "chain.expression", "an expression in a chain stands in brackets",
         "Write R1 = (2*R) in the chain, or give the value in a line of its own.",
         stop.at, stop.at,
     )  # fmt: skip
+
+
+def _is_sum(stop: Stop) -> bool:
+    """Whether a number follows a plus, which would begin a part in series."""
+    if stop.kind == "GLUED":
+        return stop.before == "PLUS"
+    return stop.before == "NUMBER" and stop.kinds[stop.at - 2 : stop.at - 1] == ("PLUS",)
 
 
 def _parts_in_a_row(stop: Stop) -> Told | None:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 
 from acsolve.circuit.expression import Number
-from acsolve.circuit.kind import LETTERS, Attribute, Kind
+from acsolve.circuit.kind import Attribute, Kind
 from acsolve.circuit.netlist import Part
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
@@ -206,13 +206,25 @@ class Parts:
                 found = given
             else:
                 found = self._attribute(draft, attribute, arguments)
-            if found is not None:
+            if found is not None and attribute.name in values:
+                self._second_angle(draft, found, values)
+            elif found is not None:
                 self._read(draft, kind, attribute, found, values)
             elif attribute.own_symbol:
                 values[attribute.name] = Value(span=draft.span)
         if arguments and kind.principal and kind.principal in values:
             self._temperature(draft, kind.principal, arguments, values)
         return values
+
+    def _second_angle(self, draft: Draft, given: Given, values: dict[str, Value]) -> None:
+        first = values["angle"].span
+        self._book.problems.add(
+            "value.twice",
+            f"the angle of {draft.local} is given twice",
+            given.text.span,
+            hint="Keep one.",
+            labels=(Label(first, "first given here"),) if first else (),
+        )
 
     def _attribute(
         self, draft: Draft, attribute: Attribute, arguments: tuple[Argument, ...]
@@ -291,9 +303,10 @@ class Parts:
             values[principal] = replace(values[principal], temperature_coefficient=made)
 
     def _note_negative(self, draft: Draft, kind: Kind, attribute: Attribute, value: Value) -> None:
-        if kind.name not in LETTERS.values() or attribute.name != kind.principal:
+        number = value.expression
+        if not isinstance(number, Number) or number.value.numerator >= 0:
             return
-        if isinstance(value.expression, Number) and value.expression.value < 0:
+        if kind.letter is not None and attribute.name == kind.principal:
             self._book.problems.warn(
                 "value.negative",
                 f"{draft.local} is negative; a real {kind.name} is not",

@@ -73,6 +73,7 @@ class Questions:
         local = node_name(place, self._book.file, NO_TURNS, self._book)
         if local is None:
             return None
+        self._book.asked.add(local)
         kept = self._book.nodes.find(local)
         if kept == "gnd" or self._exists(local) or self._exists(kept):
             return kept

@@ -26,6 +26,7 @@ from acsolve.text.spell import spelled
 from acsolve.text.tree import Path
 from acsolve.text.words import article, meant
 
+_DOTS = "Names with dots lead into blocks, and to the attributes of parts."
 Found = tuple[Expression, Measure | None]
 
 _PER_SECOND = raised(SECOND, Fraction(-1))
@@ -191,7 +192,10 @@ class Lookup:
         problems, message = self._book.problems, f"{path.span.text} is not known here"
         if draft is None or draft.definition is None:
             problems.add(
-                "name.unknown", message, path.span, hint=lambda: meant(full, self._book.by_name)
+                "name.unknown",
+                message,
+                path.span,
+                hint=lambda: meant(full, self._book.by_name, _DOTS),
             )
             return
         names = [item.name for item in draft.definition.attributes]

@@ -164,6 +164,9 @@ class _Reader:
                 self._one(local, target.span, text, turns)
 
     def _one(self, local: str, span: Span, text: ValueText, turns: Turns) -> None:
+        if is_absent(text) and local in self._book.copies:
+            self._block_absent(local, span)
+            return
         found = self._parent.target(local, span)
         if found is None:
             return
@@ -182,6 +185,12 @@ class _Reader:
         for name, value in self._parent.value(found, text, turns):
             if self._once(name, span):
                 self.values[name] = value
+
+    def _block_absent(self, local: str, span: Span) -> None:
+        """Leave out every part inside a block."""
+        if self._once(local, span):
+            inside = (f"{local}.", f"{local}[")
+            self.absent.update(name for name in self._book.by_name if name.startswith(inside))
 
     def _once(self, name: str, span: Span) -> bool:
         first = self._given.setdefault(name, span)

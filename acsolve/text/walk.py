@@ -217,7 +217,9 @@ class Walker:
         self._book.coupled.append(Coupled(names, statement, scope, turns))
 
     def _join(self, statement: Join, scope: Scope, turns: Turns) -> None:
-        self._book.joins.append((scope, tuple(self.joined(statement, scope, turns))))
+        found = self.joined(statement, scope, turns)
+        if found:
+            self._book.joins.append(found)
 
     def joined(self, statement: Join, scope: Scope, turns: Turns) -> list[str]:
         """The full names of the nodes that a join names."""
@@ -226,6 +228,7 @@ class Walker:
             local = node_name(place, scope, turns, self._book)
             if local is not None:
                 scope.reached.append((scope.node(local), place))
+                self._book.asked.add(scope.node(local))
                 found.append(scope.node(local))
         return found
 

@@ -75,7 +75,18 @@ class _Writer:
     def _is_flat(self) -> bool:
         netlist = self._netlist
         names = [*netlist.nodes(), *self._parts, *netlist.quantities]
-        return bool(netlist.aliases) or any("." in name or "~" in name for name in names)
+        if netlist.aliases or any("." in name or "~" in name for name in names):
+            return True
+        return not self._named_nodes() <= {"gnd", *netlist.nodes()}
+
+    def _named_nodes(self) -> set[str]:
+        """Nodes that questions and the like name; their parts may not be fitted."""
+        netlist = self._netlist
+        pairs = [*netlist.ports.values()]
+        for item in (*netlist.questions, *netlist.goals):
+            pairs += [item.target] if item.source is None else [item.source, item.target]
+        joined = [group for item in netlist.variants.values() for group in item.joins]
+        return {node for group in (*pairs, *joined) for node in group}
 
     # ------------------------------------------------------------ parts and values
 

@@ -329,6 +329,15 @@ def test_the_mirrored_section_counts_from_infinite_frequency():
             ),
             "pole on the frequency axis",
         ),
+        (
+            network(
+                L("L1", "in", "gnd", 1),
+                C("C1", "in", "a", 1),
+                L("L2", "a", "gnd", Fraction(1, 2)),
+                couplings=(coupling("L1", "L2", 1),),
+            ),
+            "pole on the frequency axis",
+        ),
         (network(R("R1", "in", "gnd", 1), C("C1", "in", "gnd", 0), L("L1", "z", "gnd", 1)), None),
     ],
 )

@@ -38,7 +38,7 @@ def test_a_number_of_points_is_that_number(band, points):
     grid = logarithmic(band, points=points)
     assert len(grid) == points
     assert grid[0] == float(band.low) and grid[-1] == float(band.high)
-    assert np.allclose(np.diff(np.log(grid)), np.log(band.high / band.low) / (points - 1))
+    assert np.allclose(np.diff(np.log(grid)), np.log(float(band.high / band.low)) / (points - 1))
 
 
 @pytest.mark.parametrize("low", [Fraction(1, 10), Fraction(10), Fraction(20), Fraction(3, 1000)])

@@ -45,7 +45,7 @@ def test_sections_read_exactly(section, place, safe):
     check(path.closed_form(), safe=safe)
 
 
-@settings(max_examples=40)
+@settings(max_examples=25)
 @given(st.data(), st.sampled_from(["voltage-ratio", "transimpedance", "impedance"]))
 def test_passive_networks_read_exactly(data, quantity):
     """Every reading of a random R, L, C network, in both spellings, is its closed form."""
@@ -61,7 +61,7 @@ def test_passive_networks_read_exactly(data, quantity):
     check(form, safe=False)
 
 
-@settings(max_examples=40)
+@settings(max_examples=25)
 @given(st.data())
 def test_networks_of_any_parts_read_exactly(data):
     """Every reading of a network of any lumped parts, numbers among symbols, is its closed form."""

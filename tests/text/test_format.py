@@ -2,16 +2,19 @@
 
 from __future__ import annotations
 
+import re
 from fractions import Fraction
+from pathlib import Path
 
 import pytest
 
 from acsolve.circuit import expression as ex
 from acsolve.circuit import unit
 from acsolve.circuit.expression import Name, Number
+from acsolve.circuit.kind import KINDS
 from acsolve.circuit.netlist import with_variant
 from acsolve.errors import AcsolveError
-from acsolve.text import parse
+from acsolve.text import limits, parse
 
 
 def parts(text: str) -> dict:
@@ -55,7 +58,7 @@ def test_every_word_may_be_a_node():
 
     words = [word for word in keywords() if word not in ("gnd", "end", "from", "to", "absent")]
     for number, word in enumerate(words):
-        text = f"{word} -- R{number} -- x\nask transfer from {word} to x\njoin {word}, y"
+        text = f"{word} -- R{number} -- x\nask transfer from {word} to x\njoin {word}, y\ny -- C1 -- gnd"
         assert parse(text).netlist.parts[0].nodes == (word, "x")
 
 
@@ -182,8 +185,10 @@ def test_a_block_sees_only_what_it_may():
 
 def test_join():
     """Joined nodes are one; gnd keeps its name, else the first."""
-    netlist = parse("a -- R1 -- b\nc -- R2 -- d\njoin b, c\njoin d, gnd\njoin a, x").netlist
-    assert [part.nodes for part in netlist.parts] == [("a", "b"), ("b", "gnd")]
+    netlist = parse(
+        "a -- R1 -- b\nc -- R2 -- d\njoin b, c\njoin d, gnd\njoin a, x\nx -- R3 -- gnd"
+    ).netlist
+    assert [part.nodes for part in netlist.parts] == [("a", "b"), ("b", "gnd"), ("a", "gnd")]
     assert netlist.aliases == {"c": "b", "d": "gnd", "x": "a"}
 
 
@@ -257,6 +262,30 @@ def test_statements_end_with_their_line():
     assert refused("a -- R1\n-- b") == ["chain.end", "chain.end"]
 
 
+def test_the_examples_of_the_reference():
+    """Every example of the reference page reads without an error or a warning."""
+    page = (Path(__file__).parents[2] / "grammar" / "README.md").read_text(encoding="utf-8")
+    examples = re.findall(r"```circuit\n(.*?)```", page, re.DOTALL)
+    assert len(examples) > 5
+    for example in examples:
+        assert parse(example).warnings == ()
+
+
+def test_the_reference_names_every_kind_and_limit():
+    """The reference lists every kind with its attributes, and every limit."""
+    page = (Path(__file__).parents[2] / "grammar" / "README.md").read_text(encoding="utf-8")
+    rows = dict(re.findall(r"^\| `(\w+)` (\|.*)$", page, re.MULTILINE))
+    assert set(rows) == set(KINDS)
+    for kind in KINDS.values():
+        for item in (*kind.terminals, *kind.attributes):
+            assert re.search(rf"\b{item.name}\b", rows[kind.name]), (kind.name, item.name)
+    section = page.partition("## Limits")[2]
+    for name in vars(limits):
+        number = getattr(limits, name)
+        if name.isupper() and name not in ("FILE_BYTES", "SHAPES"):
+            assert f"{number:,}" in section or str(number) in section, name
+
+
 def test_the_cascade_of_the_description():
     """Two hundred sections, one of them with another capacitor."""
     text = """
@@ -290,3 +319,40 @@ def test_the_repetition_of_the_description():
     found = parts(text)
     assert len(found) == 40
     assert found["R[20]"].nodes == ("n[19]", "n[20]")
+
+
+def test_a_block_may_be_left_out():
+    """`absent` takes a whole block out, in the file and in a variant; a block has no value."""
+    block = "block cell(a, b)\n    a -- R -- b\nend\np -- N : 2 * cell -- q -- R1 -- gnd\n"
+    assert list(parts(block + "N = absent")) == ["R1"]
+    netlist = parse(block + 'variant "v"\n    N = absent\nend').netlist
+    assert [part.name for part in with_variant(netlist, "v").parts] == ["R1"]
+    assert refused(block + "N = 5 ohm") == ["name.not-a-value"]
+
+
+def test_an_angle_is_given_once():
+    """An angle behind the amplitude and an attribute of that name contradict each other."""
+    text = "a -- V1 : voltage_source(5 V ∠ 3 deg, angle = 4 deg) -- b"
+    assert refused(text) == ["value.twice"]
+
+
+def test_bare_tolerances():
+    """A bare quantity may have a bare tolerance, and a named tolerance is a fraction."""
+    netlist = parse("let x = 3 ± 1\na -- R1 = (x) -- b").netlist
+    assert not netlist.quantities["x"].value.tolerance.relative
+    found = parts("let tol = 0.02\na -- R1 = 5 ohm ± tol -- b")
+    assert found["R1"].values["value"].tolerance.relative
+    found = parts("let dR = 2 ohm\na -- R1 = 5 ohm ± dR -- b")
+    assert not found["R1"].values["value"].tolerance.relative
+
+
+def test_nodes_may_be_named_like_parts():
+    """A node named like a part is taken where anything else shows that it is a node."""
+    assert parse("L1 -- R1 -- L2 -- R2 -- L3\nL2 -- R3 -- gnd").netlist.parts
+    assert parse("a -- R1 -- L2 -- R2 -- b\nask transfer from a to L2").netlist.parts
+    assert refused("a -- R1 -- L2 -- R2 -- b") == ["chain.row"]
+
+
+def test_joined_nodes_must_exist():
+    """A join names nodes that stand somewhere."""
+    assert refused("a -- R1 -- b\njoin a, c") == ["name.unknown-node"]

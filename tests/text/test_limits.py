@@ -76,6 +76,14 @@ def test_the_message_names_the_limit(code):
     assert any(character.isdigit() for character in message)
 
 
+def test_too_many_nodes(monkeypatch):
+    """A circuit with more nodes than the limit is refused with the limit named."""
+    monkeypatch.setattr(limits, "NODES", 3)
+    assert parse("a -- R1 -- b -- R2 -- c").netlist.parts
+    with pytest.raises(AcsolveError, match=r"limit\.nodes: this circuit has more than 3 nodes"):
+        parse("a -- R1 -- b -- R2 -- c -- R3 -- d")
+
+
 def test_problems_are_counted_beyond_the_cap():
     """Problems beyond the cap are counted in one closing diagnostic at the end of the text."""
     text = "in -- R1 R2 -- out\n" * 1000

@@ -35,6 +35,7 @@ NETLIST = parse(
     far -- N1 : 2 * cell -- gnd
     port sense = (in, x[1])
     join far, near
+    near -- R7b -- gnd
     let fc = 2 kHz
     b1 -- R9 = (1 kohm*fc/(1 Hz)) -- gnd
     """
