@@ -16,8 +16,6 @@ Code = Literal[
     "question.same-node",
     "question.no-reference",
     "question.no-value",
-    "question.level",
-    "question.quantity",
     # the network as a graph
     "graph.shorted",
     "graph.voltage-loop",

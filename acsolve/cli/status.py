@@ -13,8 +13,6 @@ _OF_THE_CALL = (
     "question.unknown",
     "question.same-node",
     "question.no-pair",
-    "question.quantity",
-    "question.level",
     "save.ending",
     "sweep.",
     "variant.",

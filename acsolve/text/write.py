@@ -83,8 +83,11 @@ class _Writer:
         """Nodes that questions and the like name; their parts may not be fitted."""
         netlist = self._netlist
         pairs = [*netlist.ports.values()]
-        for item in (*netlist.questions, *netlist.goals):
-            pairs += [item.target] if item.source is None else [item.source, item.target]
+        for question in netlist.questions:
+            pairs.append(question.target)
+            pairs += [] if question.source is None else [question.source]
+        for goal in netlist.goals:
+            pairs += [goal.source, goal.target]
         joined = [group for item in netlist.variants.values() for group in item.joins]
         return {node for group in (*pairs, *joined) for node in group}
 
