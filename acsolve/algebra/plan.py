@@ -13,6 +13,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from heapq import heapify, heappop, heappush
+from operator import mul, sub, truediv
 from typing import Any, NamedTuple, TypeAlias
 
 import numpy as np
@@ -217,20 +218,23 @@ class _Elimination:
     def _relative_size(self, slot: int, here: list[float] | None, there: dict[int, int]) -> float:
         """Least size over the samples against its row or column; 1 alone there, 0 for zero."""
         sizes = [
-            size if size > _CANCELLED * made else 0.0
-            for size, made in zip(map(abs, self.values[slot]), self.made_of[slot], strict=True)
+            size if (size := abs(value)) > _CANCELLED * made else 0.0
+            for value, made in zip(self.values[slot], self.made_of[slot], strict=True)
         ]
         if not all(sizes):
             return _LAST_RESORT * any(sizes)
         if here is None or len(there) == 1:
             return 1.0
+        relative = min(map(truediv, sizes, here))
+        if relative > _THRESHOLD:
+            return relative
         limits = map(min, here, self._largest(there))
-        return min(size / limit for size, limit in zip(sizes, limits, strict=True))
+        return min(map(truediv, sizes, limits))
 
     def _largest(self, line: dict[int, int]) -> list[float]:
         values = self.values
-        columns = zip(*(values[slot] for slot in line.values()), strict=True)
-        return [max(map(abs, column)) for column in columns]
+        points = zip(*[values[slot] for slot in line.values()], strict=True)
+        return [max(map(abs, point)) for point in points]
 
     def _eliminate(self, row: int, column: int) -> None:
         by_column, by_row = self.lines
@@ -265,11 +269,9 @@ class _Elimination:
     ) -> None:
         """Subtract the multiple of the pivot row from one other row; note the slots."""
         values, made_of, line = self.values, self.made_of, self.lines[1][row]
-        factors = [
-            value / divisor for value, divisor in zip(values[slot], values[pivot], strict=True)
-        ]
+        factors = list(map(truediv, values[slot], values[pivot]))
         for column, right in pivot_row.items():
-            terms = [factor * value for factor, value in zip(factors, values[right], strict=True)]
+            terms = list(map(mul, factors, values[right]))
             target = line.get(column)
             if target is None:
                 target = len(values)
@@ -277,7 +279,6 @@ class _Elimination:
                 values.append([-term for term in terms])
                 made_of.append([abs(term) for term in terms])
             else:
-                old, made = values[target], made_of[target]
-                values[target] = [a - b for a, b in zip(old, terms, strict=True)]
-                made_of[target] = [max(a, abs(b)) for a, b in zip(made, terms, strict=True)]
+                values[target] = list(map(sub, values[target], terms))
+                made_of[target] = list(map(max, made_of[target], map(abs, terms)))
             targets.append(target)

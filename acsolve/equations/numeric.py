@@ -12,9 +12,10 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import accumulate
 from math import isfinite
+from operator import add
 from typing import Any, TypeAlias
 
-from acsolve.circuit.expression import Expression
+from acsolve.circuit.expression import Expression, Number, Product, Sum
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.equations.evaluate import (
     BallArithmetic,
@@ -128,11 +129,12 @@ def numbers(
 
     """
     table = _Table(exact=places is not None)
+    read = _Reader(evaluate)
     kept = None if places is None else set(places)
     for row, law in enumerate(system.laws):
         for column, expression in law.entries.items():
             if kept is None or (row, column) in kept:
-                table.put(row, column, _entry(expression, evaluate, exact=table.exact))
+                table.put(row, column, _entry(expression, read, exact=table.exact))
     for column, factor in driven.items():
         table.put(len(system.laws), column, PolynomialEntry((float(factor),)))
     return table.closed(len(system.unknowns))
@@ -164,14 +166,47 @@ class _Table:
         return Numbers(size, rows, columns, tuple(self.distinct), which, starts)
 
 
-def _entry(expression: Expression, evaluate: Evaluator, *, exact: bool) -> Entry | None:
+class _Reader:
+    """Coefficients of expressions in s; terms that entries share are read once."""
+
+    def __init__(self, evaluate: Evaluator) -> None:
+        self.evaluate = evaluate
+        self.known: dict[int, tuple[Scalar, ...] | None] = {}
+
+    def __call__(self, expression: Expression) -> tuple[Scalar, ...] | None:
+        key = id(expression)  # the system holds its expressions as long as this is used
+        if key in self.known:
+            return self.known[key]
+        match expression:
+            case Sum(left, right):
+                found = _added(self(left), self(right))
+            case Product(Number(value), right) if value == -1:
+                inner = self(right)
+                found = None if inner is None else tuple([-item for item in inner])
+            case _:
+                found = polynomial_in_s(expression, self.evaluate)
+        self.known[key] = found
+        return found
+
+
+def _added(
+    first: tuple[Scalar, ...] | None, second: tuple[Scalar, ...] | None
+) -> tuple[Scalar, ...] | None:
+    if first is None or second is None:
+        return None
+    if len(first) < len(second):
+        first, second = second, first
+    return (*map(add, first, second), *first[len(second) :])
+
+
+def _entry(expression: Expression, read: _Reader, *, exact: bool) -> Entry | None:
     """The entry, or None where floats say that it is zero at every s."""
     try:
-        coefficients = polynomial_in_s(expression, evaluate)
+        coefficients = read(expression)
     except (ZeroDivisionError, OverflowError) as problem:
         raise _not_finite(expression) from problem
     if coefficients is None:
-        return FunctionEntry(expression, slope(expression), evaluate)
+        return FunctionEntry(expression, slope(expression), read.evaluate)
     if exact:
         return PolynomialEntry(coefficients)
     while coefficients and coefficients[-1] == 0:

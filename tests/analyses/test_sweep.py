@@ -37,11 +37,16 @@ def from_to(netlist: Netlist, source: str, target: str, quantity: str | None = N
     return transfer_ask(netlist, (source, "gnd"), (target, "gnd"), quantity=quantity)
 
 
-def ladder(sections: int, ohm: Fraction | int = 1000, farad: Fraction = Fraction(1, 10**9)) -> Netlist:
+def ladder(
+    sections: int, ohm: Fraction | int = 1000, farad: Fraction = Fraction(1, 10**9)
+) -> Netlist:
     """Equal RC sections from n[0] to the last."""
     parts: list[Part] = []
     for k in range(1, sections + 1):
-        parts += [R(f"R[{k}]", f"n[{k - 1}]", f"n[{k}]", ohm), C(f"C[{k}]", f"n[{k}]", "gnd", farad)]
+        parts += [
+            R(f"R[{k}]", f"n[{k - 1}]", f"n[{k}]", ohm),
+            C(f"C[{k}]", f"n[{k}]", "gnd", farad),
+        ]
     return network(*parts)
 
 
@@ -368,7 +373,9 @@ def test_matched_line_only_delays():
 
 def test_constant_phase_part_starts_at_its_own_angle():
     """The impedance 1/(Q·s^n) has phase -90·n degrees at every frequency, 0 Hz included."""
-    item = part("X1", "constant_phase", "a", "gnd", coefficient=Fraction(1, 1000), exponent=Fraction(1, 2))
+    item = part(
+        "X1", "constant_phase", "a", "gnd", coefficient=Fraction(1, 1000), exponent=Fraction(1, 2)
+    )
     netlist = network(item)
     found = sweep(netlist, impedance_ask(netlist, ("a", "gnd")), [0.0, 1.0, 1e4])
     assert found.phase_deg == pytest.approx([-45, -45, -45], abs=1e-9)
@@ -487,7 +494,9 @@ def test_many_exact_zeros_cost_little():
         *(R("R1", "in", "a", 1), R("R2", "a", "gnd", 2), R("R3", "in", "b", 3)),
         *(R("R4", "b", "gnd", 6), L("L1", "a", "gnd", 1), L("L2", "b", "gnd", 3)),
     )
-    found = sweep(netlist, transfer_ask(netlist, ("in", "gnd"), ("a", "b")), np.geomspace(1, 1e3, 5000))
+    found = sweep(
+        netlist, transfer_ask(netlist, ("in", "gnd"), ("a", "b")), np.geomspace(1, 1e3, 5000)
+    )
     assert not found.value.any()
 
 

@@ -60,12 +60,18 @@ def mesh(side: int, points: int) -> Case:
         for j in range(side):
             here = f"m[{i}, {j}]"
             if i + 1 < side:
-                parts.append(R(f"R[{i}, {j}]", here, f"m[{i + 1}, {j}]", 100 + (i * 7 + j * 3) % 11))
+                parts.append(
+                    R(f"R[{i}, {j}]", here, f"m[{i + 1}, {j}]", 100 + (i * 7 + j * 3) % 11)
+                )
             if j + 1 < side:
-                parts.append(R(f"Q[{i}, {j}]", here, f"m[{i}, {j + 1}]", 100 + (i * 5 + j * 9) % 13))
+                parts.append(
+                    R(f"Q[{i}, {j}]", here, f"m[{i}, {j + 1}]", 100 + (i * 5 + j * 9) % 13)
+                )
             parts.append(C(f"C[{i}, {j}]", here, "gnd", Fraction(1 + (i + j) % 5, 10**9)))
     last = f"m[{side - 1}, {side - 1}]"
-    return Case(f"mesh {side} x {side}", tuple(parts), "m[0, 0]", last, np.geomspace(1e3, 1e7, points))
+    return Case(
+        f"mesh {side} x {side}", tuple(parts), "m[0, 0]", last, np.geomspace(1e3, 1e7, points)
+    )
 
 
 def prepared(case: Case) -> Solver:
