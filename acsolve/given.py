@@ -42,7 +42,7 @@ def value_for(name: str, given: Any, netlist: Netlist) -> Value:
 
     dimension = _dimension(name, netlist)
     if isinstance(given, str):
-        return parse_value(given, dimension=dimension, netlist=netlist)
+        return parse_value(given, dimension=dimension, netlist=netlist, target=name)
     return Value(expression=Number(exact(given)))
 
 

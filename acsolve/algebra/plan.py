@@ -225,11 +225,11 @@ class _Elimination:
             return _LAST_RESORT * any(sizes)
         if here is None or len(there) == 1:
             return 1.0
-        relative = min(map(truediv, sizes, here))
+        relative: float = min(map(truediv, sizes, here))
         if relative > _THRESHOLD:
             return relative
         limits = map(min, here, self._largest(there))
-        return min(map(truediv, sizes, limits))
+        return float(min(map(truediv, sizes, limits)))
 
     def _largest(self, line: dict[int, int]) -> list[float]:
         values = self.values

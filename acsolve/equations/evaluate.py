@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import cmath
-from collections.abc import Mapping
+from collections.abc import Callable, Collection, Iterator, Mapping
 from fractions import Fraction
 from math import pi
 from typing import Any, Protocol, TypeAlias
@@ -22,6 +22,7 @@ from acsolve.circuit.expression import (
     Quotient,
     Sum,
     exact_root,
+    names,
 )
 from acsolve.circuit.value import Value
 from acsolve.codes import Code
@@ -215,17 +216,62 @@ class Evaluator:
         self._known[name] = number
 
     def name(self, name: str) -> Scalar:
-        """The number behind a name."""
+        """The number behind a name; what it refers to is worked out first, without recursion."""
         known = self._known.get(name)
         if known is None:
-            value = self._values.get(name)
-            if value is None or value.expression is None:
-                raise no_value((name,))
-            known = self(value.expression)
-            if angle_name(name) in self._values:  # a source: its phasor
-                known = known * self._arithmetic.rotation(self.name(angle_name(name)))
-            self._known[name] = known
+            for item in in_order(name, self._expression, self._known):
+                self._known[item] = self._number(item)
+            known = self._known[name]
         return known
+
+    def _expression(self, name: str) -> Expression:
+        value = self._values.get(name)
+        if value is None or value.expression is None:
+            raise no_value((name,))
+        return value.expression
+
+    def _number(self, name: str) -> Scalar:
+        number = self(self._expression(name))
+        if angle_name(name) in self._values:  # a source: its phasor
+            return number * self._arithmetic.rotation(self.name(angle_name(name)))
+        return number
+
+
+def in_order(
+    name: str, expression: Callable[[str], Expression | None], known: Collection[str]
+) -> Iterator[str]:
+    """The names that a name rests on and that are not known, each after what it rests on.
+
+    `expression` gives the value behind a name, None where there is nothing to work out. The
+    caller notes each name as known before it asks for the next. References may be
+    thousands long (`R[k] = 2*R[k-1]`), so there is no recursion here.
+
+    Raises
+    ------
+    EquationError
+        [equations.evaluation] values refer to each other in a circle.
+    """
+    stack, opened = [name], set[str]()
+    while stack:
+        top = stack[-1]
+        if top in known:
+            stack.pop()
+            continue
+        value = expression(top)
+        waiting = () if value is None else [item for item in names(value) if item not in known]
+        if not waiting:
+            yield stack.pop()
+        elif top in opened:
+            raise EquationError(
+                Diagnostic(
+                    code="equations.evaluation",
+                    message=f"the value of {top} refers to itself in a circle",
+                    hint="Give one of the values in the circle as a number.",
+                )
+            )
+        else:
+            opened.add(top)
+            stack.extend(sorted(waiting))
 
 
 def angle_name(source: str) -> str:

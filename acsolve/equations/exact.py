@@ -27,7 +27,7 @@ from acsolve.circuit.expression import (
 from acsolve.circuit.graph import natural_key
 from acsolve.circuit.netlist import Netlist, with_values
 from acsolve.circuit.value import Value
-from acsolve.equations.evaluate import angle_name
+from acsolve.equations.evaluate import angle_name, in_order
 from acsolve.equations.leaf import collect, monomial
 from acsolve.equations.system import Functional, System
 from acsolve.errors import Diagnostic, EquationError
@@ -143,21 +143,19 @@ class Expander:
             raise _division_by_zero(expression) from problem
 
     def _name(self, item: Name) -> Expression:
-        known = self._known.get(item.name)
-        if known is None:
-            value = self._values.get(item.name)
-            phasor = angle_name(item.name) in self._values  # complex: it stays a symbol
-            if (
-                phasor
-                or value is None
-                or value.expression is None
-                or self._symbols.stays(item.name, value)
-            ):
-                known = item
-            else:
-                known = self(value.expression)
-            self._known[item.name] = known
-        return known
+        if item.name not in self._known:
+            for name in in_order(item.name, self._value, self._known):
+                value = self._value(name)
+                self._known[name] = Name(name) if value is None else rebuild(value, self._name)
+        return self._known[item.name]
+
+    def _value(self, name: str) -> Expression | None:
+        """What a name stands for, None where it stays a symbol."""
+        value = self._values.get(name)
+        phasor = angle_name(name) in self._values  # complex: it stays a symbol
+        if phasor or value is None or self._symbols.stays(name, value):
+            return None
+        return value.expression
 
 
 @dataclass(frozen=True, slots=True)

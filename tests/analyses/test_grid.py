@@ -26,7 +26,8 @@ def bands(draw) -> HertzBand:
 def test_points_per_decade_keep_their_ratio(band, per_decade):
     """Neighbours have the ratio 10^(1/n), save a shorter last step, and the edges are exact."""
     grid = logarithmic(band, per_decade=per_decade)
-    assert grid[0] == float(band.low) and grid[-1] == float(band.high)
+    assert grid[0] == float(band.low)
+    assert grid[-1] == float(band.high)
     ratio = grid[1:] / grid[:-1]
     assert np.allclose(ratio[:-1], 10 ** (1 / per_decade), rtol=1e-12)
     assert 1 < ratio[-1] <= 10 ** (1 / per_decade) * (1 + 1e-8)
@@ -37,7 +38,8 @@ def test_a_number_of_points_is_that_number(band, points):
     """The grid has the number of points asked for, at equal ratios, edges exact."""
     grid = logarithmic(band, points=points)
     assert len(grid) == points
-    assert grid[0] == float(band.low) and grid[-1] == float(band.high)
+    assert grid[0] == float(band.low)
+    assert grid[-1] == float(band.high)
     assert np.allclose(np.diff(np.log(grid)), np.log(float(band.high / band.low)) / (points - 1))
 
 
@@ -65,7 +67,8 @@ def test_fifty_a_decade_unless_told_otherwise():
 def test_linear_grid_has_equal_steps(band, points):
     """A linear grid has equal steps between exact edges."""
     grid = linear(band, points=points)
-    assert grid[0] == float(band.low) and grid[-1] == float(band.high)
+    assert grid[0] == float(band.low)
+    assert grid[-1] == float(band.high)
     assert np.allclose(np.diff(grid), float(band.high - band.low) / (points - 1), rtol=1e-9)
 
 
