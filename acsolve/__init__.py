@@ -9,7 +9,7 @@ path.cutoffs()
 path.response([10.0, 100.0])
 """
 
-from acsolve.door import Circuit, Path, parse, read
+from acsolve.door import Circuit, PairLike, Path, parse, read
 from acsolve.draft import Draft
 from acsolve.errors import (
     AcsolveError,
@@ -32,6 +32,7 @@ __all__ = [
     "Diagnostic",
     "Draft",
     "EquationError",
+    "PairLike",
     "Path",
     "Source",
     "Span",

@@ -20,7 +20,7 @@ from acsolve.equations.exact import Expander, Symbols, with_symbols
 from acsolve.equations.system import DRIVE, System, assemble
 from acsolve.equations.write import Spelling, expression_text
 
-DRIVE_NAME = "E"
+DRIVE_NAMES = ("E", "E_drive", "E_of_the_drive")  # the first that no part bears
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -88,20 +88,23 @@ def equations(
             for law in system.laws
         ),
     )
-    return _driven(system, drive) if drive is not None else _own_sources(system)
+    if drive is None:
+        return _own_sources(system)
+    taken = {name for name, _ in netlist.values()}
+    return _driven(system, drive, next(name for name in DRIVE_NAMES if name not in taken))
 
 
 def _is_zero(netlist: Netlist, part: Part, expand: Expander) -> bool:
     return constant(netlist, expand(Name(part.value_name("value")))) == 0
 
 
-def _driven(system: System, drive: Pair) -> Equations:
+def _driven(system: System, drive: Pair, name: str) -> Equations:
     row = {column: number(sign) for column, sign in system.voltage(drive).items()}
-    excitation = [ZERO] * len(system.laws) + [Name(DRIVE_NAME)]
-    meanings = [law.meaning for law in system.laws] + [f"voltage E across {', '.join(drive)}"]
+    excitation = [ZERO] * len(system.laws) + [Name(name)]
+    meanings = [law.meaning for law in system.laws] + [f"voltage {name} across {', '.join(drive)}"]
     return Equations(
         unknowns=tuple(
-            str(item) if item.name != DRIVE else f"I({DRIVE_NAME})" for item in system.unknowns
+            str(item) if item.name != DRIVE else f"I({name})" for item in system.unknowns
         ),
         matrix=(*(law.entries for law in system.laws), row),
         excitation=tuple(excitation),

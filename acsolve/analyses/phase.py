@@ -6,8 +6,9 @@ turns by more than a sixth of a circle, the interval is divided. Each division i
 vectorised solution.
 
 A zero exactly on the axis turns the phase by +180° a time, as the limit of a zero slightly
-left of the axis; a lossless pole by -180°, as the limit of a slightly damped one. Near such a
-point H'/H = p/(s - s0), and two samples tell both p and s0.
+left of the axis; a lossless pole by -180°, as the limit of a slightly damped one. Nearer to the
+axis than 1e-9 of its frequency counts as on it. Near such a point H'/H = p/(s - s0), and two
+samples tell both p and s0.
 """
 
 from __future__ import annotations

@@ -75,6 +75,13 @@ def sweep(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> Sweep:
         [question.no-value], [equations.singular], [equations.undriven]; a single frequency
         without an answer is a status.
 
+    Notes
+    -----
+    Resonances and notches narrower than the grid are found from the natural modes and zeros
+    where the entries are ratios of polynomials in s, up to 300 unknowns (40 in networks of R
+    and C only). In larger networks and beside lines, one that lies wholly between two samples
+    and leaves neither gain nor slope behind may be missed, and with it a turn of 360 degrees.
+
     """
     wanted, shape = _checked(hertz)
     ordered, back = np.unique(wanted, return_inverse=True)
