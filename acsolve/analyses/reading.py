@@ -14,8 +14,8 @@ from typing import Literal, get_args
 
 from acsolve.algebra.ring import Polynomial
 from acsolve.analyses.closed_form import ClosedForm
-from acsolve.analyses.shape import StandardForm, standard_form
-from acsolve.equations.grouping import LARGEST_GROUPED, Writer
+from acsolve.analyses.shape import StandardForm, sign_of, standard_form
+from acsolve.equations.grouping import LARGEST_GROUPED, Pieces, Writer
 from acsolve.equations.naming import is_safe
 from acsolve.equations.phrase import (
     ONE,
@@ -302,48 +302,49 @@ def _real(page: _Page) -> tuple[Line, ...]:
     top, bottom = (_axes(page, part) for part in page.form.coefficients())
     shift = top.shift - bottom.shift
     gain = page.write.pieces(top.lead, bottom.lead)
-    certain = _sign(top.lead) * _sign(bottom.lead)
+    certain = sign_of(top.lead) * sign_of(bottom.lead)
     if not certain:
-        gain = type(gain)((call("Abs" if page.safe else "abs", gain.times()),))
+        gain = Pieces((call("Abs" if page.safe else "abs", gain.times()),))
+    above, below = _size(page, top), _size(page, bottom)
+    if above == below:  # an all-pass
+        above = below = ONE
     size = product(
-        [*gain.top, page.power(w, max(shift, 0)), _size(page, top)],
-        [*gain.bottom, page.power(w, max(-shift, 0)), _size(page, bottom)],
+        [*gain.top, page.power(w, max(shift, 0)), above],
+        [*gain.bottom, page.power(w, max(-shift, 0)), below],
     )
-    return (Line(f"gain({w})", size.text), Line(f"phase({w})", str(_phase(page))))
-
-
-def _sign(polynomial: Polynomial) -> int:
-    """1 or -1 where all coefficients have that sign, else 0."""
-    signs = {1 if value > 0 else -1 for value in polynomial.coeffs()}
-    return signs.pop() if len(signs) == 1 else 0
+    return (Line(f"gain({w})", size.text), Line(f"phase({w})", str(total(_phase(page)))))
 
 
 def _size(page: _Page, axes: _Axes) -> Phrase:
     """The magnitude of real + j·imag."""
     if axes.imag.is_zero:
         return axes.real if axes.real.is_one else call("Abs" if page.safe else "abs", axes.real)
-    squares = [power(item, 2, page.sign) for item in (axes.real, axes.imag)]
-    return root(total(squares))
+    return root(_squared(page, axes))
 
 
-def _phase(page: _Page) -> Phrase:
+def _squared(page: _Page, axes: _Axes) -> Phrase:
+    """real² + imag²."""
+    return total(power(item, 2, page.sign) for item in (axes.real, axes.imag))
+
+
+def _phase(page: _Page) -> list[Phrase]:
     """Turns of the leading terms plus and minus angles, equal angles counted together."""
     top, bottom = (_axes(page, part) for part in page.form.coefficients())
     quarters = top.shift - bottom.shift
-    certain = _sign(top.lead) * _sign(bottom.lead)
+    certain = sign_of(top.lead) * sign_of(bottom.lead)
     quarters += 2 if certain < 0 else 0
     angles: Counter[str] = Counter()
     for axes, weight in ((top, 1), (bottom, -1)):
         angle = _angle(axes)
         if not angle.is_zero:
             angles[angle.text] += -weight if angle.negative else weight
-    terms = [product([fraction(Fraction(quarters, 2)), Phrase("pi")]) if quarters else ZERO]
-    if abs(quarters) == 1:
-        terms = [Phrase("pi/2", Phrase("x*y").level, quarters < 0)]
+    turn = Fraction(quarters, 2)
+    half_turns = [fraction(turn.numerator), Phrase("pi")]
+    terms = [product(half_turns, [fraction(turn.denominator)])]
     if not certain:
         terms.append(call("atan2", ZERO, page.write.ratio(top.lead, bottom.lead)))
     terms += [product([fraction(count), Phrase(text)]) for text, count in angles.items() if count]
-    return total(terms)
+    return terms
 
 
 def _angle(axes: _Axes) -> Phrase:
@@ -358,26 +359,24 @@ def _angle(axes: _Axes) -> Phrase:
 def _delay(page: _Page) -> tuple[Line, ...]:
     """Phase delay -phase/ω and group delay -d(phase)/dω."""
     w = page.name("w")
-    lines = [Line(f"phase_delay({w})", str(product([-_phase(page)], [w])))]
+    late = total(-term for term in _phase(page))
+    lines = [Line(f"phase_delay({w})", str(product([late], [w])))]
     if len(page.form.numerator) + len(page.form.denominator) > LARGEST_GROUPED:
         return tuple(lines)  # the squares of so many terms are beyond reading
-    delays: Counter[str] = Counter()
+    found: dict[str, Polynomial] = {}  # equal delays once, counted as multiples of the first
+    counts: Counter[str] = Counter()
+    signs: dict[str, bool] = {}
     for part, weight in ((page.form.denominator, 1), (page.form.numerator, -1)):
-        delay = _group_delay(page, part)
-        if not delay.is_zero:
-            delays[delay.text] += -weight if delay.negative else weight
-    terms = [_counted(count, text) for text, count in delays.items() if count]
+        delay = _group_delay(page, part, 1)
+        first = signs.setdefault(delay.text, delay.negative)
+        found.setdefault(delay.text, part)
+        counts[delay.text] += weight if delay.negative == first else -weight
+    terms = [_group_delay(page, found[text], count) for text, count in counts.items() if count]
     return (*lines, Line(f"group_delay({w})", str(total(terms))))
 
 
-def _counted(count: int, text: str) -> Phrase:
-    from acsolve.equations.phrase import Level
-
-    return product([fraction(count), Phrase(text, Level.PRODUCT)])
-
-
-def _group_delay(page: _Page, polynomial: Polynomial) -> Phrase:
-    """d(arg P(jω))/dω = (re·im' - im·re')/(re² + im²)."""
+def _group_delay(page: _Page, polynomial: Polynomial, count: int) -> Phrase:
+    """count·d(arg P(jω))/dω = count·(re·im' - im·re')/(re² + im²)."""
     form = page.form
     coefficients = form.by_power(polynomial)
     real, imag = _axis(form, coefficients[lowest(coefficients) :])
@@ -394,12 +393,13 @@ def _group_delay(page: _Page, polynomial: Polynomial) -> Phrase:
         return [value * place for place, value in enumerate(values)][1:] or [zero]
 
     pairs = zip(times(real, rate(imag)), times(imag, rate(real)), strict=True)
-    top = [a - b for a, b in pairs]
-    squares = zip(times(real, real), times(imag, imag), strict=True)
-    bottom = [a + b for a, b in squares]
+    top = [(a - b) * count for a, b in pairs]
     if all(value == 0 for value in top):
         return ZERO
-    return page.unit(top, bottom, page.name("w"))
+    axes, w, low = _axes(page, coefficients), page.name("w"), lowest(top)
+    gain = page.write.pieces(top[low], axes.lead**2)
+    above = [page.power(w, low), page.series(top, w)]
+    return product([*gain.top, *above], [*gain.bottom, _squared(page, axes)])
 
 
 def _asymptotes(page: _Page) -> tuple[Line, ...]:

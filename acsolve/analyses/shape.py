@@ -117,7 +117,7 @@ def standard_form(form: ClosedForm, *, safe: bool = True) -> StandardForm | None
     order = len(bottom) - 1
     if order not in (1, 2) or len(top) > len(bottom) or bottom[0] == 0:
         return None
-    if order == 2 and _sign(bottom[0] * bottom[2]) < 0:
+    if order == 2 and sign_of(bottom[0] * bottom[2]) < 0:
         return None  # two real poles on either side: there is no w0
     shape = _shape(top, bottom)
     write = Writer(form.basis, form.spelled(safe=safe))
@@ -145,14 +145,14 @@ def _numerator(write: Writer, top: list[Polynomial], bottom: list[Polynomial]) -
     gain = {"k": write.ratio(top[0], bottom[0])}
     if len(top) == 2:
         return gain | {"tau_z": write.ratio(top[1], top[0])}
-    if _sign(top[0] * top[2]) < 0:
+    if sign_of(top[0] * top[2]) < 0:
         return {}
     same = top[0] * bottom[2] == top[2] * bottom[0]
     parts = gain if same else gain | {"w_z": natural_frequency(write, top)}
     return parts if top[1] == 0 else parts | {"q_z": quality(write, top)}
 
 
-def _sign(polynomial: Polynomial) -> int:
+def sign_of(polynomial: Polynomial) -> int:
     """1 or -1 where all coefficients have that sign, else 0."""
     signs = {1 if value > 0 else -1 for value in polynomial.coeffs()}
     return signs.pop() if len(signs) == 1 else 0
@@ -177,9 +177,9 @@ def quality(write: Writer, coefficients: list[Polynomial]) -> Phrase:
         return Phrase("oo")
     period = natural_frequency(write, [last, middle, first])
     whole = product([period], [write.ratio(middle, first)])
-    if _sign(first) == 0:
+    if sign_of(first) == 0:
         return whole
-    first, middle, last = (value * _sign(first) for value in coefficients)
+    first, middle, last = (value * sign_of(first) for value in coefficients)
     outer, inner = _rooted(first * last)
     outer, divisor = cancel(outer, middle)
     ways = [_quotient(write, (outer, divisor), (inner, first * 0 + 1))]
@@ -212,7 +212,7 @@ def _rooted(polynomial: Polynomial) -> tuple[Polynomial, Polynomial]:
         number, whole = 1, whole * isqrt(number)
     outside, inside = outside * whole, inside * number
     for factor, exponent in (*found.sums, *found.monomial.factor()[1]):
-        count = int(exponent) // 2 if _sign(factor) > 0 else 0
+        count = int(exponent) // 2 if sign_of(factor) > 0 else 0
         outside, inside = outside * factor**count, inside * factor ** (int(exponent) - 2 * count)
     return outside, inside
 
@@ -223,7 +223,7 @@ def _radical(polynomial: Polynomial) -> Polynomial:
     if polynomial.is_constant():
         return one
     for factor, exponent in polynomial.factor()[1]:
-        if _sign(factor) > 0 and exponent == 1:
+        if sign_of(factor) > 0 and exponent == 1:
             one = one * factor
     return one
 

@@ -59,9 +59,7 @@ class Published:
         return self.k * tops[self.shape] / (1 + middle + square)
 
 
-def follower(
-    w0: Any, loss: Any, shape: str, section: str, gain: Any = 1
-) -> Published:
+def follower(w0: Any, loss: Any, shape: str, section: str, gain: Any = 1) -> Published:
     """A section with one amplifier: `loss` is 1/(Q·w0)."""
     return Published(section, 0, gain, shape, w0, 1 / (w0 * loss))
 

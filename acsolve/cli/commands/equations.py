@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from acsolve import Circuit
+from acsolve import Circuit, PairLike
 from acsolve.cli.asking import heading, open_circuit
 from acsolve.cli.deliver import deliver, refuse_unfit
 from acsolve.cli.options import FORMS, OUTPUT, VALUES, Options, make_command
 from acsolve.cli.progress import progress
-from acsolve import PairLike
 
 
 def work(options: Options) -> int:
