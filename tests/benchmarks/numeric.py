@@ -138,7 +138,7 @@ def by_banded(solver: Solver, hertz: np.ndarray) -> Answers:
 
 
 def worst_error(case: Case, solver: Solver, answers: Answers) -> float:
-    """Against the plan replayed in 400-bit balls, at five of the frequencies."""
+    """Against the same matrix solved in balls, at five of the frequencies."""
     worst = 0.0
     for at in np.linspace(0, len(case.hertz) - 1, 5).astype(int):
         with precision(400):
