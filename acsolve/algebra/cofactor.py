@@ -4,7 +4,7 @@ Cofactor expansion row by row, memoised on the set of columns already used (P. S
 1772; the memoised form is dynamic programming over column sets). Rows are ordered so that
 few columns are open at a time; a set that leaves a finished column unused is kept only if
 that column may be the one left out. Runs over any commutative ring whose elements have
-`+`, `*` and unary `-`.
+`+`, `-` and `*`.
 """
 
 from __future__ import annotations
@@ -166,22 +166,34 @@ def _advance(
     """Expand every state by one row; a state is (columns used, column left out or -1)."""
     following: dict[tuple[int, int], Element] = {}
     spent = 0
-    entries = sorted(row.items())
+    entries = [(column, entry, _unit(entry)) for column, entry in sorted(row.items())]
     for (mask, left), value in state.items():
-        for column, entry in entries:
+        for column, entry, unit in entries:
             bit = 1 << column
             if mask & bit or column == left:
                 continue
             key = _closed(mask | bit, left, closing, rules.wanted)
             if key is None:
                 continue
-            term = entry if value is None else value * entry
+            negative = (mask >> column).bit_count() % 2 == 1
+            if value is None:
+                term = entry
+            elif unit:  # a product with one would copy the whole polynomial
+                term, negative = value, negative != (unit < 0)
+            else:
+                term = value * entry
             if rules.budget is not None and (spent := spent + len(term)) > rules.budget:
                 raise OverBudgetError
-            if (mask >> column).bit_count() % 2:
-                term = -term
-            following[key] = following[key] + term if key in following else term
+            if key not in following:
+                following[key] = -term if negative else term
+            else:
+                following[key] = following[key] - term if negative else following[key] + term
     return {key: value for key, value in following.items() if value != 0}
+
+
+def _unit(entry: Element) -> int:
+    """1 or -1 where the entry is that, else 0."""
+    return 1 if entry == 1 else -1 if entry == -1 else 0
 
 
 def _closed(

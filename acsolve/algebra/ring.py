@@ -7,15 +7,36 @@ root of a prime, whose square is reduced.
 
 from __future__ import annotations
 
+import copyreg
 from collections.abc import Iterable
 from dataclasses import dataclass
 from fractions import Fraction
-from functools import reduce
+from functools import lru_cache, reduce
 from typing import Any, TypeAlias
 
 import flint
 
 Polynomial: TypeAlias = Any  # flint.fmpz_mpoly, which has no type stubs
+
+
+@lru_cache(maxsize=64)
+def _context(names: tuple[str, ...]) -> Any:
+    """The library keeps contexts too, but looks them up several times more slowly."""
+    return flint.fmpz_mpoly_ctx.get(names, "degrevlex")
+
+
+def _polynomial(names: tuple[str, ...], terms: dict[tuple[int, ...], int]) -> Polynomial:
+    """A polynomial from its pickled parts."""
+    return flint.fmpz_mpoly_ctx.get(names, "degrevlex").from_dict(terms)
+
+
+def _pickled(polynomial: Polynomial) -> tuple[Any, ...]:
+    terms = {tuple(map(int, key)): int(value) for key, value in polynomial.terms()}
+    return _polynomial, (tuple(polynomial.context().names()), terms)
+
+
+# The library's polynomials do not pickle by themselves; answers that hold them must.
+copyreg.pickle(flint.fmpz_mpoly, _pickled)
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,8 +51,8 @@ class Ring:
 
     @property
     def context(self) -> Any:
-        """The library's context of this ring (cached there)."""
-        return flint.fmpz_mpoly_ctx.get(self.names or ("_",), "degrevlex")
+        """The library's context of this ring."""
+        return _context(self.names or ("_",))
 
     def constant(self, value: int) -> Polynomial:
         """An integer as an element."""

@@ -5,16 +5,23 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
-from typing import Any
+from typing import Any, Protocol
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
+from acsolve.algebra.ball import precision
 from acsolve.algebra.ring import Polynomial, cancel, lowest_part, positive, univariate
 from acsolve.analyses.question import Ask
 from acsolve.circuit.expression import S
 from acsolve.circuit.value import Value
-from acsolve.equations.evaluate import Arithmetic, Evaluator, FloatArithmetic, Scalar
+from acsolve.equations.evaluate import (
+    Arithmetic,
+    BallArithmetic,
+    Evaluator,
+    FloatArithmetic,
+    Scalar,
+)
 from acsolve.equations.exact import Basis, Generator
 from acsolve.equations.naming import safe_names
 from acsolve.equations.write import Spelling, polynomial_text
@@ -32,7 +39,7 @@ class Checked:
     max_relative_error: float
 
 
-@dataclass(frozen=True, slots=True, eq=False)
+@dataclass(frozen=True, slots=True, eq=False, repr=False)
 class ClosedForm:
     """numerator/denominator, exact, common factors removed.
 
@@ -134,18 +141,21 @@ class ClosedForm:
         bottom = evaluate_polynomial(self.denominator, points, arithmetic)
         return top / bottom
 
-    def response(self, hertz: NDArray[np.float64]) -> NDArray[np.complex128]:
+    def response(self, hertz: ArrayLike) -> NDArray[np.complex128]:
         """The complex response at real frequencies in hertz; same shape as `hertz`.
+
+        Points at which the polynomials leave a double's range, or the value is a limit, are
+        evaluated in balls.
 
         Raises
         ------
         EquationError
             [question.no-value] if a symbol has no value.
         """
-        arithmetic = FloatArithmetic()
-        s = 2j * np.pi * np.asarray(hertz, dtype=float)
-        result = self.at(s, self.evaluator(arithmetic), arithmetic)
-        return np.broadcast_to(np.asarray(result, dtype=complex), s.shape).copy()
+        return in_doubles(self, np.asarray(hertz, dtype=float))
+
+    def __repr__(self) -> str:
+        return f"ClosedForm({_shortened(self.text())})"
 
     def as_sympy(self) -> Any:
         """The closed form as a SymPy expression in `s` and positive symbols."""
@@ -173,6 +183,65 @@ def evaluate_polynomial(
                 term = term * powers[key]
         total = total + term
     return total
+
+
+_LONGEST_REPR = 200  # characters
+
+
+def _shortened(text: str) -> str:
+    return text if len(text) <= _LONGEST_REPR else f"{text[:_LONGEST_REPR]}…"
+
+
+class Evaluated(Protocol):
+    """An answer that can be evaluated at a complex frequency in any arithmetic."""
+
+    @property
+    def values(self) -> Mapping[str, Value]:
+        """The circuit's values."""
+
+    def at(self, s: Scalar, evaluate: Evaluator, arithmetic: Arithmetic) -> Scalar:
+        """The value at s (rad/s)."""
+
+
+def in_doubles(form: Evaluated, hertz: NDArray[np.float64]) -> NDArray[np.complex128]:
+    """The response in doubles; where that is not finite, in balls just beside the point.
+
+    The shift, 2**-700 of the frequency (2**-700 rad/s at zero), turns a removable
+    singularity into its limit, far below the last place of a double.
+    """
+    arithmetic = FloatArithmetic()
+    s = 2j * np.pi * hertz
+    try:
+        with np.errstate(all="ignore"):  # such points are found and mended below
+            raw = form.at(s, Evaluator(form.values, arithmetic), arithmetic)
+            result = np.array(np.broadcast_to(np.asarray(raw, dtype=complex), s.shape))
+    except (OverflowError, ZeroDivisionError):
+        result = np.full(s.shape, complex("nan"))
+    for place in np.argwhere(~np.isfinite(result)):
+        result[tuple(place)] = _beside(form, float(hertz[tuple(place)]))
+    return result
+
+
+def _beside(form: Evaluated, hertz: float) -> complex:
+    """The value a hair beside a real frequency, infinite where it grows without bound."""
+    from flint import acb, fmpq
+
+    exact = Fraction(hertz)
+    with precision(_BESIDE_BITS):
+        arithmetic = BallArithmetic()
+        omega = 2 * acb.pi() * acb(fmpq(exact.numerator, exact.denominator))
+        shift = acb(2) ** -_SHIFT * (omega if hertz else 1)
+        s = shift + acb(0, 1) * omega
+        value = form.at(s, Evaluator(form.values, arithmetic), arithmetic)
+        if not value.is_finite():
+            return complex("nan")
+        if value.abs_lower() > acb(2).real ** (_SHIFT // 2):
+            return complex("inf")
+        return complex(value)
+
+
+_SHIFT = 700
+_BESIDE_BITS = 4096
 
 
 def generator_numbers(

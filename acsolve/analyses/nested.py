@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from acsolve.analyses.closed_form import Checked
+from acsolve.analyses.closed_form import Checked, in_doubles
 from acsolve.analyses.engine_check import engine_difference
 from acsolve.analyses.question import Ask, refuse_unreferenced
 from acsolve.circuit.expression import (
@@ -26,7 +26,7 @@ from acsolve.circuit.expression import (
 from acsolve.circuit.graph import natural_key
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.circuit.value import Value
-from acsolve.equations.evaluate import Evaluator, FloatArithmetic, Scalar
+from acsolve.equations.evaluate import Arithmetic, Evaluator, FloatArithmetic, Scalar
 from acsolve.equations.exact import Expander, Symbols, exact_system, with_symbols
 from acsolve.equations.naming import safe_names
 from acsolve.equations.nested import PRIME, Step, nested
@@ -36,7 +36,7 @@ from acsolve.errors import Diagnostic, EquationError
 _NARROW = 6  # columns open at once up to which branch currents read best (a ladder has 3)
 
 
-@dataclass(frozen=True, slots=True, eq=False)
+@dataclass(frozen=True, slots=True, eq=False, repr=False)
 class NestedForm:
     """An answer as steps, each over the parts, s and earlier steps, and a result over them.
 
@@ -77,31 +77,35 @@ class NestedForm:
         """The result over the steps, as text."""
         return expression_text(self.result, self.spelled(safe=safe))
 
-    def at(self, s: Scalar, overrides: Mapping[str, Scalar] | None = None) -> Scalar:
-        """The value at complex frequencies s (rad/s), a number or an array.
+    def at(self, s: Scalar, evaluate: Evaluator, arithmetic: Arithmetic) -> Scalar:
+        """The value at complex frequencies s (rad/s), in the evaluator's arithmetic."""
+        del arithmetic
+        for step in self.steps:
+            evaluate.set(step.name, evaluate(step.expression, s))
+        return evaluate(self.result, s)
+
+    def response(self, hertz: ArrayLike) -> NDArray[np.complex128]:
+        """The complex response at frequencies in hertz; same shape as `hertz`.
+
+        A step may be singular where the answer has a limit (at 0 Hz, say): such points are
+        evaluated in balls. Elsewhere steps are in doubles, so digits that cancel are lost;
+        `Path.response` is checked point by point.
 
         Raises
         ------
         EquationError
             [question.no-value] if a symbol has no value.
         """
-        known = dict(overrides or {})
-        evaluate = Evaluator(self.values, FloatArithmetic(), overrides=known)
-        for step in self.steps:
-            evaluate.set(step.name, evaluate(step.expression, s))
-        return evaluate(self.result, s)
-
-    def response(self, hertz: ArrayLike) -> NDArray[np.complex128]:
-        """The complex response at frequencies in hertz; same shape as `hertz`."""
-        s = 2j * np.pi * np.asarray(hertz, dtype=float)
-        result = np.asarray(self.at(s), dtype=complex)
-        return np.broadcast_to(result, s.shape).copy()
+        return in_doubles(self, np.asarray(hertz, dtype=float))
 
     def as_sympy(self) -> tuple[list[tuple[Any, Any]], Any]:
         """Steps as (symbol, expression) and the result, as SymPy objects."""
         from acsolve.analyses.sympy_edge import nested_to_sympy
 
         return nested_to_sympy(self)
+
+    def __repr__(self) -> str:
+        return f"NestedForm({len(self.steps)} steps, {self.text()})"
 
     def __str__(self) -> str:
         lines = [f"{name} = {text}" for name, text in self.step_texts()]
@@ -178,7 +182,9 @@ def _check(netlist: Netlist, form: NestedForm) -> Checked:
     random = Random(20)  # noqa: S311 - reproducible points, no secret
     values = {name: 0.5 + random.random() for name in form.symbols}
     hertz = np.array([10 ** random.uniform(-2, 0) for _ in range(_POINTS)])
-    here = np.asarray(form.at(2j * np.pi * hertz, values), dtype=complex)
+    arithmetic = FloatArithmetic()
+    evaluate = Evaluator(form.values, arithmetic, overrides=values)
+    here = np.asarray(form.at(2j * np.pi * hertz, evaluate, arithmetic), dtype=complex)
     worst = engine_difference(netlist, form.ask, hertz, values, here)
     if not worst <= _AGREEMENT:
         raise EquationError(

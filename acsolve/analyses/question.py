@@ -17,6 +17,7 @@ AskedQuantity = Literal[
     "voltage-ratio", "current-ratio", "transimpedance", "transadmittance", "impedance", "response"
 ]
 
+_SOURCES = ("voltage_source", "current_source")
 _OBSERVES_CURRENT = ("current-ratio", "transadmittance")
 _DRIVEN_BY_VOLTAGE = ("voltage-ratio", "transadmittance")
 _DIMENSIONS: dict[AskedQuantity, Dimension] = {
@@ -115,6 +116,12 @@ def impedance_ask(netlist: Netlist, into: Pair) -> Ask:
 
 
 def _check(netlist: Netlist, ask: Ask) -> None:
+    if ask.source is None and not any(part.kind in _SOURCES for part in netlist.parts):
+        raise _refuse(
+            "question.no-pair",
+            "the question does not say where the circuit is driven, and no source is in it",
+            "Say where it is driven, or put a voltage_source or current_source into the circuit.",
+        )
     known = set(netlist.nodes()) | {"gnd"}
     for pair in (ask.source, ask.target):
         if pair is None or (ask.ammeter and pair is ask.target):

@@ -11,7 +11,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from acsolve.analyses.modes import landmarks
 from acsolve.analyses.phase import at, at_zero_hertz, below, continuous, track
-from acsolve.analyses.question import Ask
+from acsolve.analyses.question import Ask, refuse_unreferenced
 from acsolve.circuit.netlist import Netlist, Pair
 from acsolve.equations.numeric import float_values, takes_branch
 from acsolve.equations.result import Solution, Status
@@ -119,6 +119,8 @@ def solver_for(
     """Assemble and plan a question; `targets` observes voltages there instead of its own."""
     values = float_values(netlist)
     system = ask.system(netlist, branch_for=lambda part: takes_branch(values, part))
+    if targets is None:
+        refuse_unreferenced(system, ask)
     observed = (
         [ask.observed(system)] if targets is None else [system.voltage(pair) for pair in targets]
     )

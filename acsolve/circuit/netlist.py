@@ -10,7 +10,6 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field, replace
-from types import MappingProxyType
 from typing import Literal
 
 from acsolve.circuit.kind import KINDS, Kind
@@ -177,7 +176,7 @@ class Netlist:
 
 def bindings(netlist: Netlist) -> Mapping[str, Value]:
     """Every named value by its name: what `Name` in an expression refers to."""
-    return MappingProxyType(dict(netlist.values()))
+    return dict(netlist.values())
 
 
 def with_values(netlist: Netlist, values: Mapping[str, Value]) -> Netlist:

@@ -146,7 +146,7 @@ class Expander:
         if item.name not in self._known:
             for name in in_order(item.name, self._value, self._known):
                 value = self._value(name)
-                self._known[name] = Name(name) if value is None else rebuild(value, self._name)
+                self._known[name] = Name(name) if value is None else self(value)
         return self._known[item.name]
 
     def _value(self, name: str) -> Expression | None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from decimal import Decimal
 from typing import TYPE_CHECKING
 
 from acsolve.report.number import plain
@@ -85,7 +86,7 @@ def fraction(head: str, top: str, bottom: str, *, width: int = WIDTH) -> list[st
     return [*hung(head, first, width=width), *hung(f"{left}/ ", second, width=width)]
 
 
-def numeric_polynomial(values: tuple[complex, ...]) -> str:
+def numeric_polynomial(values: tuple[complex | Decimal, ...]) -> str:
     """A polynomial in s with numbers of six digits, the lowest power first."""
     text = ""
     for power, value in enumerate(values):
@@ -98,7 +99,7 @@ def numeric_polynomial(values: tuple[complex, ...]) -> str:
     return text or "0"
 
 
-def _term(value: complex, power: int) -> str:
+def _term(value: complex | Decimal, power: int) -> str:
     size = _coefficient(value)
     if power == 0:
         return size
@@ -106,7 +107,9 @@ def _term(value: complex, power: int) -> str:
     return variable if size == "1" else f"{size}*{variable}"
 
 
-def _coefficient(value: complex) -> str:
+def _coefficient(value: complex | Decimal) -> str:
+    if isinstance(value, Decimal):
+        return plain(value)
     if value.imag == 0:
         return plain(value.real)
     sign = "-" if value.imag < 0 else "+"

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from decimal import Decimal
 from math import floor, inf, isfinite, isnan, log10, pi
 
 DIGITS = 6
@@ -23,8 +24,11 @@ _SMALLEST, _LARGEST = min(_PREFIXES), max(_PREFIXES)
 _SMALLEST_NORMAL = 1e-300  # below it 10**exponent itself loses digits
 
 
-def plain(value: float, digits: int = DIGITS) -> str:
-    """A number without a unit: `0.805153`, `1.2e-5`, `infinite`."""
+def plain(value: float | Decimal, digits: int = DIGITS) -> str:
+    """A number without a unit: `0.805153`, `1.2e-5`, `infinite`; a decimal is of any size."""
+    if isinstance(value, Decimal):
+        mantissa, exponent = f"{value:.{digits - 1}e}".lower().split("e")
+        return f"{mantissa.rstrip('0').rstrip('.')}e{int(exponent)}"
     odd = _odd(value)
     if odd is not None:
         return odd
@@ -70,7 +74,7 @@ def _scaled(value: float, digits: int) -> tuple[str, int]:
 
 def _exponent(value: float) -> int:
     """Decimal exponent of a number, exact also next to powers of ten."""
-    return int(f"{abs(value):.17e}".split("e")[1])
+    return int(f"{abs(value):.15e}".split("e")[1])
 
 
 def _shifted(value: float, power: int, digits: int) -> str:

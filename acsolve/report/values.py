@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from decimal import Decimal
 from math import inf, nan
 from typing import TYPE_CHECKING, Any
 
@@ -20,10 +21,13 @@ _BITS = 256
 
 @dataclass(frozen=True, slots=True)
 class Coefficients:
-    """Numerator and denominator by rising power of s; the denominator's lowest is 1."""
+    """Numerator and denominator by rising power of s; the denominator's lowest is 1.
 
-    top: tuple[complex, ...]
-    bottom: tuple[complex, ...]
+    A coefficient beyond a double's range is a decimal.
+    """
+
+    top: tuple[complex | Decimal, ...]
+    bottom: tuple[complex | Decimal, ...]
 
 
 def coefficients(form: ClosedForm) -> Coefficients | None:
@@ -39,8 +43,8 @@ def coefficients(form: ClosedForm) -> Coefficients | None:
         if unit.contains(0):
             return None
         return Coefficients(
-            tuple(as_complex(value / unit) for value in first),
-            tuple(as_complex(value / unit) for value in second),
+            tuple(_wide(value / unit) for value in first),
+            tuple(_wide(value / unit) for value in second),
         )
 
 
@@ -55,6 +59,16 @@ def balls(form: ClosedForm, polynomials: list[Polynomial]) -> list[Any] | None:
     except EquationError:
         return None
     return [evaluate_polynomial(item, points, arithmetic) for item in polynomials]
+
+
+def _wide(ball: Any) -> complex | Decimal:
+    """A number of any size: a double where it fits, else a decimal of ten digits."""
+    found = as_complex(ball)
+    lost = found == 0 and not ball.contains(0)
+    if not lost and abs(found) < inf:
+        return found
+    mantissa, _, exponent = ball.real.mid().mid_rad_10exp(10)
+    return Decimal(int(mantissa)).scaleb(int(exponent))
 
 
 def as_complex(ball: Any) -> complex:
@@ -95,15 +109,16 @@ def standard_numbers(form: ClosedForm, names: Mapping[str, object]) -> dict[str,
     found = coefficients(form)
     if found is None or any(value.imag for value in found.bottom):
         return {}
-    bottom = [value.real for value in found.bottom]
+    top = [complex(value) for value in found.top]
+    bottom = [float(value.real) for value in found.bottom]
     numbers: dict[str, complex] = {}
     if len(bottom) == 2:
         numbers = {"tau": bottom[1], "w0": 1 / bottom[1]}
     elif len(bottom) == 3 and bottom[2] > 0:
         numbers = {"w0": bottom[2] ** -0.5}
         numbers["q"] = bottom[2] ** 0.5 / bottom[1] if bottom[1] else inf
-    present = [power for power, value in enumerate(found.top) if value]
+    present = [power for power, value in enumerate(top) if value]
     place = present[0] if len(present) == 1 else 0
     if place < len(bottom) and bottom[place]:
-        numbers["k"] = found.top[place] / bottom[place]
+        numbers["k"] = top[place] / bottom[place]
     return {name: numbers[name] for name in names if name in numbers}

@@ -12,10 +12,9 @@ import acsolve
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.reading import reading
 from acsolve.analyses.shape import standard_form
-
-from ..strategies import any_lumped, connected, pairs
-from .readings import check, lines
-from .test_transfer_laws import asked, solved
+from tests.analyses.readings import check, lines
+from tests.analyses.test_transfer_laws import asked, solved
+from tests.strategies import any_lumped, connected, pairs
 
 SECTIONS = File(__file__).parent.parent / "published" / "sections"
 _MOST_TERMS = 24  # of numerator and denominator: SymPy compares these in well under a second
