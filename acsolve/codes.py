@@ -16,6 +16,7 @@ Code = Literal[
     "question.same-node",
     "question.no-reference",
     "question.no-value",
+    "question.unanswered",
     # the network as a graph
     "graph.shorted",
     "graph.voltage-loop",

@@ -241,6 +241,15 @@ class Circuit:
             )
         return replace(self, netlist=with_variant(self.netlist, name))
 
+    def problems(self, *asked: Pair) -> tuple[Diagnostic, ...]:
+        """What is wrong or odd about the network as a graph, quickly and without its modes.
+
+        `asked` names pairs that a question uses, whose open ends are meant.
+        """
+        from acsolve.circuit.check import check
+
+        return check(self.netlist, asked=asked)
+
     def check(self) -> CheckAnswer:
         """Does the circuit make sense: order, natural modes, every problem found."""
         from acsolve.analyses.check import check_answer

@@ -34,6 +34,7 @@ def test_makes_sense(path: Path) -> None:
     assert not circuit.warnings
     answer = circuit.check()
     assert answer.ok, [item.message for item in answer.problems]
+    assert all(item.severity == "note" for item in answer.problems)
     assert circuit.netlist.remarks, "a shipped circuit says what it is for"
     assert all(modes.stable is not False for modes in answer.modes)
 

@@ -64,7 +64,7 @@ class CheckAnswer:
 
 def check_answer(netlist: Netlist, remarks: Iterable[Diagnostic] = ()) -> CheckAnswer:
     """Everything that can be said about a circuit before it is asked anything."""
-    problems = [*remarks, *check(netlist)]
+    problems = [*remarks, *check(netlist), *_unanswered(netlist)]
     for question in netlist.questions:
         problems += _question_problems(netlist, question)
     asks = _ways_of_driving(netlist)
@@ -77,6 +77,25 @@ def check_answer(netlist: Netlist, remarks: Iterable[Diagnostic] = ()) -> CheckA
         problems += _one_pole_instabilities(netlist, asks, modes)
     ordered = sorted(_distinct(problems), key=lambda item: item.sort_key)
     return CheckAnswer(netlist.title, netlist.nodes(), netlist.parts, modes, tuple(ordered))
+
+
+_ANSWERED = frozenset({"transfer", "impedance", "cutoff", "sweep"})
+
+
+def _unanswered(netlist: Netlist) -> list[Diagnostic]:
+    """Questions and goals that the format knows and no command answers yet."""
+    found = [(item.kind, item.span) for item in netlist.questions if item.kind not in _ANSWERED]
+    found += [("goal", item.span) for item in netlist.goals]
+    return [
+        Diagnostic(
+            code="question.unanswered",
+            severity="note",
+            message=f"this version reads and keeps `{word}` lines, but does not answer them",
+            span=span,
+            hint="It answers transfer, impedance, cutoff and sweep.",
+        )
+        for word, span in found
+    ]
 
 
 def _question_problems(netlist: Netlist, question: Question) -> Iterable[Diagnostic]:

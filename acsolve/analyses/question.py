@@ -51,6 +51,11 @@ class Ask:
         return _DIMENSIONS[self.quantity]
 
     @property
+    def pairs(self) -> tuple[Pair, ...]:
+        """The pairs that the question uses."""
+        return (self.target,) if self.source is None else (self.source, self.target)
+
+    @property
     def observes_current(self) -> bool:
         """Whether a current is observed: through a short, or that of an ammeter."""
         return self.quantity in _OBSERVES_CURRENT or self.ammeter is not None

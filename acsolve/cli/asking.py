@@ -6,6 +6,8 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any, TypeVar
 
+import click
+
 import acsolve
 from acsolve import AcsolveError, AnalysisError, Circuit, Diagnostic, Path
 from acsolve.cli.complaint import report
@@ -49,8 +51,23 @@ def heading(circuit: Circuit, options: Options) -> Heading:
         title=circuit.title,
         variant=circuit.variant,
         cautions=circuit.cautions,
-        warnings=circuit.warnings,
+        warnings=(*circuit.warnings, *_problems(circuit, options)),
     )
+
+
+def _problems(circuit: Circuit, options: Options) -> tuple[Diagnostic, ...]:
+    """What looks wrong with the network itself, told in one line; `check` tells the rest."""
+    named = [text for text in (options.source, options.target, options.into) if text]
+    try:
+        pairs = [circuit.pair(text) for text in named]
+    except AcsolveError:
+        return ()  # the question itself is refused, with its own words
+    found = tuple(item for item in circuit.problems(*pairs) if item.severity != "note")
+    if found and not options.as_json:
+        more = f", and {len(found) - 1} more" if len(found) > 1 else ""
+        text = f"{found[0].severity}: {found[0].message}{more}"
+        click.echo(f"{text}\n  acsolve check {options.file} tells more.", err=True)
+    return found
 
 
 def with_remarks(shared: Heading, path: Path, options: Options) -> Heading:
