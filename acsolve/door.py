@@ -9,8 +9,9 @@ import os
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 from fractions import Fraction
-from typing import TYPE_CHECKING, Any, Literal
+from typing import TYPE_CHECKING, Any, Literal, get_args
 
+from acsolve.circuit.expression import names
 from acsolve.circuit.netlist import (
     Band,
     Level,
@@ -18,12 +19,27 @@ from acsolve.circuit.netlist import (
     Pair,
     QuantityName,
     Question,
+    with_absent,
     with_values,
     with_variant,
 )
 from acsolve.circuit.value import Value
 from acsolve.errors import AnalysisError, CircuitError, Diagnostic, EquationError
-from acsolve.given import level_of, pair_of, reference_of, value_for
+from acsolve.given import (
+    band_of,
+    edges_of,
+    frequencies_of,
+    level_of,
+    names_of,
+    number_of,
+    pair_of,
+    reference_of,
+    refuse,
+    share_of,
+    texts_of,
+    value_for,
+    values_of,
+)
 
 if TYPE_CHECKING:
     import numpy as np
@@ -41,19 +57,34 @@ if TYPE_CHECKING:
     from acsolve.analyses.transfer import TransferAnswer
 
 PairLike = str | tuple[str, str]
+BandLike = str | tuple[float, float]
 ReferenceLike = Literal["dc", "infinity", "peak"] | float | Fraction | str
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, repr=False)
 class Circuit:
     """A circuit, immutable; changing a value returns a new one that shares the rest.
 
     Made by `acsolve.read`, `acsolve.parse` or `acsolve.Draft`. `warnings` are what the
-    reader remarked without refusing the file.
+    reader remarked without refusing the file. `netlist` is the circuit as data, to be read
+    and never written to; `drawn` is the same without the variant, None where they agree, and
+    `given` holds the values that `with_values` set.
     """
 
     netlist: Netlist
-    warnings: tuple[Diagnostic, ...] = field(default=(), compare=False, repr=False)
+    warnings: tuple[Diagnostic, ...] = field(default=(), compare=False)
+    drawn: Netlist | None = field(default=None, compare=False)
+    given: Mapping[str, Value] = field(default_factory=dict, compare=False)
+
+    def __repr__(self) -> str:
+        title = "" if self.title is None else f'"{self.title}"'
+        variant = "" if self.variant is None else f'variant "{self.variant}"'
+        head = ", ".join(text for text in (title, variant) if text)
+        size = f"{_count(len(self.parts), 'part')}, {_count(len(self.nodes), 'node')}"
+        return f"Circuit({head}: {size})" if head else f"Circuit({size})"
+
+    def __hash__(self) -> int:
+        return hash((self.title, self.variant, self.parts))
 
     @property
     def title(self) -> str | None:
@@ -106,16 +137,29 @@ class Circuit:
             None lets the file's own sources act.
         target : likewise; or leave it out and name an `ammeter`.
         quantity : `voltage-ratio` (default), `current-ratio`, `transimpedance` or
+            `transadmittance`; with an `ammeter` `current-ratio` (default) or
             `transadmittance`.
 
         Raises
         ------
         AnalysisError
-            [question.unknown-node], [question.same-node].
+            [question.same-node] a pair is one node, or the driven pair is the observed one;
+            [question.no-pair] a pair is missing or none; [question.unknown-name] there is no
+            such ammeter; [option.value] the quantity is unknown or does not fit.
+        AcsolveError
+            [name.unknown-node] a node does not occur; codes of the text format for a text
+            that is no pair.
         """
         from acsolve.analyses.question import transfer_ask
 
+        _check_quantity(quantity, ammeter)
         driven = None if source is None else self.pair(source)
+        if target is not None and ammeter is not None:
+            raise refuse(
+                "option.value",
+                "both a target and an ammeter say where the answer is observed",
+                "Leave one of them out.",
+            )
         if target is None and ammeter is None:
             raise AnalysisError(
                 Diagnostic(
@@ -125,6 +169,12 @@ class Circuit:
                 )
             )
         observed = self._ammeter_pair(ammeter) if target is None else self.pair(target)
+        if driven == observed and ammeter is None and quantity != "transimpedance":
+            raise refuse(
+                "question.same-node",
+                f"the pair ({observed[0]}, {observed[1]}) is both driven and observed",
+                "Observe another pair, or ask for the impedance by looking_into.",
+            )
         ask = transfer_ask(self.netlist, driven, observed, quantity=quantity, ammeter=ammeter)
         return Path(self, ask)
 
@@ -136,6 +186,8 @@ class Circuit:
 
     def asked(self, question: Question) -> Path:
         """The path that an `ask` line of the file speaks of."""
+        if not isinstance(question, Question):
+            raise refuse("option.value", f"{question!r} is no question", "Give one of `questions`.")
         if question.kind == "impedance":
             return self.looking_into(question.target)
         target = None if question.ammeter else question.target
@@ -145,68 +197,49 @@ class Circuit:
 
     def level(self, level: Level) -> Fraction | None:
         """A level of an `ask` line in decibels, None for half power."""
-        return None if level.decibel is None else self._number(level.decibel)
+        return None if level.decibel is None else number_of(level.decibel, self.netlist)
 
     def band(self, band: Band) -> tuple[float, float]:
         """Lowest and highest frequency of an `ask` line's band, in hertz."""
-        return float(self._number(band.low)), float(self._number(band.high))
+        return edges_of(band, self.netlist)
 
     def frequencies(
-        self, text: str, *, points: str | int | None = None, linear: bool = False
+        self, hertz: ArrayLike | str, *, points: str | int | None = None, linear: bool = False
     ) -> NDArray[np.float64]:
-        """Frequencies in hertz from a band ("10 Hz .. 1 MHz") or a list ("50 Hz, 60 Hz").
+        """Frequencies in hertz from a band ("10 Hz .. 1 MHz"), a list ("50 Hz, 60 Hz"), numbers.
 
         Parameters
         ----------
         points : with a band: "50/decade" (default) or a number of points.
-        linear : even steps instead of even ratios.
+        linear : with a band: even steps instead of even ratios.
 
         Raises
         ------
         AnalysisError
-            [sweep.band], [sweep.points]; codes of the text format for the text.
+            [sweep.band], [sweep.points].
+        TextError
+            codes of the text format for a text that does not read.
         """
-        from acsolve.analyses.grid import explicit
-        from acsolve.text import parse_frequencies
+        return frequencies_of(hertz, self.netlist, points=points, linear=linear)
 
-        if ".." not in text:
-            found = parse_frequencies(text, netlist=self.netlist)
-            return explicit([self._number(value) for value in found])
-        return _grid(self.edges(text), points, linear=linear)
-
-    def edges(self, text: str) -> HertzBand:
-        """The edges of a band given as text ("10 Hz .. 1 MHz"), exact."""
-        from acsolve.analyses.grid import HertzBand
-        from acsolve.text import parse_band
-
-        band = parse_band(text, netlist=self.netlist)
-        return HertzBand(self._number(band.low), self._number(band.high))
-
-    def _number(self, value: Value) -> Fraction:
-        """A value of this circuit as a number: exact where it is stated as one."""
-        from acsolve.circuit.expression import Number
-        from acsolve.circuit.netlist import bindings
-        from acsolve.equations.evaluate import Evaluator, FloatArithmetic
-
-        assert value.expression is not None, "a question states its numbers"
-        if isinstance(value.expression, Number):
-            return value.expression.value
-        evaluate = Evaluator(bindings(self.netlist), FloatArithmetic())
-        return Fraction(float(evaluate(value.expression)))
+    def edges(self, band: BandLike) -> HertzBand:
+        """The edges of a band given as text ("10 Hz .. 1 MHz") or two numbers, exact."""
+        return band_of(band, self.netlist)
 
     def pair(self, text: PairLike) -> Pair:
-        """A pair of nodes from a node's name, "a,b", a tuple or a port's name."""
+        """A pair of nodes from a node's name, "a,b", two names or a port's name."""
         return pair_of(text, self.netlist)
 
     def _ammeter_pair(self, name: str | None) -> Pair:
         part = self.netlist.part(name or "")
         if part is None or part.kind != "ammeter":
-            raise AnalysisError(
-                Diagnostic(
-                    code="question.unknown-name",
-                    message=f"there is no ammeter {name} in this circuit",
-                    hint="Name a part of kind ammeter.",
-                )
+            known = [part.name for part in self.netlist.parts if part.kind == "ammeter"]
+            raise refuse(
+                "question.unknown-name",
+                f"there is no ammeter {name} in this circuit",
+                f"The ammeters are {', '.join(known[:12])}."
+                if known
+                else "Put a part of kind ammeter where the current flows.",
             )
         return part.nodes[0], part.nodes[1]
 
@@ -214,24 +247,41 @@ class Circuit:
         """A new circuit with other values: `with_values(R1="2k2", C1=10e-9)`.
 
         A text is read as the file format writes values; a number is in SI units. Names
-        that Python cannot spell go in a mapping: `with_values({"N1[7].C": "2 nF"})`.
+        that Python cannot spell go in a mapping: `with_values({"N1[7].C": "2 nF"})`. The
+        variant stays, and these values win over those of any variant taken later.
 
         Raises
         ------
         AcsolveError
-            [question.unknown-name] no such part or quantity; codes of the text format for
+            [question.unknown-name] no such part or quantity; [option.value] what is neither
+            a text nor a finite number; codes of the text format for
             a value that does not read or has the wrong unit.
         """
-        given = {**(values or {}), **named}
+        given = values_of(values, named)
         changed = {name: value_for(name, value, self.netlist) for name, value in given.items()}
-        return replace(self, netlist=with_values(self.netlist, changed))
+        return replace(
+            self,
+            netlist=with_values(self.netlist, changed),
+            drawn=None if self.drawn is None else with_values(self.drawn, changed),
+            given={**self.given, **changed},
+        )
 
     def with_variant(self, name: str | None) -> Circuit:
-        """The circuit as its variant of that name says; None for the circuit as drawn."""
+        """The circuit as its variant of that name says; None for the circuit as drawn.
+
+        It always starts from the circuit as drawn, so variants do not add up. Values set by
+        `with_values` stay, and win where the variant names them too.
+
+        Raises
+        ------
+        CircuitError
+            [variant.unknown] there is no such variant.
+        """
+        drawn = self.netlist if self.drawn is None else self.drawn
         if name is None:
-            return self
-        if name not in self.netlist.variants:
-            known = ", ".join(f'"{item}"' for item in self.netlist.variants) or "none"
+            return replace(self, netlist=drawn, drawn=None)
+        if not isinstance(name, str) or name not in drawn.variants:
+            known = ", ".join(f'"{item}"' for item in drawn.variants) or "none"
             raise CircuitError(
                 Diagnostic(
                     code="variant.unknown",
@@ -239,16 +289,37 @@ class Circuit:
                     hint=f"The variants are: {known}.",
                 )
             )
-        return replace(self, netlist=with_variant(self.netlist, name))
+        netlist = with_variant(drawn, name)
+        if self.given:
+            netlist = with_values(netlist, self.given)
+        return replace(self, netlist=netlist, drawn=drawn)
 
-    def problems(self, *asked: Pair) -> tuple[Diagnostic, ...]:
-        """What is wrong or odd about the network as a graph, quickly and without its modes.
+    def without(self, *parts: str) -> Circuit:
+        """The circuit with those parts not fitted, as drawn and in every variant.
 
-        `asked` names pairs that a question uses, whose open ends are meant.
+        Raises
+        ------
+        AnalysisError
+            [question.unknown-name] there is no such part.
+        CircuitError
+            [name.absent] a value that stays is made of a part that goes.
         """
-        from acsolve.circuit.check import check
+        gone = frozenset(texts_of(parts, "names of parts"))
+        unknown = sorted(gone - set(self.parts))
+        if unknown:
+            from difflib import get_close_matches
 
-        return check(self.netlist, asked=asked)
+            near = get_close_matches(unknown[0], self.parts, n=1)
+            raise refuse(
+                "question.unknown-name",
+                f"there is no part {unknown[0]} in this circuit",
+                f"Did you mean {near[0]}?" if near else "Name parts of the circuit.",
+            )
+        drawn = None if self.drawn is None else with_absent(self.drawn, gone)
+        for netlist in (self.netlist, drawn):
+            if netlist is not None:
+                _refuse_missing(netlist, gone)
+        return replace(self, netlist=with_absent(self.netlist, gone), drawn=drawn)
 
     def check(self) -> CheckAnswer:
         """Does the circuit make sense: order, natural modes, every problem found."""
@@ -261,21 +332,31 @@ class Circuit:
         source: PairLike | None = None,
         *,
         symbolic: bool = False,
-        keep: Iterable[str] = (),
+        keep: str | Iterable[str] = (),
     ) -> Equations:
         """The modified nodal equations, driven by a voltage E at a pair or by own sources."""
         from acsolve.analyses.equations import equations
 
         drive = None if source is None else self.pair(source)
-        return equations(self.netlist, drive=drive, symbols=_symbols(symbolic, keep))
+        return equations(self.netlist, drive=drive, symbols=_symbols(symbolic, keep, self.netlist))
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, repr=False)
 class Path:
     """A question put to a circuit; its methods are the answers."""
 
     circuit: Circuit
     ask: Ask
+
+    def __repr__(self) -> str:
+        ask = self.ask
+        into = f"({ask.target[0]}, {ask.target[1]})"
+        if ask.quantity == "impedance":
+            return f"Path(impedance into {into})"
+        to = into if ask.ammeter is None else ask.ammeter
+        if ask.source is None:
+            return f"Path({ask.quantity} at {to})"
+        return f"Path({ask.quantity} from ({ask.source[0]}, {ask.source[1]}) to {to})"
 
     def problems(self) -> tuple[Diagnostic, ...]:
         """What stands against the question, errors and warnings, found from the graph alone."""
@@ -291,14 +372,15 @@ class Path:
         )
 
     def closed_form(
-        self, *, symbolic: bool = False, keep: Iterable[str] = (), budget: int | None = None
+        self, *, symbolic: bool = False, keep: str | Iterable[str] = (), budget: int | None = None
     ) -> ClosedForm:
         """The exact closed form, checked against an independent numeric solution.
 
         Parameters
         ----------
         symbolic : ignore all numbers: every part is its own symbol.
-        keep : names of parts and quantities that stay symbols, the others take their values.
+        keep : names of parts and quantities that stay symbols ("R1, C1", or several texts),
+            the others take their values.
         budget : the most terms that may be held at once, default four million.
 
         Raises
@@ -312,11 +394,11 @@ class Path:
         return closed_form(
             self.circuit.netlist,
             self.ask,
-            _symbols(symbolic, keep),
-            budget=DEFAULT_BUDGET if budget is None else budget,
+            _symbols(symbolic, keep, self.circuit.netlist),
+            budget=DEFAULT_BUDGET if budget is None else _checked_budget(budget),
         )
 
-    def nested_form(self, *, symbolic: bool = False, keep: Iterable[str] = ()) -> NestedForm:
+    def nested_form(self, *, symbolic: bool = False, keep: str | Iterable[str] = ()) -> NestedForm:
         """The closed form as named steps, for networks too large to multiply out.
 
         Raises
@@ -326,13 +408,15 @@ class Path:
         """
         from acsolve.analyses.nested import nested_form
 
-        return nested_form(self.circuit.netlist, self.ask, _symbols(symbolic, keep))
+        return nested_form(
+            self.circuit.netlist, self.ask, _symbols(symbolic, keep, self.circuit.netlist)
+        )
 
     def transfer(
         self,
         *,
         symbolic: bool = False,
-        keep: Iterable[str] = (),
+        keep: str | Iterable[str] = (),
         budget: int | None = None,
         nested: bool = False,
     ) -> TransferAnswer:
@@ -345,19 +429,21 @@ class Path:
         form = form_within(
             self.circuit.netlist,
             self.ask,
-            _symbols(symbolic, keep),
-            budget=DEFAULT_BUDGET if budget is None else budget,
+            _symbols(symbolic, keep, self.circuit.netlist),
+            budget=DEFAULT_BUDGET if budget is None else _checked_budget(budget),
             as_nested=nested,
         )
         return transfer_answer(form)
 
-    def assume(self, assumptions: str | Iterable[str], *, band: str | None = None) -> Approximation:
+    def assume(
+        self, assumptions: str | Iterable[str], *, band: BandLike | None = None
+    ) -> Approximation:
         """The closed form to leading order in assumed small ratios, with its error.
 
         Parameters
         ----------
         assumptions : "R2 >> R1", or several, with commas or as several texts.
-        band : where the error is measured ("10 Hz .. 1 MHz"); by default from a decade
+        band : where the error is measured ("10 Hz .. 1 MHz", or two numbers in hertz); by default from a decade
             below the lowest to a decade above the highest natural frequency.
 
         Raises
@@ -367,34 +453,38 @@ class Path:
         """
         from acsolve.analyses.approximate import assume
 
+        wanted = texts_of(assumptions, "assumptions")
         edges = None if band is None else self.circuit.edges(band)
         form = self.closed_form(symbolic=True)
-        return assume(form, assumptions, netlist=self.circuit.netlist, band=edges)
+        return assume(form, wanted, netlist=self.circuit.netlist, band=edges)
 
     def simplify(
-        self, band: str, *, within: float = 0.01, tolerances: bool = True
+        self, band: BandLike, *, within: float | str = 0.01, tolerances: bool = True
     ) -> Approximation:
         """The closed form without the terms that hardly change the response over a band.
 
         Parameters
         ----------
-        band : "10 Hz .. 1 MHz".
-        within : the largest relative change of the response, 0.01 for 1 %.
+        band : "10 Hz .. 1 MHz", or two numbers in hertz.
+        within : the largest relative change of the response, 0.01 or "1%" for 1 %.
         tolerances : whether that holds over the tolerances of the parts too.
 
         Raises
         ------
+        AnalysisError
+            [sweep.band] it is no band; [option.value] `within` is no share below one.
         EquationError
             [question.no-value] a part has no value.
         """
         from acsolve.analyses.approximate import simplify
 
+        edges, share = self.circuit.edges(band), share_of(within)
         form = self.closed_form(symbolic=True)
         return simplify(
             form,
             self.circuit.netlist,
-            band=self.circuit.edges(band),
-            within=within,
+            band=edges,
+            within=share,
             tolerances=tolerances,
         )
 
@@ -404,7 +494,7 @@ class Path:
         *,
         reference: ReferenceLike | None = None,
         symbolic: bool = False,
-        keep: Iterable[str] = (),
+        keep: str | Iterable[str] = (),
     ) -> CutoffAnswer:
         """Every frequency where the gain crosses a level below its reference.
 
@@ -417,15 +507,17 @@ class Path:
         Raises
         ------
         AnalysisError
-            [question.no-reference], [question.no-value], [equations.not-rational].
+            [question.no-reference], [question.no-value], [equations.not-rational];
+            [option.value] the level or the reference is no finite number.
         """
         from acsolve.analyses.cutoff import cutoffs
 
+        wanted, counted = level_of(level), reference_of(reference)
         form = self.closed_form(symbolic=symbolic, keep=keep)
         return cutoffs(
             form,
-            level=level_of(level),
-            reference=reference_of(reference),
+            level=wanted,
+            reference=counted,
             formula=self._formula(form),
         )
 
@@ -442,17 +534,21 @@ class Path:
                 raise
             return None
 
-    def response(self, hertz: ArrayLike) -> NDArray[np.complex128]:
+    def response(self, hertz: ArrayLike | str) -> NDArray[np.complex128]:
         """The complex response at frequencies in hertz; any shape in, the same shape out.
+
+        A text is read as `sweep` reads it.
 
         Raises
         ------
+        AnalysisError
+            [sweep.band] they are no finite frequencies from 0 Hz upwards.
         EquationError
             [question.no-value] a part has no value.
         """
         from acsolve.analyses.sweep import response
 
-        return response(self.circuit.netlist, self.ask, hertz)
+        return response(self.circuit.netlist, self.ask, self.circuit.frequencies(hertz))
 
     def sweep(
         self, hertz: ArrayLike | str, *, points: str | int | None = None, linear: bool = False
@@ -476,48 +572,67 @@ class Path:
         from acsolve.analyses.sweep import sweep
 
         circuit = self.circuit
-        frequencies = (
-            circuit.frequencies(hertz, points=points, linear=linear)
-            if isinstance(hertz, str)
-            else hertz
-        )
+        frequencies = circuit.frequencies(hertz, points=points, linear=linear)
         return sweep(circuit.netlist, self.ask, frequencies)
-
-
-_LINEAR_POINTS = 501  # where an even grid is asked for without a number
-
-
-def _grid(band: HertzBand, points: str | int | None, *, linear: bool) -> NDArray[np.float64]:
-    """A grid over a band; points are a number, or a text such as "50/decade"."""
-    from acsolve.analyses import grid
-
-    text = str(points).replace(" ", "") if points is not None else ""
-    count, sign, word = text.partition("/")
-    wrong = points is not None and not (count.isdecimal() and count.isascii() and len(count) < 9)
-    if wrong or (sign and (word != "decade" or linear)):
-        raise AnalysisError(
-            Diagnostic(
-                code="sweep.points",
-                message=f"{points} is no number of points" + (" of an even grid" * linear),
-                hint="Write 200 for so many in all"
-                + ("." if linear else ", or 50/decade for so many in each decade."),
-            )
-        )
-    if linear:
-        return grid.linear(band, points=int(count or _LINEAR_POINTS))
-    if sign:
-        return grid.logarithmic(band, per_decade=int(count))
-    return grid.logarithmic(band, points=int(count) if count else None)
 
 
 _SECOND_ORDER = 2
 _LARGEST_FORMULA = 2_000  # terms; the closed form of a larger network is no longer read
 
 
-def _symbols(symbolic: bool, keep: Iterable[str]) -> Any:
+def _count(number: int, word: str) -> str:
+    return f"{number} {word}" + "s" * (number != 1)
+
+
+def _check_quantity(quantity: Any, ammeter: Any) -> None:
+    """Refuse a quantity that is none, or that no ammeter observes."""
+    known = get_args(QuantityName)
+    listed = f"{', '.join(known[:-1])} and {known[-1]}"
+    if quantity is not None and not (isinstance(quantity, str) and quantity in known):
+        raise refuse(
+            "option.value", f"there is no quantity {quantity}", f"The quantities are {listed}."
+        )
+    if ammeter is not None and quantity in ("voltage-ratio", "transimpedance"):
+        raise refuse(
+            "option.value",
+            f"an ammeter observes a current, and {quantity} asks for a voltage",
+            "Ask for current-ratio or transadmittance, or name a pair of nodes.",
+        )
+
+
+def _refuse_missing(netlist: Netlist, gone: frozenset[str]) -> None:
+    """Refuse to leave out a part that a value which stays is made of."""
+    for name, value in netlist.values():
+        if value.expression is None or name in gone or name.rpartition(".")[0] in gone:
+            continue
+        for inner in sorted(names(value.expression)):
+            if inner in gone or inner.rpartition(".")[0] in gone:
+                raise CircuitError(
+                    Diagnostic(
+                        code="name.absent",
+                        message=f"{name} is made of {inner}, which is not fitted",
+                        hint=f"Give {name} another value first.",
+                    )
+                )
+
+
+def _checked_budget(budget: Any) -> int:
+    if isinstance(budget, bool) or not isinstance(budget, int) or budget < 1:
+        raise refuse(
+            "option.value", f"{budget!r} is no number of terms", "Give a whole number from 1."
+        )
+    return budget
+
+
+def _check_text(given: Any, what: str, hint: str) -> None:
+    if not isinstance(given, str):
+        raise refuse("option.value", f"{what} is a text, got {type(given).__name__}", hint)
+
+
+def _symbols(symbolic: bool, keep: str | Iterable[str], netlist: Netlist) -> Any:
     from acsolve.equations.exact import Symbols
 
-    return Symbols(symbolic=symbolic, keep=frozenset(keep))
+    return Symbols(symbolic=symbolic, keep=names_of(keep, netlist))
 
 
 def read(path: str | os.PathLike[str], *, variant: str | None = None) -> Circuit:
@@ -527,9 +642,13 @@ def read(path: str | os.PathLike[str], *, variant: str | None = None) -> Circuit
     ------
     TextError, CircuitError
         with every problem of the file that can be found in one go.
+    AnalysisError
+        [option.value] the path is none.
     """
     from acsolve.text import read as read_text
 
+    name = os.fspath(path) if isinstance(path, os.PathLike) else path
+    _check_text(name, "the path of a file", "Give the file's name, as a text or a path.")
     reading = read_text(path)
     return Circuit(reading.netlist, reading.warnings).with_variant(variant)
 
@@ -549,5 +668,7 @@ def parse(text: str, *, name: str = "text", variant: str | None = None) -> Circu
     """
     from acsolve.text import parse as parse_text
 
+    _check_text(text, "a circuit", "Give the circuit as a text; decode bytes first.")
+    _check_text(name, "the name of a circuit", "Give a text, which messages will show.")
     reading = parse_text(text, name=name)
     return Circuit(reading.netlist, reading.warnings).with_variant(variant)

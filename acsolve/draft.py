@@ -5,7 +5,9 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
+
+from acsolve.given import exact, refuse, values_of
 
 if TYPE_CHECKING:
     from acsolve.door import Circuit
@@ -16,6 +18,9 @@ ValueLike = str | int | float | Fraction
 @dataclass(frozen=True, slots=True)
 class Draft:
     """A circuit being written down; each method returns a longer draft.
+
+    Values are texts of the format or finite numbers in SI units; every item stays on its
+    line. What is neither is refused at once with [option.value].
 
     Examples
     --------
@@ -34,39 +39,53 @@ class Draft:
     title: str | None = None
     lines: tuple[str, ...] = ()
 
+    def __post_init__(self) -> None:
+        """Refuse a title that is no text of one line."""
+        if self.title is not None:
+            _line(self.title, "a title")
+
     def chain(self, *items: str) -> Draft:
         """Nodes and arms in turn, as a chain of the text format: node, arm, node, …"""
-        return self._with(" -- ".join(items))
+        if not items:
+            raise refuse(
+                "option.value", "a chain has no items", 'Give nodes and arms: "in", "R1", "out".'
+            )
+        return self._with(" -- ".join(_line(item, "an item of a chain") for item in items))
 
     def part(self, name: str, kind: str, /, **settings: ValueLike) -> Draft:
         """A part of a named kind with its terminals and attributes."""
         inside = ", ".join(f"{key} = {_text(value)}" for key, value in settings.items())
-        return self._with(f"{name} : {kind}({inside})")
+        return self._with(f"{_line(name, 'a name')} : {_line(kind, 'a kind')}({inside})")
 
     def values(self, values: Mapping[str, ValueLike] | None = None, /, **named: ValueLike) -> Draft:
         """Values of parts, as texts of the format or numbers in SI units."""
-        given = {**(values or {}), **named}
+        given = values_of(values, named)
         lines = tuple(f"{name} = {_text(value)}" for name, value in given.items())
         return Draft(self.title, self.lines + lines)
 
     def quantity(self, name: str, value: ValueLike | None = None) -> Draft:
         """A named quantity, or a declared symbol where no value is given."""
+        _line(name, "a name")
         return self._with(f"let {name}" if value is None else f"let {name} = {_text(value)}")
 
     def couple(self, *inductors: str, coefficient: ValueLike) -> Draft:
         """Couple inductors, every pair of them."""
-        return self._with(f"couple {', '.join(inductors)} = {_text(coefficient)}")
+        return self._with(
+            f"couple {', '.join(_line(item, 'a name') for item in inductors)} = {_text(coefficient)}"
+        )
 
     def statement(self, line: str) -> Draft:
         """Any line of the text format."""
         return self._with(line)
 
     def _with(self, line: str) -> Draft:
-        return Draft(self.title, (*self.lines, line))
+        return Draft(self.title, (*self.lines, _line(line, "a line")))
 
     def text(self) -> str:
         """The draft in the text format."""
-        head = () if self.title is None else (f'title "{self.title}"',)
+        from acsolve.text.write import text_literal
+
+        head = () if self.title is None else (f"title {text_literal(self.title)}",)
         return "\n".join((*head, *self.lines)) + "\n"
 
     def circuit(self) -> Circuit:
@@ -82,9 +101,24 @@ class Draft:
         return parse(self.text(), name=self.title or "draft")
 
 
-def _text(value: ValueLike) -> str:
+def _text(value: Any) -> str:
     """A number as an exact decimal or quotient of the format; a text as it stands."""
     if isinstance(value, str):
-        return value
-    exact = Fraction(value) if not isinstance(value, float) else Fraction(repr(value))
-    return f"({exact.numerator}/{exact.denominator})" if exact.denominator != 1 else str(exact)
+        return _line(value, "a value")
+    number = exact(value)
+    if number.denominator == 1:
+        return str(number)
+    return f"({number.numerator}/{number.denominator})"
+
+
+def _line(item: Any, what: str) -> str:
+    """The item, where it is a text that stays on its line."""
+    if not isinstance(item, str):
+        raise refuse("option.value", f"{what} is a text, got {item!r}", "Write it as a text.")
+    if len(item.splitlines()) > 1 or item.endswith(("\n", "\r")):
+        raise refuse(
+            "option.value",
+            f"{what} stands on one line, got {item!r}",
+            "Leave the line break out; each line is a statement of its own.",
+        )
+    return item

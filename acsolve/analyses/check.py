@@ -17,6 +17,7 @@ from acsolve.circuit.netlist import Netlist, Pair, Part, Question, bindings
 from acsolve.circuit.value import Value
 from acsolve.equations.exact import Symbols
 from acsolve.errors import Diagnostic, EquationError
+from acsolve.source import Span
 
 _LARGEST_EXACT = 1200  # unknowns up to which the exact characteristic polynomial is worked out
 
@@ -84,7 +85,9 @@ _ANSWERED = frozenset({"transfer", "impedance", "cutoff", "sweep"})
 
 def _unanswered(netlist: Netlist) -> list[Diagnostic]:
     """Questions and goals that the format knows and no command answers yet."""
-    found = [(item.kind, item.span) for item in netlist.questions if item.kind not in _ANSWERED]
+    found: list[tuple[str, Span | None]] = [
+        (item.kind, item.span) for item in netlist.questions if item.kind not in _ANSWERED
+    ]
     found += [("goal", item.span) for item in netlist.goals]
     return [
         Diagnostic(

@@ -31,13 +31,14 @@ class Ratio:
     """Observed over driven, before common factors are removed; `driven` holds hidden modes.
 
     `lean` is the same ratio without the factors that can be seen only while square roots
-    stand as they are: none but those are removed.
+    stand as they are: none but those are removed. `size` is the number of unknowns.
     """
 
     basis: Basis
     observed: Polynomial
     driven: Polynomial
     lean: tuple[Polynomial, Polynomial]
+    size: int
 
 
 DEFAULT_BUDGET = 4_000_000  # terms at once: about 1 GB and a few seconds (measured)
@@ -70,9 +71,10 @@ def ratio(
     if whole[1] == 0:
         raise _no_answer(ask, singular=whole[0] == 0)
     if not ring.squares:
-        return Ratio(exact.basis, *whole, whole)
+        return Ratio(exact.basis, *whole, whole, exact.columns)
     lean = cancel(top, bottom)  # of (s + r)(s - r) = s² - 2, with r the root of 2, only now
-    return Ratio(exact.basis, *whole, (ring.reduced(lean[0]), ring.reduced(lean[1])))
+    reduced = ring.reduced(lean[0]), ring.reduced(lean[1])
+    return Ratio(exact.basis, *whole, reduced, exact.columns)
 
 
 def closed_form(
@@ -103,10 +105,12 @@ def closed_form(
     chosen = symbols or Symbols()
     found = ratio(netlist, ask, chosen, budget=budget)
     form = normalised(ask, found.basis, *found.lean, bindings(netlist))
-    return replace(form, checked=check_closed_form(with_symbols(netlist, chosen), form))
+    checked = check_closed_form(with_symbols(netlist, chosen), form, size=found.size)
+    return replace(form, checked=checked)
 
 
 _LARGEST_IMAGE = 300  # unknowns up to which an image of the determinant costs little
+_SMALLEST_IMAGE = 24  # below it multiplying out costs no more than the image
 
 
 def _refuse_early(
@@ -118,7 +122,7 @@ def _refuse_early(
 ) -> None:
     """Refuse what has no answer, or too large a one, before any polynomial is multiplied."""
     observed, driven = parts
-    if not exact.basis.free_names or exact.columns > _LARGEST_IMAGE:
+    if not exact.basis.free_names or not _SMALLEST_IMAGE < exact.columns <= _LARGEST_IMAGE:
         return
     if exact.vanishes(driven):
         raise _no_answer(ask, singular=exact.vanishes(observed))

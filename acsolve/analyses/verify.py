@@ -22,6 +22,7 @@ from acsolve.equations.evaluate import (
     InexactError,
     RationalArithmetic,
 )
+from acsolve.equations.system import System
 from acsolve.errors import Diagnostic, EquationError
 
 POINTS = 3
@@ -39,11 +40,12 @@ class _Point:
     symbols: Mapping[str, Fraction]
 
 
-def check_closed_form(netlist: Netlist, form: ClosedForm) -> Checked:
+def check_closed_form(netlist: Netlist, form: ClosedForm, *, size: int) -> Checked:
     """Compare a closed form with a dense numeric solution at random points.
 
     Exactly, over the rationals, where the values allow it; else in complex balls. Large
-    networks are compared with the numeric engine, in doubles.
+    networks are compared with the numeric engine, in doubles. `size` is the number of
+    unknowns of the equations that the form came from.
 
     Raises
     ------
@@ -51,7 +53,7 @@ def check_closed_form(netlist: Netlist, form: ClosedForm) -> Checked:
         [equations.check-failed] if they differ: a defect of this program, never shown as
         an answer.
     """
-    if len(form.ask.system(netlist).unknowns) > _LARGEST_DENSE:
+    if size > _LARGEST_DENSE:
         checked, limit = _engine_check(netlist, form), _ENGINE_AGREEMENT
     else:
         checked = _exact_check(netlist, form) or _ball_check(netlist, form)
@@ -72,37 +74,42 @@ def _exact_check(netlist: Netlist, form: ClosedForm) -> Checked | None:
     """At random whole numbers, s real: equality of two rationals. None where not rational.
 
     Two different rational functions agree at a random point with a probability below
-    degree / 2**12 for each point (J. T. Schwartz, J. ACM 27 (1980),
+    degree over range, for each point (J. T. Schwartz, J. ACM 27 (1980),
     doi:10.1145/322217.322225).
     """
     if any(not isinstance(item.leaf, Name | Frequency) for item in form.basis.generators):
         return None
     large = len(form.numerator) + len(form.denominator) > _MANY_TERMS
     random = Random(20)  # noqa: S311 - reproducible points, no secret
-    count = 1 if large else POINTS
+    count, limit = (1, 1 << 16) if large else (POINTS, 1 << 12)
     try:
-        agreed = [_agrees_exactly(netlist, form, random) for _ in range(count)]
+        plain = _evaluator(netlist, RationalArithmetic(), {})
+        system = form.ask.system(netlist, branch_for=lambda part: _zero_value(part, plain))
+        points = [_random_point(form, random, limit) for _ in range(count)]
+        agreed = [_agrees_exactly(netlist, form, system, point) for point in points]
     except InexactError:
         return None
     return Checked(count, 0.0) if all(agreed) else Checked(count, inf)
 
 
-def _agrees_exactly(netlist: Netlist, form: ClosedForm, random: Random) -> bool:
+def _random_point(form: ClosedForm, random: Random, limit: int) -> list[int]:
+    """A whole number for each generator."""
+    return [random.randrange(2, limit) for _ in form.basis.generators] or [1]
+
+
+def _agrees_exactly(netlist: Netlist, form: ClosedForm, system: System, point: list[int]) -> bool:
     arithmetic = RationalArithmetic()
-    roots = [random.randrange(2, 1 << 12) for _ in form.basis.generators] or [1]
-    top, bottom = (int(part(*roots)) for part in (form.numerator, form.denominator))
+    top, bottom = (int(part(*point)) for part in (form.numerator, form.denominator))
     numbers = {
         item.leaf: arithmetic.number(Fraction(value) ** item.root)
-        for item, value in zip(form.basis.generators, roots, strict=False)
+        for item, value in zip(form.basis.generators, point, strict=False)
     }
     overrides = {leaf.name: value for leaf, value in numbers.items() if isinstance(leaf, Name)}
-    evaluate = _evaluator(netlist, arithmetic, overrides)
-    system = form.ask.system(netlist, branch_for=lambda part: _zero_value(part, evaluate))
     there = exact_ratio(
         system,
         form.ask.observed(system),
         form.ask.driven(system),
-        evaluate,
+        _evaluator(netlist, arithmetic, overrides),
         numbers.get(S, arithmetic.number(Fraction(1))),
     )
     if there is None or bottom == 0:  # a pole of the answer, met by chance

@@ -311,6 +311,7 @@ def nested_error(network: Network) -> Callable[[], float]:
 
     import acsolve
     from acsolve.analyses.nested import nested_form
+    from acsolve.equations.evaluate import Evaluator, FloatArithmetic
 
     circuit = acsolve.parse(network.text())
     path = circuit.path(network.source, network.target)
@@ -322,7 +323,9 @@ def nested_error(network: Network) -> Callable[[], float]:
 
     def run() -> float:
         form = nested_form(path.circuit.netlist, path.ask)
-        here = form.at(2j * np.pi * hertz, values)
+        arithmetic = FloatArithmetic()
+        evaluate = Evaluator(form.values, arithmetic, overrides=values)
+        here = form.at(2j * np.pi * hertz, evaluate, arithmetic)
         there = valued.path(network.source, network.target).response(hertz)
         return float(np.max(np.abs(here - there) / np.abs(there)))
 
