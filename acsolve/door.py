@@ -321,6 +321,12 @@ class Circuit:
                 _refuse_missing(netlist, gone)
         return replace(self, netlist=with_absent(self.netlist, gone), drawn=drawn)
 
+    def problems(self, *asked: PairLike) -> tuple[Diagnostic, ...]:
+        """The network's own faults and oddities; `asked` are pairs that are asked about."""
+        from acsolve.circuit.check import check
+
+        return check(self.netlist, asked=[self.pair(pair) for pair in asked])
+
     def check(self) -> CheckAnswer:
         """Does the circuit make sense: order, natural modes, every problem found."""
         from acsolve.analyses.check import check_answer
@@ -443,8 +449,9 @@ class Path:
         Parameters
         ----------
         assumptions : "R2 >> R1", or several, with commas or as several texts.
-        band : where the error is measured ("10 Hz .. 1 MHz", or two numbers in hertz); by default from a decade
-            below the lowest to a decade above the highest natural frequency.
+        band : where the error is measured ("10 Hz .. 1 MHz", or two numbers in
+            hertz); by default from a decade below the lowest to a decade above the highest
+            natural frequency.
 
         Raises
         ------

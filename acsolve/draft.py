@@ -70,9 +70,8 @@ class Draft:
 
     def couple(self, *inductors: str, coefficient: ValueLike) -> Draft:
         """Couple inductors, every pair of them."""
-        return self._with(
-            f"couple {', '.join(_line(item, 'a name') for item in inductors)} = {_text(coefficient)}"
-        )
+        names = ", ".join(_line(item, "a name") for item in inductors)
+        return self._with(f"couple {names} = {_text(coefficient)}")
 
     def statement(self, line: str) -> Draft:
         """Any line of the text format."""

@@ -29,6 +29,7 @@ if TYPE_CHECKING:
     from acsolve.analyses.magnitude import ReferenceName
 
 
+_REFERENCES: dict[str, ReferenceName] = {"dc": "dc", "infinity": "infinity", "peak": "peak"}
 _LARGEST_DECIBEL = 6_000  # about the whole range of a double
 _LINEAR_POINTS = 501  # where an even grid is asked for without a number
 _NO_FREQUENCIES = (bytes, bytearray, bool, complex, date, time, timedelta, Mapping, Set)
@@ -109,6 +110,7 @@ def _split(text: str) -> list[str]:
 
 
 def _texts(given: Any, what: str) -> list[str]:
+    items: list[Any]
     items = list(given) if isinstance(given, Iterable) and not isinstance(given, bytes) else [None]
     if not all(isinstance(item, str) for item in items):
         raise refuse("option.value", f"{_shown(given)} are no {what}", "Give texts.")
@@ -257,8 +259,8 @@ def reference_of(given: Any) -> ReferenceName | Fraction | None:
         return None
     if isinstance(given, str):
         word = given.strip()
-        if word == "dc" or word == "infinity" or word == "peak":
-            return word
+        if word in _REFERENCES:
+            return _REFERENCES[word]
         gain = _number(parse_gain(given), given)
     else:
         gain = exact(given)

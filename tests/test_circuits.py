@@ -24,6 +24,7 @@ INDEX = (FOLDER / "README.md").read_text(encoding="utf-8")
 
 
 def ids(path: Path) -> str:
+    """The name of a case: its file."""
     return path.stem
 
 

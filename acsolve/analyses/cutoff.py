@@ -54,8 +54,23 @@ class CutoffLevel:
 HALF_POWER = CutoffLevel()
 
 
+_LARGEST_LEVEL = 10_000  # dB; far beyond any network, and still a number to work with
+
+
 def cutoff_level(decibel: Fraction) -> CutoffLevel:
-    """A level in decibels; -3 dB is how the trade says half power."""
+    """A level in decibels; -3 dB is how the trade says half power.
+
+    Raises
+    ------
+    AnalysisError
+        [option.value] a level beyond 10,000 dB.
+    """
+    if abs(decibel) > _LARGEST_LEVEL:
+        raise _refuse(
+            "option.value",
+            f"a level of {float(decibel):.3g} dB is out of range",
+            f"Give a level between -{_LARGEST_LEVEL:,} dB and {_LARGEST_LEVEL:,} dB.",
+        )
     return HALF_POWER if decibel == -3 else CutoffLevel(decibel)
 
 

@@ -28,7 +28,7 @@ def same(first: Any, second: Any) -> bool:
 
 
 def _zero_at(expression: Any, seed: int) -> bool:
-    random = Random(seed)  # noqa: S311 - reproducible points, no secret
+    random = Random(seed)
     free = [*sorted(expression.free_symbols, key=str), sympy.pi]
     point = {
         item: sympy.Rational(random.randrange(1, 1 << 10), random.randrange(1, 1 << 5)) ** 2
@@ -141,7 +141,7 @@ def agree(quality: Any, corner: Any, rate: Any) -> None:
 
 def numbers(*expressions: Any, seed: int = 3) -> dict[Any, Any]:
     """A random rational for every symbol but s, the same on every run."""
-    random = Random(seed)  # noqa: S311 - reproducible points, no secret
+    random = Random(seed)
     free = sorted(set().union(*(item.free_symbols for item in expressions)) - {S}, key=str)
     return {
         item: sympy.Rational(random.randrange(20, 90), random.randrange(20, 90)) for item in free

@@ -75,7 +75,7 @@ class Dense:
         levels: dict[str, int] | None = None,
         seed: int = 1,
     ) -> None:
-        self.random = random.Random(seed)  # noqa: S311
+        self.random = random.Random(seed)
         self.rows: list[Row] = []
         self.currents: list[str] = []
         self.balances: dict[str, Row] = {}

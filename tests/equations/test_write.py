@@ -112,7 +112,7 @@ def test_closed_forms_are_read_back_by_sympy(data):
         spelled.name(name): sympy.Symbol(spelled.name(name), positive=True) for name in form.symbols
     }
     read = parse_expr(form.text(safe=True), local_dict={**table, "s": sympy.Symbol("s")})
-    draw = random.Random(1)  # noqa: S311
+    draw = random.Random(1)
     points = {item: sympy.Rational(draw.randrange(1, 60), 7) for item in read.free_symbols}
     other = form.as_sympy()
     assert other.free_symbols <= read.free_symbols

@@ -36,7 +36,7 @@ def test_expression_and_coefficients_agree():
         sympy.Poly([parse_expr(item) for item in found[key]], s).as_expr()
         for key in ("numerator", "denominator")
     )
-    values = {item.name: random.Random(4).random() + 0.5 for item in whole.free_symbols}  # noqa: S311
+    values = {item.name: random.Random(4).random() + 0.5 for item in whole.free_symbols}
     assert numbers(top / bottom, values) == pytest.approx(numbers(whole, values), rel=1e-12)
     assert len(found["denominator"]) == found["order"] + 1
 
