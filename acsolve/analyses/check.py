@@ -93,9 +93,9 @@ def _unanswered(netlist: Netlist) -> list[Diagnostic]:
         Diagnostic(
             code="question.unanswered",
             severity="note",
-            message=f"this version reads and keeps `{word}` lines, but does not answer them",
+            message=f"no command of this version answers `{word}` lines",
             span=span,
-            hint="It answers transfer, impedance, cutoff and sweep.",
+            hint="They are read and kept; transfer, impedance, cutoff and sweep are answered.",
         )
         for word, span in found
     ]
