@@ -12,7 +12,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from acsolve.analyses.closed_form import Checked, in_doubles
 from acsolve.analyses.engine_check import engine_difference
-from acsolve.analyses.question import Ask, refuse_unreferenced
+from acsolve.analyses.question import Ask, no_unique_solution, refuse_unreferenced
 from acsolve.circuit.expression import (
     Expression,
     Name,
@@ -131,14 +131,7 @@ def nested_form(netlist: Netlist, ask: Ask, symbols: Symbols | None = None) -> N
     observed, driven = ask.observed(system), ask.driven(system)
     found = nested(system, observed, driven, expand=expand, probe=probe, taken=taken)
     if found is None:
-        raise EquationError(
-            Diagnostic(
-                code="equations.singular",
-                message="the network has no unique solution for this question",
-                hint="Run `acsolve check`: a part may float, or ideal sources or op-amps "
-                "may contradict each other.",
-            )
-        )
+        raise no_unique_solution()
     form = NestedForm(ask, found.steps, found.result, bindings(netlist))
     return replace(form, checked=_check(asked, form))
 

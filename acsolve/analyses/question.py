@@ -11,7 +11,7 @@ from acsolve.circuit.netlist import Netlist, Pair, Part, QuantityName
 from acsolve.circuit.unit import Dimension
 from acsolve.codes import Code
 from acsolve.equations.system import DRIVE, SHORT, Functional, System, always, assemble
-from acsolve.errors import AnalysisError, Diagnostic
+from acsolve.errors import AnalysisError, Diagnostic, EquationError
 
 AskedQuantity = Literal[
     "voltage-ratio", "current-ratio", "transimpedance", "transadmittance", "impedance", "response"
@@ -171,3 +171,15 @@ def refuse_unreferenced(system: System, ask: Ask) -> None:
             f"Ask between two nodes of the same part of the network, or connect "
             f"{first} and {second} to a common node.",
         )
+
+
+def no_unique_solution() -> EquationError:
+    """The error for equations that are singular at every frequency."""
+    return EquationError(
+        Diagnostic(
+            code="equations.singular",
+            message="the network has no unique solution for this question",
+            hint="Check the circuit: a part may float, or ideal sources or op-amps may "
+            "contradict each other.",
+        )
+    )

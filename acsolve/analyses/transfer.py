@@ -9,7 +9,7 @@ from acsolve.algebra.ring import Polynomial, cancel
 from acsolve.analyses.closed_form import ClosedForm, normalised
 from acsolve.analyses.nested import NestedForm, nested_form
 from acsolve.analyses.poles import PolesZeros, poles_zeros
-from acsolve.analyses.question import Ask, refuse_unreferenced
+from acsolve.analyses.question import Ask, no_unique_solution, refuse_unreferenced
 from acsolve.analyses.shape import Limit, StandardForm, limits, standard_form
 from acsolve.analyses.verify import check_closed_form
 from acsolve.circuit.netlist import Netlist, bindings
@@ -167,14 +167,7 @@ def _no_answer(ask: Ask, *, singular: bool) -> EquationError:
             )
         )
     if singular:
-        return EquationError(
-            Diagnostic(
-                code="equations.singular",
-                message="the network has no unique solution for this question",
-                hint="Run `acsolve check`: a part may float, or ideal sources or op-amps "
-                "may contradict each other.",
-            )
-        )
+        return no_unique_solution()
     kind = "voltage" if ask.quantity in ("voltage-ratio", "transadmittance") else "current"
     return EquationError(
         Diagnostic(
