@@ -314,7 +314,7 @@ def nested_error(network: Network) -> Callable[[], float]:
     from acsolve.analyses.nested import nested_form
     from acsolve.equations.exact import Symbols
 
-    random = Random(7)  # noqa: S311 - the same values on every run, no secret
+    random = Random(7)
     values = {f"R{k}": random.uniform(1e3, 9e3) for k in range(1, len(network.resistors) + 1)}
     values |= {f"C{k}": random.uniform(1e-9, 9e-9) for k in range(1, len(network.capacitors) + 1)}
     circuit = acsolve.parse(network.text()).with_values(values)
