@@ -8,6 +8,7 @@ from fractions import Fraction
 from functools import reduce
 from operator import add
 from random import Random
+from typing import TypeAlias
 
 from acsolve.algebra.cofactor import MinorPlan, minors, plan_minors
 from acsolve.algebra.ring import Polynomial, Ring, common_denominator
@@ -266,48 +267,57 @@ def _leaf_key(leaf: Expression) -> tuple[int, object]:
             return (3, repr(leaf))
 
 
+#: Numerator and denominator; the denominator is None where it is one, as it mostly is.
+_Pair: TypeAlias = tuple[Polynomial, Polynomial | None]
+
+
 class _Converter:
-    """Expressions to ratios of polynomials over one basis, each tree once."""
+    """Expressions to ratios of polynomials over one basis."""
 
     def __init__(self, basis: Basis) -> None:
-        self._ring = basis.ring
+        self.ring = basis.ring
         self._place = {item.leaf: place for place, item in enumerate(basis.generators)}
         self._roots = [item.root for item in basis.generators]
-        self._one = basis.ring.constant(1)
 
-    def __call__(self, expression: Expression) -> tuple[Polynomial, Polynomial]:
+    def __call__(self, expression: Expression) -> _Pair:
         match expression:
             case Number(value):
                 return self._constant(value)
             case Sum(left, right):
                 (a, b), (c, d) = self(left), self(right)
-                return (a + c, b) if b == d else (a * d + c * b, b * d)
+                if b is None and d is None:
+                    return a + c, None
+                return _times(a, d) + _times(c, b), _product(b, d)
             case Product(left, right):
                 (a, b), (c, d) = self(left), self(right)
-                return a * c, b * d
+                return a * c, _product(b, d)
             case Quotient(left, right):
                 (a, b), (c, d) = self(left), self(right)
                 if c == 0:
                     raise _division_by_zero(expression)
-                return a * d, b * c
+                return _times(a, d), _product(b, c)
             case Power(base, Number(exponent)) if exponent.denominator == 1:
                 return self._whole_power(base, exponent.numerator)
+            case Name() | Frequency() if self._roots[self._place[expression]] == 1:
+                return self.ring.generator(self._place[expression]), None
             case _:
                 return self._monomial(expression)
 
-    def _constant(self, value: Fraction) -> tuple[Polynomial, Polynomial]:
-        ring = self._ring
-        return ring.constant(value.numerator), ring.constant(value.denominator)
+    def _constant(self, value: Fraction) -> _Pair:
+        constant = self.ring.constant
+        bottom = None if value.denominator == 1 else constant(value.denominator)
+        return constant(value.numerator), bottom
 
-    def _whole_power(self, base: Expression, exponent: int) -> tuple[Polynomial, Polynomial]:
+    def _whole_power(self, base: Expression, exponent: int) -> _Pair:
         top, bottom = self(base)
+        bottom = self.ring.constant(1) if bottom is None else bottom
         if exponent < 0:
             if top == 0:
                 raise _division_by_zero(base)
             top, bottom = bottom, top
         return top ** abs(exponent), bottom ** abs(exponent)
 
-    def _monomial(self, expression: Expression) -> tuple[Polynomial, Polynomial]:
+    def _monomial(self, expression: Expression) -> _Pair:
         item = monomial(expression)
         assert item is not None, "a sum reached the monomial conversion"
         top, bottom = self._constant(item.coefficient)
@@ -315,20 +325,33 @@ class _Converter:
             place = self._place[leaf]
             steps = exponent * self._roots[place]
             assert steps.denominator == 1, "a root finer than its generator"
-            factor = self._ring.generator(place) ** abs(steps.numerator)
+            factor = self.ring.generator(place) ** abs(steps.numerator)
             if steps > 0:
                 top = top * factor
             else:
-                bottom = bottom * factor
+                bottom = _product(bottom, factor)
         return top, bottom
+
+
+def _times(polynomial: Polynomial, factor: Polynomial | None) -> Polynomial:
+    return polynomial if factor is None else polynomial * factor
+
+
+def _product(first: Polynomial | None, second: Polynomial | None) -> Polynomial | None:
+    if first is None:
+        return second
+    return first if second is None else first * second
 
 
 def _cleared(convert: _Converter, row: Mapping[int, Expression]) -> dict[int, Polynomial]:
     """A row without denominators; a scaled row leaves the null direction as it is."""
     ratios = {column: convert(entry) for column, entry in row.items()}
-    common = common_denominator(convert._ring, (bottom for _, bottom in ratios.values()))
+    bottoms = [bottom for _, bottom in ratios.values() if bottom is not None]
+    if not bottoms:
+        return {column: top for column, (top, _) in ratios.items() if top != 0}
+    common = common_denominator(convert.ring, bottoms)
     cleared = {
-        column: top if bottom.is_one() and common.is_one() else top * (common / bottom)
+        column: top * (common if bottom is None else common / bottom)
         for column, (top, bottom) in ratios.items()
     }
     return {column: value for column, value in cleared.items() if value != 0}
