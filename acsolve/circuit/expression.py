@@ -94,13 +94,14 @@ def number(value: int | Fraction) -> Number:
 
 
 def add(left: Expression, right: Expression) -> Expression:
-    """Left + right, numbers folded."""
-    if left == ZERO:
-        return right
-    if right == ZERO:
+    """Sum of two expressions, numbers folded."""
+    if isinstance(left, Number):
+        if left.value.numerator == 0:
+            return right
+        if isinstance(right, Number):
+            return Number(left.value + right.value)
+    elif isinstance(right, Number) and right.value.numerator == 0:
         return left
-    if isinstance(left, Number) and isinstance(right, Number):
-        return Number(left.value + right.value)
     return Sum(left, right)
 
 
@@ -115,17 +116,19 @@ def subtract(left: Expression, right: Expression) -> Expression:
 
 
 def multiply(left: Expression, right: Expression) -> Expression:
-    """Left * right, numbers folded, 0 and 1 absorbed."""
-    if left == ZERO or right == ZERO:
-        return ZERO
-    if left == ONE:
-        return right
-    if right == ONE:
-        return left
-    if isinstance(left, Number) and isinstance(right, Number):
-        return Number(left.value * right.value)
-    if isinstance(left, Number) and isinstance(right, Product) and isinstance(right.left, Number):
-        return multiply(Number(left.value * right.left.value), right.right)
+    """Product of two expressions, numbers folded, 0 and 1 absorbed."""
+    if isinstance(left, Number):
+        if left.value.numerator == 0 or left == ONE:
+            return ZERO if left.value.numerator == 0 else right
+        if isinstance(right, Number):
+            return Number(left.value * right.value)
+        if isinstance(right, Product) and isinstance(right.left, Number):
+            return multiply(Number(left.value * right.left.value), right.right)
+    elif isinstance(right, Number):
+        if right.value.numerator == 0:
+            return ZERO
+        if right == ONE:
+            return left
     return Product(left, right)
 
 
