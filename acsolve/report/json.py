@@ -135,7 +135,29 @@ def _readings(entry: Entry) -> dict[str, Any]:
     return {
         "forms": {
             name: [[line.label, line.text] for line in lines] for name, lines in found.items()
-        }
+        },
+        **(_corners(answer) if "asymptotes" in found else {}),
+    }
+
+
+def _corners(answer: TransferAnswer) -> dict[str, Any]:
+    """The asymptotes between corners, where poles and zeros are numbers."""
+    from acsolve.analyses.closed_form import ClosedForm
+    from acsolve.analyses.corners import segments
+
+    if answer.roots is None or not isinstance(answer.form, ClosedForm):
+        return {}
+    return {
+        "corners": [
+            {
+                "from_hertz": number(item.low),
+                "to_hertz": number(item.high),
+                "slope_db_per_decade": item.slope_db,
+                "scale": number(item.scale),
+                "power": item.power,
+            }
+            for item in segments(answer.form, answer.roots)
+        ]
     }
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from math import inf
 from typing import TYPE_CHECKING
 
 from acsolve.report.entry import Entry, letter
@@ -31,6 +32,35 @@ def reading_lines(entry: Entry) -> list[str]:
             lines.append("  this response has no such form")
         for line in found:
             lines += hung(f"  {line.label} = ", line.text)
+        if name == "asymptotes":
+            lines += _corners(entry)
+    return lines
+
+
+def _corners(entry: Entry) -> list[str]:
+    """The asymptotes between corners, where all values are numbers."""
+    from acsolve.analyses.closed_form import ClosedForm
+    from acsolve.analyses.corners import segments
+
+    answer = entry.transfer
+    if answer is None or answer.roots is None or not isinstance(answer.form, ClosedForm):
+        return []
+    if answer.form.numerator == 0:
+        return []
+    lines = []
+    for item in segments(answer.form, answer.roots):
+        at = item.high if item.high < inf else item.low
+        place = f", through {item.gain_db(at):.2f} dB at {_hertz(at)}" if 0 < at < inf else ""
+        if item.low == 0 and item.high == inf:
+            where = "everywhere"
+        elif item.low == 0:
+            where = f"below {_hertz(item.high)}"
+        elif item.high == inf:
+            where = f"above {_hertz(item.low)}"
+        else:
+            where = f"{_hertz(item.low)} .. {_hertz(item.high)}"
+        slope = f"{item.slope_db:+d} dB/decade" if item.slope_db else "flat"
+        lines.append(f"  {where}: {slope}{place}")
     return lines
 
 
