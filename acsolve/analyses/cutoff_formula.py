@@ -47,14 +47,7 @@ def symbolic_cutoffs(
     """
     shown, formulas = _formulas(form, level, reference)
     if formulas is None:
-        raise AnalysisError(
-            Diagnostic(
-                code=_NO_VALUE,
-                message="the cutoffs of this network have no closed form of reasonable size, "
-                "and its parts have no values",
-                hint="Give the parts values, in the file or with --let.",
-            )
-        )
+        raise _no_formula(level)
     return CutoffAnswer(
         form=form,
         reference=shown,
@@ -67,6 +60,21 @@ def symbolic_cutoffs(
         method="closed form of the squared-magnitude equation in ω²",
         remarks=tuple(item.condition for item in formulas if item.condition),
     )
+
+
+def _no_formula(level: CutoffLevel) -> AnalysisError:
+    if level.exact is None:
+        message = (
+            f"a level of {level.db:g} dB is no rational ratio of powers, and parts have no values"
+        )
+        hint = "Ask for half power or a whole number of ten decibels, or give the parts values."
+    else:
+        message = (
+            "the cutoffs of this network have no closed form of reasonable size, "
+            "and its parts have no values"
+        )
+        hint = "Give the parts values, in the file or with --let."
+    return AnalysisError(Diagnostic(code=_NO_VALUE, message=message, hint=hint))
 
 
 _NO_VALUE: Code = "question.no-value"
