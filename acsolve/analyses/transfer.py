@@ -122,7 +122,7 @@ def _refuse_early(
 ) -> None:
     """Refuse what has no answer, or too large a one, before any polynomial is multiplied."""
     observed, driven = parts
-    if not exact.basis.free_names or not _SMALLEST_IMAGE < exact.columns <= _LARGEST_IMAGE:
+    if not _SMALLEST_IMAGE < exact.columns <= _LARGEST_IMAGE or not exact.basis.free_names:
         return
     if exact.vanishes(driven):
         raise _no_answer(ask, singular=exact.vanishes(observed))

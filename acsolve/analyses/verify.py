@@ -14,6 +14,7 @@ from acsolve.analyses.closed_form import Checked, ClosedForm
 from acsolve.analyses.engine_check import engine_difference
 from acsolve.circuit.expression import Frequency, Name, S
 from acsolve.circuit.netlist import Netlist, Part, bindings
+from acsolve.circuit.value import Value
 from acsolve.equations.dense import dense_ratio, exact_ratio
 from acsolve.equations.evaluate import (
     Arithmetic,
@@ -83,10 +84,11 @@ def _exact_check(netlist: Netlist, form: ClosedForm) -> Checked | None:
     terms = len(form.numerator) + len(form.denominator)
     count, limit = next(points for most, *points in _EXACT_POINTS if terms <= most)
     try:
-        plain = _evaluator(netlist, RationalArithmetic(), {})
+        values = bindings(netlist)
+        plain = _evaluator(values, RationalArithmetic(), {})
         system = form.ask.system(netlist, branch_for=lambda part: _zero_value(part, plain))
         points = [_random_point(form, random, limit) for _ in range(count)]
-        agreed = [_agrees_exactly(netlist, form, system, point) for point in points]
+        agreed = [_agrees_exactly(values, form, system, point) for point in points]
     except InexactError:
         return None
     return Checked(count, 0.0) if all(agreed) else Checked(count, inf)
@@ -97,11 +99,13 @@ def _random_point(form: ClosedForm, random: Random, limit: int) -> list[int]:
     return [random.randrange(2, limit) for _ in form.basis.generators] or [1]
 
 
-def _agrees_exactly(netlist: Netlist, form: ClosedForm, system: System, point: list[int]) -> bool:
+def _agrees_exactly(
+    values: Mapping[str, Value], form: ClosedForm, system: System, point: list[int]
+) -> bool:
     arithmetic = RationalArithmetic()
     top, bottom = (int(part(*point)) for part in (form.numerator, form.denominator))
     numbers = {
-        item.leaf: arithmetic.number(Fraction(value) ** item.root)
+        item.leaf: arithmetic.number(Fraction(value**item.root))
         for item, value in zip(form.basis.generators, point, strict=False)
     }
     overrides = {leaf.name: value for leaf, value in numbers.items() if isinstance(leaf, Name)}
@@ -109,7 +113,7 @@ def _agrees_exactly(netlist: Netlist, form: ClosedForm, system: System, point: l
         system,
         form.ask.observed(system),
         form.ask.driven(system),
-        _evaluator(netlist, arithmetic, overrides),
+        _evaluator(values, arithmetic, overrides),
         numbers.get(S, arithmetic.number(Fraction(1))),
     )
     if there is None or bottom == 0:  # a pole of the answer, met by chance
@@ -117,9 +121,10 @@ def _agrees_exactly(netlist: Netlist, form: ClosedForm, system: System, point: l
     return bool(there * bottom == top)
 
 
-def _evaluator(netlist: Netlist, arithmetic: Arithmetic, overrides: Mapping[str, Any]) -> Evaluator:
+def _evaluator(
+    values: Mapping[str, Value], arithmetic: Arithmetic, overrides: Mapping[str, Any]
+) -> Evaluator:
     """Over the circuit's values; a symbol that no equation holds (times zero, say) is one."""
-    values = bindings(netlist)
     one = arithmetic.number(Fraction(1))
     unheld = {name: one for name, value in values.items() if value.expression is None}
     return Evaluator(values, arithmetic, overrides={**unheld, **overrides})
@@ -203,7 +208,7 @@ def _difference(netlist: Netlist, form: ClosedForm, point: _Point, bits: int) ->
     with precision(bits):
         arithmetic = BallArithmetic()
         overrides = {name: arithmetic.number(value) for name, value in point.symbols.items()}
-        evaluate = _evaluator(netlist, arithmetic, overrides)
+        evaluate = _evaluator(bindings(netlist), arithmetic, overrides)
         s = _complex(arithmetic, point)
         here = form.at(s, evaluate, arithmetic)
         system = form.ask.system(netlist, branch_for=lambda part: _is_zero(part, evaluate))

@@ -10,6 +10,7 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
+from operator import attrgetter, is_
 from typing import Literal
 
 FunctionName = Literal["sqrt", "exp", "ln", "log10", "cosh", "sinh"]
@@ -88,6 +89,18 @@ S = Frequency()
 PI = Pi()
 
 
+def is_zero(expression: Expression) -> bool:
+    """Whether it is the number zero; much quicker than comparing fractions."""
+    return isinstance(expression, Number) and expression.value.numerator == 0
+
+
+def is_one(expression: Expression) -> bool:
+    """Whether it is the number one."""
+    if not isinstance(expression, Number):
+        return False
+    return expression.value.numerator == expression.value.denominator
+
+
 def number(value: int | Fraction) -> Number:
     """An exact number."""
     return Number(Fraction(value))
@@ -100,7 +113,7 @@ def add(left: Expression, right: Expression) -> Expression:
             return right
         if isinstance(right, Number):
             return Number(left.value + right.value)
-    elif isinstance(right, Number) and right.value.numerator == 0:
+    elif is_zero(right):
         return left
     return Sum(left, right)
 
@@ -118,8 +131,10 @@ def subtract(left: Expression, right: Expression) -> Expression:
 def multiply(left: Expression, right: Expression) -> Expression:
     """Product of two expressions, numbers folded, 0 and 1 absorbed."""
     if isinstance(left, Number):
-        if left.value.numerator == 0 or left == ONE:
-            return ZERO if left.value.numerator == 0 else right
+        if left.value.numerator == 0:
+            return ZERO
+        if is_one(left):
+            return right
         if isinstance(right, Number):
             return Number(left.value * right.value)
         if isinstance(right, Product) and isinstance(right.left, Number):
@@ -127,7 +142,7 @@ def multiply(left: Expression, right: Expression) -> Expression:
     elif isinstance(right, Number):
         if right.value.numerator == 0:
             return ZERO
-        if right == ONE:
+        if is_one(right):
             return left
     return Product(left, right)
 
@@ -141,9 +156,9 @@ def divide(left: Expression, right: Expression) -> Expression:
         if the divisor is the number zero.
 
     """
-    if right == ZERO:
+    if is_zero(right):
         raise ZeroDivisionError("division by zero in an expression")
-    if left == ZERO or right == ONE:
+    if is_zero(left) or is_one(right):
         return left
     if isinstance(left, Number) and isinstance(right, Number):
         return Number(left.value / right.value)
@@ -174,9 +189,9 @@ def call(function: FunctionName, argument: Expression) -> Expression:
         root = exact_root(argument.value)
         if root is not None:
             return Number(root)
-    if function == "exp" and argument == ZERO:
+    if function == "exp" and is_zero(argument):
         return ONE
-    if function in ("ln", "log10") and argument == ONE:
+    if function in ("ln", "log10") and is_one(argument):
         return ZERO
     return Call(function, argument)
 
@@ -192,15 +207,18 @@ def exact_root(value: Fraction) -> Fraction | None:
 
 def children(expression: Expression) -> tuple[Expression, ...]:
     """The direct sub-expressions."""
-    match expression:
-        case Sum(left, right) | Product(left, right) | Quotient(left, right):
-            return (left, right)
-        case Power(base, exponent):
-            return (base, exponent)
-        case Call(_, argument):
-            return (argument,)
-        case _:
-            return ()
+    inner = _CHILDREN.get(type(expression))
+    return () if inner is None else inner(expression)
+
+
+_SIDES: Callable[[Expression], tuple[Expression, ...]] = attrgetter("left", "right")
+_CHILDREN: dict[type, Callable[[Expression], tuple[Expression, ...]]] = {
+    Sum: _SIDES,
+    Product: _SIDES,
+    Quotient: _SIDES,
+    Power: attrgetter("base", "exponent"),
+    Call: lambda item: (item.argument,),
+}
 
 
 def walk(expression: Expression) -> Iterator[Expression]:
@@ -224,19 +242,23 @@ def depends_on_s(expression: Expression) -> bool:
 
 def rebuild(expression: Expression, replace: Callable[[Name], Expression]) -> Expression:
     """The expression with each name replaced by `replace(name)`, folded again."""
+    if isinstance(expression, Name):
+        return replace(expression)
+    before = children(expression)
+    after = [rebuild(child, replace) for child in before]
+    if all(map(is_, before, after)):
+        return expression  # folded when it was built
     match expression:
-        case Name():
-            return replace(expression)
-        case Sum(left, right):
-            return add(rebuild(left, replace), rebuild(right, replace))
-        case Product(left, right):
-            return multiply(rebuild(left, replace), rebuild(right, replace))
-        case Quotient(left, right):
-            return divide(rebuild(left, replace), rebuild(right, replace))
-        case Power(base, exponent):
-            return power(rebuild(base, replace), rebuild(exponent, replace))
-        case Call(function, argument):
-            return call(function, rebuild(argument, replace))
+        case Sum():
+            return add(*after)
+        case Product():
+            return multiply(*after)
+        case Quotient():
+            return divide(*after)
+        case Power():
+            return power(*after)
+        case Call(function):
+            return call(function, *after)
         case _:
             return expression
 

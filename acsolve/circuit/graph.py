@@ -11,6 +11,7 @@ import re
 from collections.abc import Collection, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import lru_cache
 from typing import Literal
 
 from acsolve.circuit.expression import Expression, Name, Number
@@ -22,6 +23,7 @@ _DIGITS = re.compile(r"(\d+)")
 NaturalKey = tuple[tuple[str | int, ...], str]
 
 
+@lru_cache(maxsize=1 << 12)  # names come again and again in small circuits
 def natural_key(name: str) -> NaturalKey:
     """Sort key of a name: `R2` comes before `R10`, `n[9]` before `n[10]`.
 

@@ -87,11 +87,14 @@ class FloatArithmetic:
 class BallArithmetic:
     """Complex balls of python-flint at its current working precision."""
 
-    def number(self, value: Fraction) -> Scalar:
-        """A ball around a rational number."""
+    def __init__(self) -> None:
         from flint import acb, fmpq
 
-        return acb(fmpq(value.numerator, value.denominator))
+        self._acb, self._fmpq = acb, fmpq
+
+    def number(self, value: Fraction) -> Scalar:
+        """A ball around a rational number."""
+        return self._acb(self._fmpq(value.numerator, value.denominator))
 
     def pi(self) -> Scalar:
         """A ball around pi."""
@@ -128,11 +131,14 @@ class RationalArithmetic:
         for pi, and for a function or root that is not rational.
     """
 
-    def number(self, value: Fraction) -> Scalar:
-        """The number itself."""
+    def __init__(self) -> None:
         from flint import fmpq
 
-        return fmpq(value.numerator, value.denominator)
+        self._fmpq = fmpq
+
+    def number(self, value: Fraction) -> Scalar:
+        """The number itself."""
+        return self._fmpq(value.numerator, value.denominator)
 
     def pi(self) -> Scalar:
         """Pi is not rational."""
@@ -190,22 +196,23 @@ class Evaluator:
             [question.no-value] if a name has no value.
         """
         arithmetic = self._arithmetic
-        match expression:
+        match expression:  # what occurs most stands first
+            case Name(name):
+                known = self._known.get(name)
+                return self.name(name) if known is None else known
+            case Product(left, right):
+                return self(left, s) * self(right, s)
+            case Sum(left, right):
+                return self(left, s) + self(right, s)
+            case Quotient(left, right):
+                return self(left, s) / self(right, s)
             case Number(value):
                 return arithmetic.number(value)
-            case Name(name):
-                return self.name(name)
-            case Pi():
-                return arithmetic.pi()
             case Frequency():
                 assert s is not None, "an expression in s was evaluated without s"
                 return s
-            case Sum(left, right):
-                return self(left, s) + self(right, s)
-            case Product(left, right):
-                return self(left, s) * self(right, s)
-            case Quotient(left, right):
-                return self(left, s) / self(right, s)
+            case Pi():
+                return arithmetic.pi()
             case Power(base, exponent):
                 return arithmetic.power(self(base, s), self(exponent, s))
             case Call(function, argument):

@@ -144,10 +144,15 @@ class Expander:
             raise _division_by_zero(expression) from problem
 
     def _name(self, item: Name) -> Expression:
-        if item.name not in self._known:
-            for name in in_order(item.name, self._value, self._known):
-                value = self._value(name)
-                self._known[name] = Name(name) if value is None else self(value)
+        known = self._known.get(item.name)
+        if known is not None:
+            return known
+        if self._value(item.name) is None:
+            self._known[item.name] = item
+            return item
+        for name in in_order(item.name, self._value, self._known):
+            value = self._value(name)
+            self._known[name] = Name(name) if value is None else self(value)
         return self._known[item.name]
 
     def _value(self, name: str) -> Expression | None:
@@ -278,9 +283,16 @@ class _Converter:
         self.ring = basis.ring
         self._place = {item.leaf: place for place, item in enumerate(basis.generators)}
         self._roots = [item.root for item in basis.generators]
+        self._plain = {
+            item.leaf: (self.ring.generator(place), None)
+            for place, item in enumerate(basis.generators)
+            if item.root == 1
+        }
 
     def __call__(self, expression: Expression) -> _Pair:
         match expression:
+            case Name() | Frequency() if expression in self._plain:
+                return self._plain[expression]
             case Number(value):
                 return self._constant(value)
             case Sum(left, right):
@@ -298,8 +310,6 @@ class _Converter:
                 return _times(a, d), _product(b, c)
             case Power(base, Number(exponent)) if exponent.denominator == 1:
                 return self._whole_power(base, exponent.numerator)
-            case Name() | Frequency() if self._roots[self._place[expression]] == 1:
-                return self.ring.generator(self._place[expression]), None
             case _:
                 return self._monomial(expression)
 

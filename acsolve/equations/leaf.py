@@ -11,6 +11,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
+from math import lcm
 
 from acsolve.circuit.expression import (
     Call,
@@ -143,6 +144,4 @@ def collect(expression: Expression, roots: dict[Expression, int], seen: set[int]
 
 
 def _note(roots: dict[Expression, int], leaf: Expression, root: int) -> None:
-    from math import lcm
-
     roots[leaf] = lcm(roots.get(leaf, 1), root)

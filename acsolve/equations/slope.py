@@ -17,6 +17,7 @@ from acsolve.circuit.expression import (
     call,
     depends_on_s,
     divide,
+    is_zero,
     multiply,
     number,
     power,
@@ -56,7 +57,7 @@ def _of_power(item: Power) -> Expression:
 def _of_call(item: Call) -> Expression:
     argument = item.argument
     inner = slope(argument)
-    if inner == ZERO:
+    if is_zero(inner):
         return ZERO
     match item.function:
         case "sqrt":

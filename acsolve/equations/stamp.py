@@ -26,6 +26,7 @@ from acsolve.circuit.expression import (
     call,
     depends_on_s,
     divide,
+    is_zero,
     multiply,
     negate,
     number,
@@ -182,7 +183,7 @@ def _capacitor(board: Board, part: Part) -> None:
     if quality is not None:
         omega = multiply(multiply(number(2), PI), _at(part, "quality"))
         extra = add(extra, divide(S, multiply(omega, quality)))
-    if extra == ZERO:
+    if is_zero(extra):
         conductance(board, part.nodes, susceptance)
     else:
         _series(board, part, part.nodes, (add(ONE, extra), susceptance))

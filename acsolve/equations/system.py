@@ -18,7 +18,16 @@ from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
-from acsolve.circuit.expression import MINUS_ONE, ONE, ZERO, Expression, S, add, multiply, negate
+from acsolve.circuit.expression import (
+    MINUS_ONE,
+    ONE,
+    Expression,
+    S,
+    add,
+    is_zero,
+    multiply,
+    negate,
+)
 from acsolve.circuit.graph import (
     DisjointSets,
     Groups,
@@ -289,7 +298,7 @@ def _couple(board: _Board, netlist: Netlist) -> None:
 
 def _finish(board: _Board, drive: Pair | None) -> System:
     laws = tuple(
-        Law(meaning, {column: entry for column, entry in row.items() if entry != ZERO})
+        Law(meaning, {column: entry for column, entry in row.items() if not is_zero(entry)})
         for meaning, row in zip(board.meanings, board.rows, strict=True)
     )
     return System(
