@@ -96,10 +96,19 @@ def _eliminate(step: Any, values: Vector, forward: Vector, *, keep_below: bool) 
             forward[other] = -term if old is None else old - term
 
 
-def backward(factors: Factors, steps: Collection[int] | None = None) -> Vector:
-    """Solution x by column; only the components of the given steps where they are named."""
+def backward(
+    factors: Factors,
+    steps: Collection[int] | None = None,
+    known_before: Mapping[int, Element] | None = None,
+) -> Vector:
+    """Solution x by column; only the components of the given steps where they are named.
+
+    `known_before` holds components by column that no step of the plan determines.
+    """
     plan, values, forward = factors.plan, factors.values, factors.forward
     x: Vector = [None] * plan.size
+    for column, element in (known_before or {}).items():
+        x[column] = element
     for place in range(len(plan.steps) - 1, -1, -1):
         if steps is not None and place not in steps:
             continue
@@ -117,12 +126,19 @@ def backward(factors: Factors, steps: Collection[int] | None = None) -> Vector:
 
 def transposed(factors: Factors, left: Mapping[int, Element]) -> Vector:
     """Solution y by row of the transposed system for a left-hand side c by column."""
-    plan, values = factors.plan, factors.values
-    sums: Vector = [None] * plan.size
+    sums: Vector = [None] * factors.plan.size
     for column, element in left.items():
         sums[column] = element
-    y: Vector = [None] * plan.size
-    for row, column, pivot, _, _, right, right_columns, _ in plan.steps:
+    y: Vector = [None] * factors.plan.size
+    transposed_down(factors, sums, y)
+    transposed_up(factors, y)
+    return y
+
+
+def transposed_down(factors: Factors, sums: Vector, y: Vector) -> None:
+    """First half of `transposed`: U, on left-hand sides by column; fills y, uses up `sums`."""
+    values = factors.values
+    for row, column, pivot, _, _, right, right_columns, _ in factors.plan.steps:
         if sums[column] is None:
             continue
         solved = y[row] = sums[column] * values[pivot]
@@ -130,7 +146,12 @@ def transposed(factors: Factors, left: Mapping[int, Element]) -> Vector:
             term = values[slot] * solved
             old = sums[other]
             sums[other] = -term if old is None else old - term
-    for row, _, _, below, below_rows, _, _, _ in reversed(plan.steps):
+
+
+def transposed_up(factors: Factors, y: Vector) -> None:
+    """Second half of `transposed`: L, on y itself."""
+    values = factors.values
+    for row, _, _, below, below_rows, _, _, _ in reversed(factors.plan.steps):
         total = y[row]
         for slot, other in zip(below, below_rows, strict=True):
             known = y[other]
@@ -138,17 +159,20 @@ def transposed(factors: Factors, left: Mapping[int, Element]) -> Vector:
                 term = values[slot] * known
                 total = -term if total is None else total - term
         y[row] = total
-    return y
 
 
 def needed_steps(plan: Plan, wanted: Collection[int]) -> frozenset[int]:
-    """Places of the steps whose unknowns must be known to know the wanted columns."""
+    """Places of the steps whose unknowns must be known to know the wanted columns.
+
+    Columns that no step determines need none.
+    """
     place_of = {step.column: place for place, step in enumerate(plan.steps)}
     found: set[int] = set()
-    stack = [place_of[column] for column in wanted]
+    stack = [place_of[column] for column in wanted if column in place_of]
     while stack:
         place = stack.pop()
         if place not in found:
             found.add(place)
-            stack.extend(place_of[column] for column in plan.steps[place].right_columns)
+            columns = plan.steps[place].right_columns
+            stack.extend(place_of[column] for column in columns if column in place_of)
     return frozenset(found)

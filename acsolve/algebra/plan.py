@@ -25,6 +25,7 @@ _THRESHOLD = 0.02  # least size of a pivot against its column or row, after equi
 _CANCELLED = 1e-9  # a number this small against what it was made of counts as zero
 _LAST_RESORT = 1e-12  # relative size given to what is zero at some samples, but not at all
 _LINES = 4  # lines of a similar count that are compared before one is taken (empirical)
+_MANY = 64  # updates of one step from which samples are kept in arrays, not lists (empirical)
 _EQUILIBRATIONS = 4  # passes; each halves the exponents that are left
 
 
@@ -52,6 +53,7 @@ class Plan:
     The matrix's own entries stand in slots 0 to `entries` - 1, in the order in which they
     were given, fill in those after them up to `slots` - 1. `undetermined` lists the columns
     for which no pivot was found: the matrix is singular at every sample where there are any.
+    `remark` is printed with the plan: how it is run.
     """
 
     size: int
@@ -59,6 +61,7 @@ class Plan:
     slots: int
     steps: tuple[Step, ...]
     undetermined: tuple[int, ...] = ()
+    remark: str = ""
 
     @property
     def fill(self) -> int:
@@ -84,7 +87,8 @@ class Plan:
         )
         shown = ", ".join(f"({row}, {column})" for row, column in self.order[:_SHOWN])
         more = ", …" if self.size > _SHOWN else ""
-        return f"{head}\npivots (row, column): {shown}{more}"
+        remark = f"\n{self.remark}" if self.remark else ""
+        return f"{head}\npivots (row, column): {shown}{more}{remark}"
 
 
 _SHOWN = 12  # pivots in the printed form
@@ -145,6 +149,8 @@ class _Elimination:
         self.entries = len(rows)
         self.values: list[Samples] = samples.tolist()
         self.made_of: list[list[float]] = np.abs(samples).tolist()
+        self.arrays: _Arrays | None = None  # takes over from the lists where steps grow
+        self.slots = len(rows)
         self.lines: tuple[list[dict[int, int]], list[dict[int, int]]] = (
             [{} for _ in range(size)],
             [{} for _ in range(size)],
@@ -166,7 +172,7 @@ class _Elimination:
         return Plan(
             self.size,
             self.entries,
-            len(self.values),
+            self.slots,
             tuple(self.steps),
             tuple(column for column in range(self.size) if self.active[0][column]),
         )
@@ -219,7 +225,7 @@ class _Elimination:
         """Least size over the samples against its row or column; 1 alone there, 0 for zero."""
         sizes = [
             size if (size := abs(value)) > _CANCELLED * made else 0.0
-            for value, made in zip(self.values[slot], self.made_of[slot], strict=True)
+            for value, made in zip(*self._samples(slot), strict=True)
         ]
         if not all(sizes):
             return _LAST_RESORT * any(sizes)
@@ -231,7 +237,16 @@ class _Elimination:
         limits = map(min, here, self._largest(there))
         return float(min(map(truediv, sizes, limits)))
 
+    def _samples(self, slot: int) -> tuple[Samples, list[float]]:
+        """An entry and the size of what it was made of, at each sample."""
+        if self.arrays is None:
+            return self.values[slot], self.made_of[slot]
+        return self.arrays.values[slot].tolist(), self.arrays.made_of[slot].tolist()
+
     def _largest(self, line: dict[int, int]) -> list[float]:
+        if self.arrays is not None:
+            sizes: list[float] = np.abs(self.arrays.values[list(line.values())]).max(0).tolist()
+            return sizes
         values = self.values
         points = zip(*[values[slot] for slot in line.values()], strict=True)
         return [max(map(abs, point)) for point in points]
@@ -241,10 +256,15 @@ class _Elimination:
         pivot_row, pivot_column = by_row[row], by_column[column]
         pivot = pivot_row.pop(column)
         del pivot_column[row]
-        self.values[pivot] = [value or 1.0 for value in self.values[pivot]]  # a last resort
-        targets: list[int] = []
-        for other_row, slot in pivot_column.items():
-            self._update(other_row, slot, pivot, pivot_row, targets)
+        if self.arrays is None and len(pivot_row) * len(pivot_column) >= _MANY:
+            self.arrays = _Arrays(self.values, self.made_of)
+        targets = self._targets(pivot_row, pivot_column)
+        below, right = list(pivot_column.values()), list(pivot_row.values())
+        if self.arrays is None:
+            self._update(pivot, below, right, targets)
+        else:
+            self.arrays.update(pivot, below, right, targets, self.slots)
+        for other_row in pivot_column:
             del by_row[other_row][column]
             heappush(self.heap, (len(by_row[other_row]), 1, other_row))
         for other_column in pivot_row:
@@ -264,21 +284,66 @@ class _Elimination:
             )
         )
 
+    def _targets(self, pivot_row: dict[int, int], pivot_column: dict[int, int]) -> list[int]:
+        """Slots of the updates, row by row; places without an entry get one."""
+        by_column, by_row = self.lines
+        targets: list[int] = []
+        for row in pivot_column:
+            line = by_row[row]
+            for column in pivot_row:
+                target = line.get(column)
+                if target is None:
+                    target = line[column] = by_column[column][row] = self.slots
+                    self.slots += 1
+                targets.append(target)
+        return targets
+
     def _update(
-        self, row: int, slot: int, pivot: int, pivot_row: dict[int, int], targets: list[int]
+        self, pivot: int, below: Sequence[int], right: Sequence[int], targets: Sequence[int]
     ) -> None:
-        """Subtract the multiple of the pivot row from one other row; note the slots."""
-        values, made_of, line = self.values, self.made_of, self.lines[1][row]
-        factors = list(map(truediv, values[slot], values[pivot]))
-        for column, right in pivot_row.items():
-            terms = list(map(mul, factors, values[right]))
-            target = line.get(column)
-            if target is None:
-                target = len(values)
-                line[column] = self.lines[0][column][row] = target
-                values.append([-term for term in terms])
-                made_of.append([abs(term) for term in terms])
-            else:
-                values[target] = list(map(sub, values[target], terms))
-                made_of[target] = list(map(max, made_of[target], map(abs, terms)))
-            targets.append(target)
+        """Subtract multiples of the pivot row; entries that are new stand at the end."""
+        values, made_of = self.values, self.made_of
+        values[pivot] = [value or 1.0 for value in values[pivot]]  # a last resort
+        place = 0
+        for slot in below:
+            factors = list(map(truediv, values[slot], values[pivot]))
+            for other in right:
+                target = targets[place]
+                place += 1
+                terms = list(map(mul, factors, values[other]))
+                if target == len(values):
+                    values.append([-term for term in terms])
+                    made_of.append([abs(term) for term in terms])
+                else:
+                    values[target] = list(map(sub, values[target], terms))
+                    made_of[target] = list(map(max, made_of[target], map(abs, terms)))
+
+
+class _Arrays:
+    """The samples as arrays with room to grow, shape (slots, samples): one update a step."""
+
+    def __init__(self, values: list[Samples], made_of: list[list[float]]) -> None:
+        self.values = np.array(values)
+        self.made_of = np.array(made_of)
+
+    def update(
+        self,
+        pivot: int,
+        below: Sequence[int],
+        right: Sequence[int],
+        targets: Sequence[int],
+        slots: int,
+    ) -> None:
+        """Subtract multiples of the pivot row; `slots` counts the new entries, too."""
+        if slots > len(self.values):
+            room = ((0, slots), (0, 0))
+            self.values, self.made_of = np.pad(self.values, room), np.pad(self.made_of, room)
+        values, made_of = self.values, self.made_of
+        values[pivot][values[pivot] == 0] = 1.0  # a last resort
+        if not targets:
+            return
+        with np.errstate(all="ignore"):  # silent as plain numbers are
+            factors = values[below] / values[pivot]
+            terms = (factors[:, None] * values[right]).reshape(len(targets), -1)
+            values[targets] -= terms
+            made_of[targets] = np.maximum(made_of[targets], np.abs(terms))
