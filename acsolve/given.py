@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping, Set
+from collections.abc import Collection, Iterable, Iterator, Mapping, Set
 from datetime import date, time, timedelta
 from decimal import Decimal
 from difflib import get_close_matches
@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING, Any
 
 from acsolve.circuit import unit
 from acsolve.circuit.expression import Number
-from acsolve.circuit.netlist import Band, Netlist, Pair, bindings
+from acsolve.circuit.netlist import GROUND, Band, Netlist, Pair, bindings
 from acsolve.circuit.unit import Dimension
 from acsolve.circuit.value import Value
 from acsolve.codes import Code
@@ -48,6 +48,8 @@ def pair_of(given: Any, netlist: Netlist) -> Pair:
     from acsolve.text import parse_pair
 
     if isinstance(given, str):
+        if given in netlist.node_set() and given not in netlist.ports:
+            return given, GROUND  # the usual case, without reading anything
         return parse_pair(given, netlist)
     if not (
         isinstance(given, tuple | list)
@@ -59,12 +61,12 @@ def pair_of(given: Any, netlist: Netlist) -> Pair:
             f"{_shown(given)} is no pair of nodes",
             'Name a node, two nodes ("a,b" or a tuple of two) or a port.',
         )
-    known = {*netlist.nodes(), "gnd"}
+    known = netlist.node_set()
     first, second = (_node(node, known, netlist) for node in given)
     return first, second
 
 
-def _node(given: str, known: set[str], netlist: Netlist) -> str:
+def _node(given: str, known: Collection[str], netlist: Netlist) -> str:
     kept = netlist.resolve(given.strip())
     if kept in known:
         return kept
@@ -152,7 +154,7 @@ def value_for(name: str, given: Any, netlist: Netlist) -> Value:
     """
     from acsolve.text import parse_value
 
-    dimension = _dimension(name, netlist)
+    dimension = dimension_of(name, netlist)
     if isinstance(given, str):
         return parse_value(given, dimension=dimension, netlist=netlist, target=name)
     return Value(expression=Number(exact(given)))
@@ -190,7 +192,8 @@ def _no_number(given: Any) -> AnalysisError:
     )
 
 
-def _dimension(name: str, netlist: Netlist) -> Dimension | None:
+def dimension_of(name: str, netlist: Netlist) -> Dimension | None:
+    """The dimension of a named value; None where another attribute decides it."""
     quantity = netlist.quantities.get(name)
     if quantity is not None:
         return quantity.dimension
@@ -437,7 +440,8 @@ def _grid(band: HertzBand, points: Any, *, linear: bool) -> NDArray[np.float64]:
             "sweep.points",
             f"{_shown(points)} is no number of points" + (" of an even grid" * linear),
             "Write 200 for so many in all"
-            + ("." if linear else ", or 50/decade for so many in each decade."),
+            + (". " if linear else ", or 50/decade for so many in each decade. ")
+            + "Only a sweep takes auto.",
         )
     if linear:
         return grid.linear(band, points=int(count or _LINEAR_POINTS))

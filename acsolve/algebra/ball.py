@@ -33,3 +33,10 @@ def relative_difference(first: Any, second: Any) -> float:
         bound = float(gap / size)
         return inf if isnan(bound) else bound
     return 0.0 if gap < 1e-40 else inf
+
+
+def working_bits() -> int:
+    """The precision of the moment."""
+    from flint import ctx
+
+    return int(ctx.prec)

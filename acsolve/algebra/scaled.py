@@ -39,22 +39,39 @@ class Scaled:
         return Scaled(-self.mantissa, self.exponent, self.products)
 
     def __mul__(self, factor: Any) -> Scaled:
-        """Times a plain vector or number."""
+        """Times a plain vector or number, or another scaled one."""
+        if isinstance(factor, Scaled):
+            return normal(self.mantissa * factor.mantissa, self.exponent + factor.exponent)
         if self.products < _PRODUCTS:
             return Scaled(self.mantissa * factor, self.exponent, self.products + 1)
         return normal(self.mantissa * factor, self.exponent)
 
     __rmul__ = __mul__
 
-    def __add__(self, other: Scaled) -> Scaled:
+    def __add__(self, other: Any) -> Scaled:
+        if not isinstance(other, Scaled):
+            other = self._alike(other)
         products = max(self.products, other.products)
         if self.exponent is other.exponent:
             return Scaled(self.mantissa + other.mantissa, self.exponent, products)
         (first, second), top = aligned((self, other))
         return Scaled(first + second, top, products)
 
-    def __sub__(self, other: Scaled) -> Scaled:
-        return self + (-other)
+    __radd__ = __add__
+
+    def __sub__(self, other: Any) -> Scaled:
+        return self.__add__(-other)
+
+    def __rsub__(self, other: Any) -> Scaled:
+        return (-self).__add__(other)
+
+    def __rtruediv__(self, other: float) -> Scaled:
+        return self.inverse() * other
+
+    def _alike(self, plain: Any) -> Scaled:
+        """A plain vector or number as a scaled one."""
+        mantissa = np.broadcast_to(np.asarray(plain, dtype=complex), self.mantissa.shape)
+        return Scaled(mantissa, np.zeros(self.exponent.shape, dtype=np.int64))
 
     def inverse(self) -> Scaled:
         """1/self."""

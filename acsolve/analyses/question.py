@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Collection
 from dataclasses import dataclass
 from typing import Literal
 
@@ -14,7 +14,13 @@ from acsolve.equations.system import DRIVE, SHORT, Functional, System, always, a
 from acsolve.errors import AnalysisError, Diagnostic, EquationError
 
 AskedQuantity = Literal[
-    "voltage-ratio", "current-ratio", "transimpedance", "transadmittance", "impedance", "response"
+    "voltage-ratio",
+    "current-ratio",
+    "transimpedance",
+    "transadmittance",
+    "impedance",
+    "response",
+    "two-port",
 ]
 
 _SOURCES = ("voltage_source", "current_source")
@@ -27,6 +33,7 @@ _DIMENSIONS: dict[AskedQuantity, Dimension] = {
     "transadmittance": unit.SIEMENS,
     "impedance": unit.OHM,
     "response": unit.VOLT,
+    "two-port": unit.NONE,
 }
 
 
@@ -76,6 +83,10 @@ class Ask:
         if self.observes_current:
             return system.current(self.ammeter or SHORT)
         return system.voltage(self.target)
+
+    def all_observed(self, system: System) -> list[Functional]:
+        """What is observed in one pass; the first is the answer."""
+        return [self.observed(system)]
 
     def driven(self, system: System) -> Functional:
         """What it is divided by, likewise."""
@@ -127,7 +138,7 @@ def _check(netlist: Netlist, ask: Ask) -> None:
             "the question does not say where the circuit is driven, and no source is in it",
             "Say where it is driven, or put a voltage_source or current_source into the circuit.",
         )
-    known = set(netlist.nodes()) | {"gnd"}
+    known = netlist.node_set()
     for pair in (ask.source, ask.target):
         if pair is None or (ask.ammeter and pair is ask.target):
             continue
@@ -142,7 +153,7 @@ def _check(netlist: Netlist, ask: Ask) -> None:
             )
 
 
-def _unknown_node(node: str, known: set[str]) -> AnalysisError:
+def _unknown_node(node: str, known: Collection[str]) -> AnalysisError:
     from difflib import get_close_matches
 
     near = get_close_matches(node, sorted(known), n=1)

@@ -9,16 +9,42 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from acsolve.analyses.ladder_phase import Ladder, ladder_of
 from acsolve.analyses.modes import landmarks
-from acsolve.analyses.phase import at, at_zero_hertz, below, continuous, track
+from acsolve.analyses.phase import at, at_zero_hertz, below, continuous, nearest, track
 from acsolve.analyses.question import Ask, refuse_unreferenced
+from acsolve.circuit.cascade import condensed
 from acsolve.circuit.netlist import Netlist, Pair
+from acsolve.equations.chain import chains
+from acsolve.equations.chain_balls import ball_chains
 from acsolve.equations.numeric import float_values, takes_branch
+from acsolve.equations.precise import Local
 from acsolve.equations.result import Solution, Status
-from acsolve.equations.solver import Solver, prepare
+from acsolve.equations.solver import Ports, Solver, prepare
 from acsolve.errors import AnalysisError, Diagnostic, EquationError
 
 Array = NDArray[Any]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Placement:
+    """What straight lines between the points of a sweep are worth.
+
+    gain_db, phase_deg : the most that they err, in dB and degrees, where `complete`.
+    linear : whether they are straight over linear frequency, or over its logarithm.
+    sure : no notch or peak is missed, since every mode and zero near the axis is known;
+        otherwise the error was estimated from slopes and points between, on a finer start.
+    complete : false where the largest number of points was reached first.
+    ends_hertz : zeros and poles on the axis, or so near to it that doubles end first. The
+        lines hold up to a relative distance of 1e-12 beside them, and say nothing within.
+    """
+
+    gain_db: float
+    phase_deg: float
+    linear: bool
+    sure: bool
+    complete: bool
+    ends_hertz: tuple[float, ...]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -34,6 +60,7 @@ class Sweep:
     status : values of `Status`.
     error : estimated relative error of `value`.
     settled : whether the number of turns in `phase_deg` is confirmed everywhere.
+    placed : how the points were placed, where they were not named; None where they were.
 
     Phase and delays are not a number at a zero or pole; delays also where they are infinite.
     """
@@ -47,6 +74,7 @@ class Sweep:
     status: Array
     error: Array
     settled: bool
+    placed: Placement | None = None
 
     def unusual(self) -> dict[str, int]:
         """How many points were not answered at the first try, by status."""
@@ -87,11 +115,11 @@ def sweep(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> Sweep:
     ordered, back = np.unique(wanted, return_inverse=True)
     solver = solver_for(netlist, ask, ordered)
     solution = solver.solve(ordered)
-    _refuse_nowhere(solution)
-    phase, settled = _phase(netlist, solver, solution, ordered)
-    columns = {"hertz": ordered, **_columns(ordered, solution, phase)}
-    arrays = {name: _frozen(column[back].reshape(shape)) for name, column in columns.items()}
-    return Sweep(settled=settled, **arrays)
+    refuse_nowhere(solution)
+    phase, settled = _phase(netlist, ask, solver, solution, ordered)
+    columns = columns_of(ordered, solution, phase)
+    arrays = {name: frozen(column[back].reshape(shape)) for name, column in columns.items()}
+    return Sweep(settled=settled, placed=None, **arrays)
 
 
 def response(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> NDArray[np.complex128]:
@@ -117,14 +145,31 @@ def solver_for(
     netlist: Netlist, ask: Ask, hertz: Array, *, targets: Sequence[Pair] | None = None
 ) -> Solver:
     """Assemble and plan a question; `targets` observes voltages there instead of its own."""
-    values = float_values(netlist)
-    system = ask.system(netlist, branch_for=lambda part: takes_branch(values, part))
+    short = condensed(netlist, _asked_about(ask, targets))
+    values = float_values(short)
+    system = ask.system(short, branch_for=lambda part: takes_branch(values, part))
     if targets is None:
         refuse_unreferenced(system, ask)
     observed = (
-        [ask.observed(system)] if targets is None else [system.voltage(pair) for pair in targets]
+        ask.all_observed(system)
+        if targets is None
+        else [system.voltage(pair) for pair in targets]
     )
-    return prepare(netlist, system, observed=observed, driven=ask.driven(system), hertz=hertz)
+    rows = chains(short)
+    return prepare(
+        short,
+        system,
+        observed=observed,
+        driven=ask.driven(system),
+        hertz=hertz,
+        ports=Ports(rows, ball_chains(rows)),
+    )
+
+
+def _asked_about(ask: Ask, targets: Sequence[Pair] | None) -> set[str]:
+    """The nodes and parts that a question names: they stay in sight in a row of copies."""
+    pairs = [ask.source or (), ask.target, *(targets or ())]
+    return {name for pair in pairs for name in pair} | {ask.ammeter or ""}
 
 
 def _checked(hertz: ArrayLike) -> tuple[Array, tuple[int, ...]]:
@@ -140,7 +185,7 @@ def _checked(hertz: ArrayLike) -> tuple[Array, tuple[int, ...]]:
     return wanted.ravel().copy(), wanted.shape
 
 
-def _refuse_nowhere(solution: Solution) -> None:
+def refuse_nowhere(solution: Solution) -> None:
     """Refuse what has no answer at any frequency: the drive cannot be what is asked."""
     if solution.status.size and np.all(solution.status == Status.UNDEFINED):
         raise EquationError(
@@ -152,39 +197,69 @@ def _refuse_nowhere(solution: Solution) -> None:
         )
 
 
-def _frozen(array: Array) -> Array:
+def frozen(array: Array) -> Array:
+    """The array, closed for writing."""
     array.flags.writeable = False
     return array
 
 
 def _phase(
-    netlist: Netlist, solver: Solver, solution: Solution, hertz: Array
+    netlist: Netlist, ask: Ask, solver: Solver, solution: Solution, hertz: Array
 ) -> tuple[Array, bool]:
     """Continuous phase in radians at the frequencies, which ascend."""
+    positive = hertz > 0
+    usable = positive & (solution.status[0] < Status.ZERO)
     phase = np.full(len(hertz), np.nan)
+    turned = by_ladder(ladder_of(netlist, ask), hertz[usable], solution.phase()[0, usable])
+    if turned is not None and positive.all():
+        phase[usable] = turned
+        return phase, True
     start = solver.near_zero()[0]
     if start is None or start.vanishes:
         return phase, start is not None
     phase[hertz == 0] = at_zero_hertz(start)
-    positive = hertz > 0
-    if not positive.any():
+    if turned is not None:
+        phase[usable] = turned
         return phase, True
+    phase[usable], settled = _tracked(netlist, solver, solution, start, hertz=hertz, usable=usable)
+    return phase, settled
+
+
+def by_ladder(ladder: Ladder | None, hertz: Array, angle: Array) -> Array | None:
+    """Continuous phase at frequencies of known principal phase; None where it must be tracked."""
+    if ladder is None:
+        return None
+    about = ladder.phase(hertz)
+    return nearest(about, angle) if np.isfinite(about).all() else None
+
+
+def _tracked(
+    netlist: Netlist,
+    solver: Solver,
+    solution: Solution,
+    start: Local,
+    *,
+    hertz: Array,
+    usable: Array,
+) -> tuple[Array, bool]:
+    """Continuous phase at the usable frequencies, followed from 0 Hz."""
+    positive = hertz[hertz > 0]
+    if not len(positive):
+        return np.zeros(0), True
     known = track(solution, hertz, 0)
 
     def solve(omega: Array) -> Any:
         frequencies = omega / (2 * np.pi)
         return track(solver.solve(frequencies), frequencies, 0)
 
-    marks = landmarks(netlist, solver, hertz[positive][[0, -1]])
-    extra = np.concatenate([below(float(hertz[positive][0])), marks])
+    marks = landmarks(netlist, solver, positive[[0, -1]])
+    extra = np.concatenate([below(float(positive[0])), marks])
     known, turned, settled = continuous(known.merged(solve(2 * np.pi * extra)), solve, start)
-    usable = positive & (solution.status[0] < Status.ZERO)
-    phase[usable] = at(known, turned, 2 * np.pi * hertz[usable], solution.phase()[0, usable])
-    return phase, settled
+    return at(known, turned, 2 * np.pi * hertz[usable], solution.phase()[0, usable]), settled
 
 
-def _columns(hertz: Array, solution: Solution, phase: Array) -> dict[str, Array]:
-    """The arrays of a `Sweep`, by name, at ascending frequencies."""
+def columns_of(hertz: Array, solution: Solution, phase: Array) -> dict[str, Array]:
+    """The arrays of a `Sweep` by name, at ascending frequencies; `phase` in radians."""
     omega = 2 * np.pi * hertz
     usable = solution.status[0] < Status.ZERO
     group = np.where(usable, 0.0 - solution.slope[0].real, np.nan)
@@ -194,6 +269,7 @@ def _columns(hertz: Array, solution: Solution, phase: Array) -> dict[str, Array]
     delay[still] = group[still]
     delay[~np.isfinite(delay)] = np.nan
     return {
+        "hertz": hertz,
         "value": solution.value()[0],
         "gain_db": solution.gain_db()[0],
         "phase_deg": np.degrees(phase),

@@ -11,9 +11,9 @@ from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from operator import attrgetter, is_
-from typing import Literal
+from typing import Any, Literal
 
-FunctionName = Literal["sqrt", "exp", "ln", "log10", "cosh", "sinh"]
+FunctionName = Literal["sqrt", "exp", "ln", "log10", "cosh", "sinh", "cos", "sin"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,7 +80,19 @@ class Call:
     argument: Expression
 
 
-Expression = Number | Name | Pi | Frequency | Sum | Product | Quotient | Power | Call
+@dataclass(frozen=True, slots=True)
+class PortElement:
+    """An element of a two-port that is known only by its numbers at each s.
+
+    `block` is the part it belongs to, `place` one of g11, g12, g21, g22 of the hybrid
+    equations I1 = g11·V1 + g12·I2, V2 = g21·V1 + g22·I2, where I2 leaves at the far end.
+    """
+
+    block: str
+    place: Literal["g11", "g12", "g21", "g22"]
+
+
+Expression = Number | Name | Pi | Frequency | Sum | Product | Quotient | Power | Call | PortElement
 
 ZERO = Number(Fraction(0))
 ONE = Number(Fraction(1))
@@ -211,8 +223,8 @@ def children(expression: Expression) -> tuple[Expression, ...]:
     return () if inner is None else inner(expression)
 
 
-_SIDES: Callable[[Expression], tuple[Expression, ...]] = attrgetter("left", "right")
-_CHILDREN: dict[type, Callable[[Expression], tuple[Expression, ...]]] = {
+_SIDES: Callable[[Any], tuple[Expression, ...]] = attrgetter("left", "right")
+_CHILDREN: dict[type, Callable[[Any], tuple[Expression, ...]]] = {
     Sum: _SIDES,
     Product: _SIDES,
     Quotient: _SIDES,
@@ -237,7 +249,7 @@ def names(expression: Expression) -> frozenset[str]:
 
 def depends_on_s(expression: Expression) -> bool:
     """Whether the complex frequency occurs in the expression."""
-    return any(isinstance(item, Frequency) for item in walk(expression))
+    return any(isinstance(item, Frequency | PortElement) for item in walk(expression))
 
 
 def rebuild(expression: Expression, replace: Callable[[Name], Expression]) -> Expression:

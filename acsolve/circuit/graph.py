@@ -78,6 +78,7 @@ _CONDUCTING: dict[str, tuple[tuple[int, int], ...]] = {
     "transformer": _BOTH,
     "gyrator": _BOTH,
     "line": ((0, 2), (1, 3)),
+    "cascade": ((0, 1), (1, 2)),
 }
 
 #: Kind -> the attribute at whose zero the part is an open circuit.

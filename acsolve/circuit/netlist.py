@@ -8,10 +8,11 @@ symbol.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Collection, Iterator, Mapping
 from dataclasses import dataclass, field, replace
-from typing import Literal
+from typing import Any, Literal
 
+from acsolve.circuit.expression import names as names_in
 from acsolve.circuit.kind import KINDS, Kind
 from acsolve.circuit.value import Quantity, Value
 from acsolve.source import Source, Span
@@ -129,8 +130,49 @@ class Variant:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Cascade:
+    """Equal copies of a block, pin two of each at pin one of the next.
+
+    Copy k (from 1) holds the parts from `start + (k - 1)*length`, `length` of them; its names
+    begin with `name[k].`, and `name[k].pin` is the node between it and the next one. `near`
+    and `far` are the nodes at the two ends; nothing but the copies touches what is between.
+    """
+
+    name: str
+    count: int
+    start: int
+    length: int
+    near: str
+    far: str
+    pin: str
+
+    @property
+    def stem(self) -> str:
+        """How every name inside begins."""
+        return f"{self.name}["
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Section:
+    """What a part of kind `cascade` consists of: `count` times these parts in a row.
+
+    `near` and `far` are the nodes of the first copy; its other nodes are its own, or `gnd`.
+    """
+
+    parts: tuple[Part, ...]
+    couplings: tuple[Coupling, ...]
+    near: str
+    far: str
+    count: int
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Netlist:
-    """A whole circuit. `parts` are in file order, those not fitted left out."""
+    """A whole circuit. `parts` are in file order, those not fitted left out.
+
+    `cascades` are the rows of equal copies among them; `sections` is filled only where
+    `acsolve.circuit.cascade.condensed` has put one part in the place of such a row.
+    """
 
     title: str | None = None
     parts: tuple[Part, ...] = ()
@@ -145,9 +187,27 @@ class Netlist:
     variant: str | None = None
     aliases: Mapping[str, str] = field(default_factory=dict)  # joined node -> the one kept
     source: Source | None = field(default=None, compare=False, repr=False)
+    cascades: tuple[Cascade, ...] = field(default=(), compare=False, repr=False)
+    sections: Mapping[str, Section] = field(default_factory=dict)
+    _found: dict[str, Any] = field(init=False, default_factory=dict, compare=False, repr=False)
 
     def nodes(self) -> tuple[str, ...]:
         """All nodes, `gnd` first where it occurs, then in order of first appearance."""
+        nodes: tuple[str, ...] = self._once("nodes", self._nodes)
+        return nodes
+
+    def node_set(self) -> frozenset[str]:
+        """The nodes, and `gnd` in any case."""
+        nodes: frozenset[str] = self._once("node set", lambda: frozenset((*self.nodes(), GROUND)))
+        return nodes
+
+    def _once(self, what: str, work_out: Callable[[], Any]) -> Any:
+        """What follows from the parts, worked out when it is first asked for."""
+        if what not in self._found:
+            self._found[what] = work_out()
+        return self._found[what]
+
+    def _nodes(self) -> tuple[str, ...]:
         seen: dict[str, None] = {}
         for part in self.parts:
             for node in part.nodes:
@@ -190,7 +250,30 @@ def with_values(netlist: Netlist, values: Mapping[str, Value]) -> Netlist:
         replace(item, coefficient=values[item.name]) if item.name in values else item
         for item in netlist.couplings
     )
-    return replace(netlist, parts=parts, quantities=quantities, couplings=couplings)
+    return replace(
+        netlist,
+        parts=parts,
+        quantities=quantities,
+        couplings=couplings,
+        cascades=_untouched(netlist.cascades, {*values, *_mentioned(values)}),
+    )
+
+
+def _mentioned(values: Mapping[str, Value]) -> set[str]:
+    """The names that some values refer to."""
+    return {
+        name
+        for value in values.values()
+        if value.expression is not None
+        for name in names_in(value.expression)
+    }
+
+
+def _untouched(cascades: tuple[Cascade, ...], touched: Collection[str]) -> tuple[Cascade, ...]:
+    """The cascades inside which none of the names lies: their copies are still equal."""
+    return tuple(
+        item for item in cascades if not any(name.startswith(item.stem) for name in touched)
+    )
 
 
 def _part_with(part: Part, values: Mapping[str, Value]) -> Part:
@@ -208,7 +291,12 @@ def with_absent(netlist: Netlist, names: frozenset[str]) -> Netlist:
         return netlist
     parts = tuple(part for part in netlist.parts if part.name not in names)
     couplings = tuple(item for item in netlist.couplings if not {item.first, item.second} & names)
-    return replace(netlist, parts=parts, couplings=couplings)
+    gone = [place for place, part in enumerate(netlist.parts) if part.name in names]
+    cascades = tuple(
+        replace(item, start=item.start - sum(place < item.start for place in gone))
+        for item in _untouched(netlist.cascades, names)
+    )
+    return replace(netlist, parts=parts, couplings=couplings, cascades=cascades)
 
 
 def with_joins(netlist: Netlist, joins: tuple[tuple[str, ...], ...]) -> Netlist:
@@ -247,8 +335,23 @@ def with_joins(netlist: Netlist, joins: tuple[tuple[str, ...], ...]) -> Netlist:
     goals = tuple(
         replace(item, source=pair(item.source), target=pair(item.target)) for item in netlist.goals
     )
+    touched = {node for group in joins for node in group}
+    cascades = tuple(
+        replace(
+            item,
+            near=aliases.get(item.near, item.near),
+            far=aliases.get(item.far, item.far),
+        )
+        for item in _untouched(netlist.cascades, touched)
+    )
     return replace(
-        netlist, parts=parts, ports=ports, questions=questions, goals=goals, aliases=aliases
+        netlist,
+        parts=parts,
+        ports=ports,
+        questions=questions,
+        goals=goals,
+        aliases=aliases,
+        cascades=cascades,
     )
 
 

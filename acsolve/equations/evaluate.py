@@ -17,6 +17,7 @@ from acsolve.circuit.expression import (
     Name,
     Number,
     Pi,
+    PortElement,
     Power,
     Product,
     Quotient,
@@ -49,6 +50,9 @@ class Arithmetic(Protocol):
     def rotation(self, degrees: Scalar) -> Scalar:
         """exp(j·angle) for an angle in degrees."""
 
+    def exp_minus_one(self, exponent: Scalar) -> Scalar:
+        """exp(exponent) - 1, as good where the exponent is small."""
+
 
 class FloatArithmetic:
     """Double precision; arguments may be NumPy arrays, results are real where they can be."""
@@ -80,8 +84,15 @@ class FloatArithmetic:
 
     def rotation(self, degrees: Scalar) -> Scalar:
         """exp(j·angle) for an angle in degrees, exact at whole quarter turns."""
+        if isinstance(degrees, np.ndarray):
+            turns = np.exp(1j * pi * degrees / 180)
+            return np.where(degrees % 90 == 0, np.round(turns), turns)
         turn = cmath.rect(1.0, cmath.pi * float(degrees) / 180)
         return complex(round(turn.real), round(turn.imag)) if float(degrees) % 90 == 0 else turn
+
+    def exp_minus_one(self, exponent: Scalar) -> Scalar:
+        """exp(exponent) - 1: what a short line changes, without cancellation."""
+        return np.expm1(exponent)
 
 
 class BallArithmetic:
@@ -120,6 +131,10 @@ class BallArithmetic:
     def rotation(self, degrees: Scalar) -> Scalar:
         """exp(j·angle) for an angle in degrees."""
         return (degrees / 180).exp_pi_i()
+
+    def exp_minus_one(self, exponent: Scalar) -> Scalar:
+        """exp(exponent) - 1."""
+        return exponent.expm1()
 
 
 class RationalArithmetic:
@@ -164,6 +179,10 @@ class RationalArithmetic:
         del degrees
         raise InexactError("a phasor")
 
+    def exp_minus_one(self, exponent: Scalar) -> Scalar:
+        """Zero for zero; an exponential is not rational otherwise."""
+        return self.function("exp", exponent) - 1
+
 
 class InexactError(ArithmeticError):
     """A value is not rational."""
@@ -173,7 +192,8 @@ class Evaluator:
     """Evaluates expressions over the values of a circuit; each name is worked out once.
 
     `overrides` gives numbers (or arrays of samples) for names, before the circuit's own
-    values: free symbols, a parameter sweep, a random sample.
+    values: free symbols, a parameter sweep, a random sample. `ports` are the two-ports that
+    are known by their numbers, by the name of their part.
     """
 
     def __init__(
@@ -182,7 +202,9 @@ class Evaluator:
         arithmetic: Arithmetic,
         *,
         overrides: Mapping[str, Scalar] | None = None,
+        ports: Mapping[str, Any] | None = None,
     ) -> None:
+        self.ports = ports or {}
         self._values = values
         self._arithmetic = arithmetic
         self._known: dict[str, Scalar] = dict(overrides or {})
@@ -202,6 +224,12 @@ class Evaluator:
                 return self.name(name) if known is None else known
             case Product(left, right):
                 return self(left, s) * self(right, s)
+            case Sum(Number(value), Call("exp", argument)) if value == -1:
+                return arithmetic.exp_minus_one(self(argument, s))
+            case Sum(Number(value), Product(Number(sign), Call("exp", argument))) if (
+                value == 1 and sign == -1
+            ):
+                return -arithmetic.exp_minus_one(self(argument, s))
             case Sum(left, right):
                 return self(left, s) + self(right, s)
             case Quotient(left, right):
@@ -217,6 +245,8 @@ class Evaluator:
                 return arithmetic.power(self(base, s), self(exponent, s))
             case Call(function, argument):
                 return arithmetic.function(function, self(argument, s))
+            case PortElement(block, place):
+                return self.ports[block].at(s).values[place]
 
     def set(self, name: str, number: Scalar) -> None:
         """Give a name a number: a step of a nested form, worked out before."""
@@ -225,11 +255,14 @@ class Evaluator:
     def name(self, name: str) -> Scalar:
         """The number behind a name; what it refers to is worked out first, without recursion."""
         known = self._known.get(name)
-        if known is None:
-            for item in in_order(name, self._expression, self._known):
-                self._known[item] = self._number(item)
-            known = self._known[name]
-        return known
+        if known is not None:
+            return known
+        if isinstance(self._expression(name), Number):  # as nearly every value is
+            found = self._known[name] = self._number(name)
+            return found
+        for item in in_order(name, self._expression, self._known):
+            self._known[item] = self._number(item)
+        return self._known[name]
 
     def _expression(self, name: str) -> Expression:
         value = self._values.get(name)
@@ -327,6 +360,8 @@ def polynomial_in_s(expression: Expression, evaluate: Evaluator) -> tuple[Scalar
         case Call(_, argument):
             inner = polynomial_in_s(argument, evaluate)
             return (evaluate(expression),) if inner is not None and len(inner) == 1 else None
+        case PortElement():
+            return None
 
 
 def _added(first: tuple[Scalar, ...], second: tuple[Scalar, ...]) -> tuple[Scalar, ...]:

@@ -20,6 +20,7 @@ from acsolve.circuit.expression import (
     Name,
     Number,
     Pi,
+    PortElement,
     Power,
     Product,
     Quotient,
@@ -134,7 +135,7 @@ def collect(expression: Expression, roots: dict[Expression, int], seen: set[int]
                 for leaf, exponent in whole.powers.items():
                     _note(roots, leaf, exponent.denominator)
                 return
-        case Name() | Pi() | Frequency():
+        case Name() | Pi() | Frequency() | PortElement():
             _note(roots, expression, 1)
             return
         case _:

@@ -13,9 +13,10 @@ from dataclasses import dataclass
 from itertools import accumulate
 from math import isfinite
 from operator import add
-from typing import Any, TypeAlias
+from typing import Any, Protocol, TypeAlias
 
-from acsolve.circuit.expression import Expression, Number, Product, Sum
+from acsolve.algebra.scaled import Scaled, Vector
+from acsolve.circuit.expression import Expression, Number, PortElement, Product, Sum
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.equations.evaluate import (
     BallArithmetic,
@@ -76,7 +77,56 @@ class FunctionEntry:
         return self.evaluate(self.derivative, s)
 
 
-Entry = PolynomialEntry | FunctionEntry
+class TwoPort(Protocol):
+    """A two-port that is known by its numbers: a row of copies."""
+
+    def at(self, s: Element) -> Hybrid:
+        """Its hybrid elements at s."""
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Hybrid:
+    """The hybrid elements of a two-port at some points, by name, with their derivatives by s.
+
+    values, slopes : over doubles with powers of two, shape (points,); or balls.
+    rough : their relative error in doubles.
+    """
+
+    values: Mapping[str, Element]
+    slopes: Mapping[str, Element]
+    rough: Element = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class ElementEntry:
+    """An entry that is an element of a two-port given by numbers."""
+
+    place: str
+    port: TwoPort
+
+    def at(self, s: Element) -> Element:
+        """The element at s, zero below a double's range."""
+        return _plain(self.port.at(s).values[self.place])
+
+    def slope(self, s: Element) -> Element:
+        """Its derivative."""
+        return _plain(self.port.at(s).slopes[self.place])
+
+    def scaled(self, s: Vector) -> tuple[Element, Element]:
+        """The element and its derivative with their powers of two."""
+        found = self.port.at(s)
+        return found.values[self.place], found.slopes[self.place]
+
+    def rough(self, s: Vector) -> Element:
+        """Its relative error, shape (points,)."""
+        return self.port.at(s).rough
+
+
+def _plain(value: Scaled | Element) -> Element:
+    return value.plain() if isinstance(value, Scaled) else value
+
+
+Entry = PolynomialEntry | FunctionEntry | ElementEntry
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -104,6 +154,14 @@ class Numbers:
         """The derivatives by s, by place; None where zero."""
         values = [entry.slope(s) for entry in self.distinct]
         return [values[item] for item in self.which]
+
+    def scaled(self, s: Vector) -> tuple[list[Element], list[Element | None]]:
+        """Elements and derivatives by place, with powers of two where these may matter."""
+        pairs = [
+            entry.scaled(s) if isinstance(entry, ElementEntry) else (entry.at(s), entry.slope(s))
+            for entry in self.distinct
+        ]
+        return [pairs[item][0] for item in self.which], [pairs[item][1] for item in self.which]
 
 
 def numbers(
@@ -201,6 +259,8 @@ def _added(
 
 def _entry(expression: Expression, read: _Reader, *, exact: bool) -> Entry | None:
     """The entry, or None where floats say that it is zero at every s."""
+    if isinstance(expression, PortElement):
+        return ElementEntry(expression.place, read.evaluate.ports[expression.block])
     try:
         coefficients = read(expression)
     except (ZeroDivisionError, OverflowError) as problem:
@@ -229,14 +289,19 @@ def _not_finite(expression: Expression) -> EquationError:
     )
 
 
-def float_values(netlist: Netlist, overrides: Mapping[str, Scalar] | None = None) -> Evaluator:
+def float_values(
+    netlist: Netlist,
+    overrides: Mapping[str, Scalar] | None = None,
+    *,
+    ports: Mapping[str, TwoPort] | None = None,
+) -> Evaluator:
     """An evaluator of the circuit's values in double precision, sources as phasors."""
-    return Evaluator(bindings(netlist), FloatArithmetic(), overrides=overrides)
+    return Evaluator(bindings(netlist), FloatArithmetic(), overrides=overrides, ports=ports)
 
 
-def ball_values(netlist: Netlist) -> Evaluator:
+def ball_values(netlist: Netlist, *, ports: Mapping[str, TwoPort] | None = None) -> Evaluator:
     """The same in balls, at the working precision of the moment."""
-    return Evaluator(bindings(netlist), BallArithmetic())
+    return Evaluator(bindings(netlist), BallArithmetic(), ports=ports)
 
 
 def takes_branch(evaluate: Evaluator, part: Part) -> bool:

@@ -77,15 +77,18 @@ class Precise:
         return answers
 
     def _solve(self, hertz: Fraction, bits: int, *, shifted: bool) -> list[Local | None]:
+        point, shift = _point(hertz)
+        found = self.enclosed(point + shift if shifted else point, bits)
+        return [_local(value, rate, shift if shifted else None, bits) for value, rate in found]
+
+    def enclosed(self, s: Any, bits: int) -> list[tuple[Any, Any]]:
+        """Balls around each answer and its derivative at s, a ball, at a working precision."""
         from flint import acb
 
         numbers = self.known.get(bits)
         if numbers is None:
             numbers = self.known[bits] = self.numbers()
-        point, shift = _point(hertz)
-        s = point + shift if shifted else point
-        entries = numbers.at(s)
-        factors = factor(self.plan, entries, {numbers.size - 1: acb(1)})
+        factors = factor(self.plan, numbers.at(s), {numbers.size - 1: acb(1)})
         x = backward(factors)
         rates = _rates(numbers, numbers.slopes(s), x)
         answers = []
@@ -96,7 +99,7 @@ class Precise:
                 (a * b for a, b in zip(y, rates, strict=True) if a is not None and b is not None),
                 acb(0),
             )
-            answers.append(_local(value, rate, shift if shifted else None, bits))
+            answers.append((value, rate))
         return answers
 
 

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 
 from acsolve.circuit.expression import Expression, Number, Power, Product, Quotient, Sum
 from acsolve.equations.evaluate import Evaluator, polynomial_in_s
-from acsolve.equations.numeric import Entry, PolynomialEntry
+from acsolve.equations.numeric import ElementEntry, Entry, PolynomialEntry
 
 #: Numerator and denominator by rising power of s.
 Ratio: TypeAlias = tuple[tuple[complex, ...], tuple[complex, ...]]
@@ -21,6 +21,8 @@ def ratio_of(entry: Entry) -> Ratio | None:
     """An entry as a ratio of polynomials, or None where it is another function of s."""
     if isinstance(entry, PolynomialEntry):
         return tuple(entry.coefficients), (1.0,)
+    if isinstance(entry, ElementEntry):
+        return None
     return _ratio(entry.value, entry.evaluate)
 
 

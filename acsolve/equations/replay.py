@@ -12,17 +12,20 @@ gives the derivative: dH/ds = -y·(dA/ds)·x.
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-from acsolve.algebra.lu import Element, Factors, Vector, backward, factor, transposed
+from acsolve.algebra.blocks import backward_cut, factor_cut, transposed_cut
+from acsolve.algebra.fronts import Fronts
+from acsolve.algebra.lu import Element, Vector, backward, factor, needed_steps, transposed
 from acsolve.algebra.plan import Plan
 from acsolve.algebra.scaled import Exponent, Scaled, aligned, power_of_two
-from acsolve.equations.numeric import Numbers
+from acsolve.equations.element_row import element_places, scaled_row
+from acsolve.equations.numeric import ElementEntry, Numbers
 from acsolve.equations.system import Functional
 
 _ROUND_OFF = 4 * float(np.finfo(float).eps)  # of an entry and of one product, in all
@@ -44,20 +47,36 @@ def replay(
     observed: Sequence[Functional],
     s: NDArray[np.complex128],
     *,
-    scaled: bool,
+    fronts: Fronts | None = None,
 ) -> Replayed:
-    """Solve at every s; `scaled` carries powers of two, slower, for answers out of range."""
-    one: Element = 1.0
-    if scaled:
-        one = Scaled(np.ones(len(s), dtype=complex), np.zeros(len(s), dtype=np.int64))
+    """Solve at every s in doubles: along the plan, or its heavy part in blocks."""
     # Singular points make infinities and what follows from them; the caller looks for these.
     with np.errstate(all="ignore"):
         entries = numbers.at(s)
+        x, values, all_y = _solved(numbers, plan, observed, entries, fronts=fronts, points=len(s))
+        sums = [_Sums(value, y) for value, y in zip(values, all_y, strict=True)]
+        elements = element_places(numbers)
+        _Rows(numbers, s, entries, numbers.slopes(s), x, 1.0, elements).visit(sums)
+        return _stacked([item.answer() for item in sums], len(s))
+
+
+def replay_scaled(
+    numbers: Numbers, plan: Plan, observed: Sequence[Functional], s: NDArray[np.complex128]
+) -> Replayed:
+    """Solve with powers of two carried along, slower, for answers out of a double's range."""
+    one = Scaled(np.ones(len(s), dtype=complex), np.zeros(len(s), dtype=np.int64))
+    with np.errstate(all="ignore"):  # as in `replay`
+        entries, slopes = numbers.scaled(s)
         factors = factor(plan, entries, {numbers.size - 1: one})
         x = backward(factors)
-        sums = [_Sums(c, x, factors, scaled=scaled) for c in observed]
+        values = [_value(c, x) for c in observed]
+        all_y = [
+            None if value is None else transposed(factors, _relative(c, value))
+            for c, value in zip(observed, values, strict=True)
+        ]
         del factors
-        _Rows(numbers, entries, numbers.slopes(s), x, one).visit(sums)
+        sums = [_Sums(value, y) for value, y in zip(values, all_y, strict=True)]
+        _Rows(numbers, s, entries, slopes, x, one, element_places(numbers)).visit(sums)
         return _stacked([item.answer() for item in sums], len(s))
 
 
@@ -66,35 +85,75 @@ def replay_quick(
     plan: Plan,
     observed: Sequence[Functional],
     s: NDArray[np.complex128],
-    steps: Collection[int],
+    *,
+    fronts: Fronts | None = None,
 ) -> NDArray[np.complex128]:
     """Plain values, shape (observed, points), from the steps they need; nothing is checked."""
+    wanted = {column for c in observed for column in c}
     with np.errstate(all="ignore"):  # as in `replay`
-        factors = factor(plan, numbers.at(s), {numbers.size - 1: 1.0}, kept=steps)
-        x = backward(factors, steps)
-        values = np.zeros((len(observed), len(s)), dtype=complex)
-        for place, c in enumerate(observed):
-            for column, item in c.items():
-                if x[column] is not None:
-                    values[place] += x[column] * float(item)
-        return values
+        entries, right = numbers.at(s), {numbers.size - 1: 1.0}
+        if fronts is None:
+            steps = needed_steps(plan, wanted)
+            x = backward(factor(plan, entries, right, kept=steps), steps)
+        else:
+            steps = needed_steps(fronts.light, wanted)
+            x = backward_cut(factor_cut(fronts, entries, right, len(s), kept=steps), steps)
+        found = np.zeros((len(observed), len(s)), dtype=complex)
+        for row, c in zip(found, observed, strict=True):
+            value = _value(c, x)
+            row[:] = 0.0 if value is None else value
+        return found
+
+
+def _solved(
+    numbers: Numbers,
+    plan: Plan,
+    observed: Sequence[Functional],
+    entries: Sequence[Element],
+    *,
+    fronts: Fronts | None,
+    points: int,
+) -> tuple[Vector, list[Element], list[Vector | None]]:
+    """x, and for each observed quantity its value H and y/H; None where H sees nothing."""
+    right = {numbers.size - 1: 1.0}
+    if fronts is None:
+        factors = factor(plan, entries, right)
+        x = backward(factors)
+    else:
+        cut = factor_cut(fronts, entries, right, points)
+        x = backward_cut(cut)
+    values = [_value(c, x) for c in observed]
+    lefts = [
+        _relative(c, value) for c, value in zip(observed, values, strict=True) if value is not None
+    ]
+    if fronts is None:
+        found = iter([transposed(factors, left) for left in lefts])
+    else:
+        found = iter(transposed_cut(cut, lefts))
+    return x, values, [None if value is None else next(found) for value in values]
+
+
+def _value(c: Functional, x: Vector) -> Element:
+    """c·x, or None where all that it sees is a structural zero."""
+    terms = [x[column] * float(item) for column, item in c.items() if x[column] is not None]
+    return sum(terms[1:], terms[0]) if terms else None
+
+
+def _relative(c: Functional, value: Element) -> dict[int, Element]:
+    """c/H by column."""
+    inverse = value.inverse() if isinstance(value, Scaled) else _inverse(value)
+    return {column: inverse * float(item) for column, item in c.items()}
 
 
 class _Sums:
     """What one observed quantity gathers from the rows, relative to its own size: y/H."""
 
-    def __init__(self, c: Functional, x: Vector, factors: Factors, *, scaled: bool) -> None:
-        self.value: Element = None
-        terms = [x[column] * float(item) for column, item in c.items() if x[column] is not None]
-        if not terms:
+    def __init__(self, value: Element, y: Vector | None) -> None:
+        self.value: Element = None if y is None or y[-1] is None else value
+        if y is None or self.value is None:
             return
-        self.value = sum(terms[1:], terms[0])
-        inverse = self.value.inverse() if scaled else _inverse(self.value)
-        self.y = transposed(factors, {column: inverse * float(item) for column, item in c.items()})
-        if self.y[-1] is None:
-            self.value = None
-            return
-        other = self.y[-1].plain() if scaled else self.y[-1]
+        self.y = y
+        other = y[-1].plain() if isinstance(y[-1], Scaled) else y[-1]
         self.misfit: Element = abs(1.0 - other)
         self.correction: Element = 0.0
         self.rate: Element = 0.0
@@ -150,34 +209,53 @@ class _Rows:
     """The rows of A·x - b, of its round-off scale and of (dA/ds)·x, one at a time."""
 
     numbers: Numbers
+    s: NDArray[np.complex128]
     entries: Sequence[Element]
     slopes: Sequence[Element | None]
     x: Vector
     one: Element  # the right-hand side of the last row
+    elements: Mapping[int, ElementEntry]  # by place
 
     def visit(self, sums: Sequence[_Sums]) -> None:
         """Give every row to the sums."""
-        holding: list[Exponent] = []  # exponents are known by identity, so none may go early
+        holding: list[Exponent | None] = []  # exponents are known by identity, so none may go early
         for row in range(self.numbers.size):
-            places, known, exponent = self._known(row)
-            if exponent is not None:
-                holding.append(exponent)
+            places, known = self._known(row)
             if known:
-                visited = self._row(row, places, known)
+                visited = self._visited(row, places, known)
+                holding.append(visited[3])
                 for item in sums:
-                    item.add(row, *visited, exponent)
+                    item.add(row, *visited)
 
-    def _known(self, row: int) -> tuple[list[int], Vector, Exponent | None]:
-        """Places of the row with a known unknown, and these on one exponent."""
+    def _known(self, row: int) -> tuple[list[int], Vector]:
+        """Places of the row with a known unknown, and these."""
         columns, x = self.numbers.columns, self.x
         start, end = self.numbers.starts[row : row + 2]
         places = [place for place in range(start, end) if x[columns[place]] is not None]
         known = [x[columns[place]] for place in places]
         if row == self.numbers.size - 1:
             known.append(self.one)
-        if known and isinstance(self.one, Scaled):
-            return places, *aligned(known)
-        return places, known, None
+        return places, known
+
+    def _visited(
+        self, row: int, places: Sequence[int], known: Vector
+    ) -> tuple[Element, Element, Element | None, Exponent | None]:
+        """Residual, round-off scale and slope of one row, and the exponent they share."""
+        if not isinstance(self.one, Scaled):
+            return *self._row(row, places, known), None
+        if not any(place in self.elements for place in places):
+            unknowns, exponent = aligned(known)
+            return *self._row(row, places, unknowns), exponent
+        assert row < self.numbers.size - 1, "what is driven is no element of a two-port"
+        entries, slopes = (
+            [items[place] for place in places] for items in (self.entries, self.slopes)
+        )
+        roughness = [self._roughness(place) for place in places]
+        return scaled_row(entries, slopes, known, roughness, _ROUND_OFF)
+
+    def _roughness(self, place: int) -> Element:
+        entry = self.elements.get(place)
+        return 0.0 if entry is None else entry.rough(self.s)
 
     def _row(
         self, row: int, places: Sequence[int], known: Vector
@@ -190,6 +268,8 @@ class _Rows:
             term = self.entries[place] * item
             residual = residual + term
             scale = scale + abs(term)
+            if place in self.elements:
+                scale = scale + abs(term) * (self._roughness(place) / _ROUND_OFF)
             rate = self.slopes[place]
             if rate is not None:
                 slope = rate * item if slope is None else slope + rate * item

@@ -2,21 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
 from fractions import Fraction
 from math import pi
-from typing import Any
+from typing import Any, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
-from acsolve.algebra.lu import needed_steps
+from acsolve.algebra.fronts import Fronts
 from acsolve.algebra.plan import Plan, plan_elimination
+from acsolve.algebra.route import Route, choose_route
 from acsolve.circuit.netlist import Netlist
-from acsolve.equations.numeric import Numbers, ball_values, float_values, numbers
+from acsolve.equations.numeric import Numbers, TwoPort, ball_values, float_values, numbers
 from acsolve.equations.precise import Local, Precise
-from acsolve.equations.replay import Replayed, replay, replay_quick
+from acsolve.equations.replay import Replayed, replay, replay_quick, replay_scaled
 from acsolve.equations.result import Solution, Status, empty, finished
 from acsolve.equations.system import Functional, System
 from acsolve.errors import Diagnostic, EquationError
@@ -35,12 +36,13 @@ _ZEROS_ENOUGH = 3  # exact zeros in a row after which all failing points count a
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Solver:
-    """The prepared question; `print(solver.plan)` shows order and cost."""
+    """The prepared question; `print(solver.plan)` shows order, cost and route."""
 
     numbers: Numbers
     plan: Plan
     observed: tuple[Functional, ...]
     precise: Precise
+    route: Route
 
     def solve(self, hertz: Array) -> Solution:
         """Answers at frequencies in hertz, shape (points,), each checked.
@@ -54,10 +56,11 @@ class Solver:
         """
         hertz = np.asarray(hertz, dtype=float)
         arrays = empty(len(self.observed), len(hertz))
-        length = _block_length(self.plan)
+        fronts = self.route.fronts
+        length = _block_length(self.plan, fronts)
         for start in range(0, len(hertz), length):
             here = np.arange(start, min(start + length, len(hertz)))
-            self._attempt(self.plan, hertz, here, arrays, Status.OK)
+            self._attempt(self.plan, hertz, here, arrays, Status.OK, fronts)
         failing = _failing(arrays)
         for _ in range(2):
             if len(failing) < _WORTH_A_PLAN:
@@ -80,12 +83,12 @@ class Solver:
         """
         hertz = np.asarray(hertz, dtype=float)
         values = np.empty((len(self.observed), len(hertz)), dtype=complex)
-        length = _block_length(self.plan)
-        steps = needed_steps(self.plan, {column for c in self.observed for column in c})
+        fronts = self.route.fronts
+        length = _block_length(self.plan, fronts)
         for start in range(0, len(hertz), length):
             here = slice(start, start + length)
             s = 2j * pi * hertz[here]
-            values[:, here] = replay_quick(self.numbers, self.plan, self.observed, s, steps)
+            values[:, here] = replay_quick(self.numbers, self.plan, self.observed, s, fronts=fronts)
         size = np.abs(values)
         bad = np.flatnonzero(~((size > 1 / _RANGE) & (size < _RANGE)).all(axis=0))
         if len(bad):
@@ -109,34 +112,48 @@ class Solver:
         return self.precise.beside(Fraction(0))
 
     def _attempt(
-        self, plan: Plan, hertz: Array, here: Array, arrays: dict[str, Array], status: Status
+        self,
+        plan: Plan,
+        hertz: Array,
+        here: Array,
+        arrays: dict[str, Array],
+        status: Status,
+        fronts: Fronts | None = None,
     ) -> None:
         """Solve the points `here`, the ones out of a double's range with powers of two."""
         s = 2j * pi * hertz[here]
-        plain = replay(self.numbers, plan, self.observed, s, scaled=False)
+        plain = replay(self.numbers, plan, self.observed, s, fronts=fronts)
         _keep(arrays, here, plain, status)
         size = np.abs(plain.mantissa)
         inside = (size > 1 / _RANGE) & (size < _RANGE) | (plain.error == 0)
         beyond = np.flatnonzero(~inside.all(axis=0))
         if len(beyond):
-            there = replay(self.numbers, plan, self.observed, s[beyond], scaled=True)
+            there = replay_scaled(self.numbers, plan, self.observed, s[beyond])
             _keep(arrays, here[beyond], there, status)
 
     def _point_by_point(self, hertz: Array, failing: Array, arrays: dict[str, Array]) -> None:
         zeros = 0
-        for place in failing:
+        for number, place in enumerate(failing):
             if zeros >= _ZEROS_ENOUGH:
-                locals_: Sequence[Local | None] = [_NOTHING] * len(self.observed)
-            else:
-                locals_ = self.precise.at(Fraction(float(hertz[place])))
-                vanish = all(item is not None and item.vanishes for item in locals_)
-                zeros = zeros + 1 if vanish else 0
-            for row, item in enumerate(locals_):
-                if arrays["status"][row, place] == Status.UNDEFINED:
-                    _keep_local(arrays, row, int(place), item)
+                _keep_zeros(arrays, failing[number:])
+                return
+            locals_ = self.precise.at(Fraction(float(hertz[place])))
+            rows = np.flatnonzero(arrays["status"][:, place] == Status.UNDEFINED)
+            found = [locals_[row] for row in rows]
+            vanish = all(item is not None and item.vanishes for item in found)
+            zeros = zeros + 1 if vanish else 0
+            for row, item in zip(rows, found, strict=True):
+                _keep_local(arrays, int(row), int(place), item)
 
 
-_NOTHING = Local(0.0, 0j, 0, 0j)
+class Ports(NamedTuple):
+    """Two-ports that are known by their numbers, in doubles and in balls, by part."""
+
+    floats: Mapping[str, TwoPort]
+    balls: Mapping[str, TwoPort]
+
+
+NO_PORTS = Ports({}, {})
 
 
 def prepare(
@@ -146,15 +163,18 @@ def prepare(
     observed: Sequence[Functional],
     driven: Functional,
     hertz: Array,
+    ports: Ports = NO_PORTS,
 ) -> Solver:
-    """Evaluate the circuit's values and plan the elimination.
+    """Evaluate the circuit's values, plan the elimination and choose how to run it.
 
     Parameters
     ----------
     netlist, system : the circuit and its equations for the question.
     observed : what is asked for, each a linear function of the unknowns.
     driven : what is set to 1.
-    hertz : where the solver will be used; a few of these are the samples of the plan.
+    hertz : where the solver will be used; a few of these are the samples of the plan, and
+        their number decides between single steps and dense blocks.
+    ports : the two-ports of the circuit that are known by their numbers.
 
     Raises
     ------
@@ -163,19 +183,22 @@ def prepare(
         determines some unknowns.
 
     """
-    entries = numbers(system, driven, float_values(netlist))
-    plan = _plan(entries, _spread(np.asarray(hertz, dtype=float)))
+    entries = numbers(system, driven, float_values(netlist, ports=ports.floats))
+    hertz = np.asarray(hertz, dtype=float)
+    plan = _plan(entries, _spread(hertz))
     if plan.undetermined:
         plan = _plan(entries, _GENERIC)
     if plan.undetermined:
         raise _singular(system, plan)
+    route = choose_route(plan, len(hertz))
+    plan = replace(plan, remark=str(route))
     places = tuple(zip(entries.rows, entries.columns, strict=True))
     precise = Precise(
         plan,
-        lambda: numbers(system, driven, ball_values(netlist), places=places),
+        lambda: numbers(system, driven, ball_values(netlist, ports=ports.balls), places=places),
         tuple(observed),
     )
-    return Solver(entries, plan, tuple(observed), precise)
+    return Solver(entries, plan, tuple(observed), precise, route)
 
 
 _GENERIC = np.array([0.0137, 13.7, 13.7e3, 13.7e6])  # hertz, where nothing better is known
@@ -214,10 +237,11 @@ def _singular(system: System, plan: Plan) -> EquationError:
     )
 
 
-def _block_length(plan: Plan) -> int:
+def _block_length(plan: Plan, fronts: Fronts | None) -> int:
     """Points that are solved together: many, but with a working set that caches like."""
     least, most = _BLOCK
-    return int(np.clip(_BYTES // (16 * (plan.slots + 3 * plan.size)), least, most))
+    dense = 0 if fronts is None else fronts.stored
+    return int(np.clip(_BYTES // (16 * (plan.slots + dense + 3 * plan.size)), least, most))
 
 
 def _failing(arrays: dict[str, Array]) -> Array:
@@ -237,6 +261,14 @@ def _keep(arrays: dict[str, Array], here: Array, answer: Replayed, status: Statu
     for name in ("mantissa", "exponent", "slope", "error"):
         arrays[name][rows, places] = getattr(answer, name)[rows, columns]
     arrays["status"][rows, places] = np.where(zero, Status.ZERO, status)
+
+
+def _keep_zeros(arrays: dict[str, Array], places: Array) -> None:
+    """Fill what is not known yet with zeros."""
+    rows, columns = np.nonzero(arrays["status"][:, places] == Status.UNDEFINED)
+    for name in ("mantissa", "exponent", "slope", "error"):
+        arrays[name][rows, places[columns]] = 0
+    arrays["status"][rows, places[columns]] = Status.ZERO
 
 
 def _keep_local(arrays: dict[str, Array], row: int, place: int, item: Local | None) -> None:

@@ -21,6 +21,7 @@ from acsolve.circuit.expression import (
     ZERO,
     Expression,
     Name,
+    PortElement,
     S,
     add,
     call,
@@ -397,6 +398,24 @@ def _crystal(board: Board, part: Part) -> None:
     susceptance = multiply(S, capacitance)
     arm = add(resistance, multiply(S, inductance))
     _series(board, part, part.nodes, (add(ONE, multiply(susceptance, arm)), susceptance))
+
+
+@_stamp("cascade")
+def _cascade(board: Board, part: Part) -> None:
+    """Hybrid equations: what a far end returns to the near end vanishes in a long row."""
+    near, far = part.nodes[:2]
+    first = board.branch(part, " near")
+    second = board.branch(part, " far")
+    board.leave(near, first)
+    board.leave(far, second, MINUS_ONE)
+    entering = board.law(part, f"current into {part.name}")
+    board.current(entering, first, MINUS_ONE)
+    board.voltage(entering, near, PortElement(part.name, "g11"))
+    board.current(entering, second, PortElement(part.name, "g12"))
+    leaving = board.law(part, f"voltage out of {part.name}")
+    board.voltage(leaving, far, MINUS_ONE)
+    board.voltage(leaving, near, PortElement(part.name, "g21"))
+    board.current(leaving, second, PortElement(part.name, "g22"))
 
 
 def mutual_inductance(coupling: Coupling) -> Expression:

@@ -18,6 +18,7 @@ from acsolve.circuit.expression import (
     Name,
     Number,
     Pi,
+    PortElement,
     Power,
     Product,
     Quotient,
@@ -151,6 +152,8 @@ def expression_text(expression: Expression, spelling: Spelling) -> str:
             return _power_item(base, exponent, spelling)
         case Call():
             return _call_text(expression, spelling)
+        case PortElement(block, place):
+            return spelling.name(f"{block}.{place}")
 
 
 def _power_item(base: Expression, exponent: Expression, spelling: Spelling) -> str:

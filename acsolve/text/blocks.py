@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from typing import NamedTuple
 
+from acsolve.circuit.cascade import Row
 from acsolve.circuit.kind import KINDS, LETTERS
 from acsolve.errors import Label
 from acsolve.source import Span
@@ -124,6 +125,8 @@ def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
         return
     arguments, inner = _arguments(kind, block, scope, draft.kind_turns)
     shared = _Copies(draft, block, count, outer, arguments, inner)
+    if count > 1 and not scope.prefix:
+        _note_row(shared, book)
     for number in range(1, count + 1):
         book.step(kind.span)
         child = _copy(shared, number, book)
@@ -131,6 +134,16 @@ def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
         settle(child, book, walker)
         if number == 1:
             _check_arguments(draft, block, child, book)
+
+
+def _note_row(shared: _Copies, book: Book) -> None:
+    """Remember copies in a row of a block with two pins."""
+    pins = [pin for pin, _ in shared.block.head.pins]
+    if len(pins) == 2:
+        near, far = (shared.outer[pin] for pin in pins)
+        name = shared.draft.name
+        row = Row(name=name, count=shared.number, near=near, far=far, pin=pins[1])
+        book.rows.append(row)
 
 
 def _copy(shared: _Copies, number: int, book: Book) -> Scope:

@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, field
 from typing import NamedTuple
 
+from acsolve.circuit.cascade import Row
 from acsolve.source import Source, Span
 from acsolve.text import limits
 from acsolve.text.problems import Problems
@@ -67,6 +68,7 @@ class Book:
     met_overrides: set[str] = field(default_factory=set)
     left_out: set[str] = field(default_factory=set)  # full names of parts not fitted
     coupled: list[Coupled] = field(default_factory=list)
+    rows: list[Row] = field(default_factory=list)  # copies in a row, at the level of the file
     nodes: Nodes = field(default_factory=Nodes)
     used: set[str] = field(default_factory=set)  # full names of quantities in use
     joins: list[list[str]] = field(default_factory=list)

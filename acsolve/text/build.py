@@ -7,6 +7,7 @@ from contextlib import suppress
 from dataclasses import replace
 from typing import Any, TypeVar
 
+from acsolve.circuit.cascade import cascades
 from acsolve.circuit.netlist import Netlist, Part, Variant
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
@@ -84,7 +85,7 @@ class _Builder:
         netlist = self._with_variants(netlist, variants)
         netlist = replace(netlist, quantities=quantities.finished())
         self._last_checks(netlist)
-        return netlist
+        return replace(netlist, cascades=cascades(netlist, book.rows))
 
     # ------------------------------------------------------------ stages
 

@@ -7,6 +7,7 @@ from hypothesis import strategies as st
 
 from acsolve.analyses.question import transfer_ask
 from acsolve.circuit.expression import ZERO
+from acsolve.circuit.cascade import CASCADE
 from acsolve.circuit.kind import KINDS
 from acsolve.equations.stamp import STAMPS
 from acsolve.equations.system import DRIVE, SHORT, assemble
@@ -14,8 +15,8 @@ from tests.strategies import R, any_lumped, network, pairs, scattered
 
 
 def test_every_kind_has_a_stamp():
-    """The table of kinds and the table of stamps name the same kinds."""
-    assert set(STAMPS) == set(KINDS)
+    """Every kind of the format has a stamp; a row of copies has one too, and is no such kind."""
+    assert set(STAMPS) == {*KINDS, CASCADE}
 
 
 @settings(max_examples=80)
