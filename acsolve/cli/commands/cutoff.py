@@ -26,7 +26,11 @@ def work(options: Options) -> int:
     def answer(item: Asked) -> Sequence[Entry]:
         found = [
             item.path.cutoffs(
-                level, reference=options.reference, symbolic=options.symbolic, keep=options.kept
+                level,
+                reference=options.reference,
+                band=options.band,
+                symbolic=options.symbolic,
+                keep=options.kept,
             )
             for level in _levels(item, options)
         ]
@@ -51,6 +55,6 @@ command = make_command(
     "Every frequency where the response crosses a level below its reference.\n"
     "Without --from, --to or --into it answers the file's own ask lines.",
     work,
-    (*PAIRS, "into", "level", "reference", *VALUES, *FORMS, *OUTPUT),
+    (*PAIRS, "into", "level", "reference", "band", *VALUES, *FORMS, *OUTPUT),
     "filter.circuit --from in --to out --level -20dB",
 )
