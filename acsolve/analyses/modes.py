@@ -27,10 +27,27 @@ Terms: TypeAlias = dict[tuple[int, int], tuple[complex, ...]]  # place -> coeffi
 _ALWAYS = 40  # unknowns up to which modes cost less than they may save
 _LARGEST = 300
 _NARROW = 0.5  # |real| / |imaginary| above which no grid misses a mode
+_FINEST = 1e-12  # least relative width of a mode: less is beyond its own accuracy
 _WIDTHS = (-3.0, -1.0, -0.3, 0.4, 1.0, 3.0)  # half widths beside a mode that are sampled
+_OWN_WIDTHS = (-100.0, -10.0, -3.0, -1.0, -0.3, 0.0, 0.3, 1.0, 3.0, 10.0, 100.0)
 _BESIDE = 1e-6  # least relative distance from a mode: the slopes there say the rest
+_AGREEMENT = 1e-7  # of the slope with all modes and zeros, relative to the sum of their sizes
+_ASIDE = 0.9713  # keeps the shifts off frequencies that values round to
 _REACH = 1e3  # a shift finds modes within this factor
 _WITHOUT_RESONANCE = {"resistor", "capacitor", "voltage_source", "current_source", "ammeter"}
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class NearAxis:
+    """Natural modes and zeros in rad/s near the frequency axis, up to the end of a band.
+
+    `complete` is false where some may be missing or wrong: the network is too large, an entry
+    is no ratio of polynomials, the matrix is singular at a point from which they are sought,
+    or all of them together do not give the slope H'/H that the solver finds.
+    """
+
+    modes: Array
+    complete: bool
 
 
 def landmarks(netlist: Netlist, solver: Solver, band: Array) -> Array:
@@ -39,18 +56,66 @@ def landmarks(netlist: Netlist, solver: Solver, band: Array) -> Array:
     Empty where the network is large, or where an entry is no ratio of polynomials.
     """
     plain = all(part.kind in _WITHOUT_RESONANCE for part in netlist.parts)
-    if solver.numbers.size > (_ALWAYS if plain else _LARGEST):
-        return np.zeros(0)
+    modes = near_axis(solver, band, largest=_ALWAYS if plain else _LARGEST).modes
+    width = np.maximum(np.abs(modes.real), _BESIDE * modes.imag)
+    return _beside(modes, width, _WIDTHS, band)
+
+
+def on_own_scale(modes: Array, band: Array) -> Array:
+    """Frequencies in hertz at each mode and zero and beside it, in steps of its own damping."""
+    width = np.maximum(np.abs(modes.real), _FINEST * modes.imag)
+    return _beside(modes, width, _OWN_WIDTHS, band)
+
+
+def near_axis(solver: Solver, band: Array, *, largest: int = _LARGEST) -> NearAxis:
+    """The narrow modes and zeros of the first answer, in networks of up to so many unknowns."""
     ratios = [ratio_of(entry) for entry in solver.numbers.distinct]
     known = [item for item in ratios if item is not None]
-    if len(known) < len(ratios):
-        return np.zeros(0)
+    if solver.numbers.size > largest or len(known) < len(ratios):
+        return NearAxis(modes=np.zeros(0, dtype=complex), complete=False)
     low, high = 2 * np.pi * band
-    shifts = np.geomspace(low, high, 1 + int(np.log10(high / low) / 3))
-    closings = [None, *solver.observed]
-    pencils = [_pencil(solver.numbers, known, closing) for closing in closings]
-    found = [pencil.near(float(shift)) for pencil in pencils for shift in shifts]
-    return _sampled(np.concatenate(found), high)
+    shifts = _ASIDE * np.geomspace(low, high, 1 + int(np.log10(high / low) / 3))
+    poles, zeros = (
+        [_pencil(solver.numbers, known, closing).inverses(float(shift)) for shift in shifts]
+        for closing in (None, solver.observed[0])
+    )
+    found = [
+        _modes(item, float(shift))
+        for side in (poles, zeros)
+        for item, shift in zip(side, shifts, strict=True)
+        if item is not None
+    ]
+    modes = np.concatenate([np.zeros(0, dtype=complex), *found])
+    modes = modes[np.isfinite(modes) & (np.abs(modes.real) < _NARROW * modes.imag)]
+    return NearAxis(
+        modes=modes[modes.imag < 2 * high], complete=_explain(solver, shifts, poles, zeros)
+    )
+
+
+def _modes(inverses: Array, shift: float) -> Array:
+    """The values of s within reach of the shift from which they were found."""
+    near = inverses[np.abs(inverses) > 1 / (2 * _REACH)]
+    return np.asarray(shift * (1 - 1 / near))
+
+
+def _explain(
+    solver: Solver, shifts: Array, poles: Sequence[Array | None], zeros: Sequence[Array | None]
+) -> bool:
+    """Whether H'/H = sum 1/(s - zero) - sum 1/(s - pole), at s = j·shift for each shift.
+
+    With the inverse eigenvalue v = shift/(shift - s0) the term 1/(s - s0) is
+    v/(shift + (s - shift)·v), in which modes at infinity are exactly nothing.
+    """
+    slopes = solver.solve(shifts / (2 * np.pi)).slope[0]
+    for shift, slope, below, above in zip(shifts, slopes, poles, zeros, strict=True):
+        if below is None or above is None:
+            return False
+        terms = [v / (1 + (1j - 1) * v) for v in (above, below)]
+        size = 1 + sum(float(np.abs(item).sum()) for item in terms)
+        missing = abs(terms[0].sum() - terms[1].sum() - shift * slope)
+        if not missing < _AGREEMENT * size:
+            return False
+    return True
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -60,19 +125,21 @@ class _Pencil:
     size: int
     terms: Terms
 
-    def near(self, shift: float) -> Array:
-        """Values of s within reach of a shift at which the matrix is singular."""
+    def inverses(self, shift: float) -> Array | None:
+        """shift/(shift - s) for the values of s at which the matrix is singular.
+
+        None where it is singular at the shift itself, which tells nothing.
+        """
         constant, linear = self._matrices(shift)
         states = np.flatnonzero(linear.any(axis=0))
         try:
             solved = np.linalg.solve(constant + linear, linear[:, states])
         except np.linalg.LinAlgError:
-            return np.zeros(0, dtype=complex)
+            return None
         if not np.isfinite(solved).all():
-            return np.zeros(0, dtype=complex)
-        inverse = np.linalg.eigvals(solved[states])
-        inverse = inverse[np.abs(inverse) > 1 / (2 * _REACH)]
-        return np.asarray(shift * (1 - 1 / inverse))
+            return None
+        among = solved[states]
+        return np.asarray(np.linalg.eigvals(among if among.imag.any() else among.real))
 
     def _matrices(self, shift: float) -> tuple[Array, Array]:
         """Constant and linear matrix in s/shift, rows scaled to a largest entry of 1."""
@@ -132,9 +199,8 @@ def _linearised(size: int, terms: Terms) -> _Pencil:
     return _Pencil(size, linear)
 
 
-def _sampled(modes: Array, high: float) -> Array:
-    modes = modes[np.isfinite(modes) & (np.abs(modes.real) < _NARROW * modes.imag)]
-    width = np.maximum(np.abs(modes.real), _BESIDE * modes.imag)
-    places = [modes.imag + factor * width for factor in _WIDTHS]
-    omega = np.unique(np.concatenate(places))
-    return np.asarray(omega[(omega > 0) & (omega < high)] / (2 * np.pi))
+def _beside(modes: Array, width: Array, steps: Sequence[float], band: Array) -> Array:
+    """Frequencies in hertz below the band's end, so many widths from each mode."""
+    places = [modes.imag + factor * width for factor in steps]
+    hertz = np.unique(np.concatenate(places)) / (2 * np.pi)
+    return np.asarray(hertz[(hertz > 0) & (hertz < band[1])])

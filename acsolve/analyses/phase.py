@@ -7,7 +7,7 @@ vectorised solution.
 
 A zero exactly on the axis turns the phase by +180° a time, as the limit of a zero slightly
 left of the axis; a lossless pole by -180°, as the limit of a slightly damped one. Nearer to the
-axis than 1e-9 of its frequency counts as on it. Near such a point H'/H = p/(s - s0), and two
+axis than 1e-12 of its frequency counts as on it. Near such a point H'/H = p/(s - s0), and two
 samples tell both p and s0.
 """
 
@@ -30,8 +30,8 @@ _AGREEMENT = 0.3  # radians and nepers between slope and samples
 _CLOSE_AGREEMENT = 0.01  # the same where an interval may turn more, since points run out
 _MOST_POINTS = 200_000  # beside those asked for
 _ROUNDS = 80
-_NARROW = 4e-9  # relative width below which an interval is not divided further
-_ON_AXIS = 1e-9  # relative distance of a zero or pole from the axis that counts as none
+_NARROW = 4e-12  # relative width below which an interval is not divided further
+_ON_AXIS = 1e-12  # relative distance of a zero or pole from the axis that counts as none
 _DOUBT = 3.0  # how far a fitted zero or pole may be off, in misfits between its samples
 _NEARLY_WHOLE = 0.2  # how near a fitted order must be to a whole number to mean something
 _ASYMPTOTE = 0.05  # radians, nepers: how near the start must be to the behaviour at 0 Hz
@@ -121,7 +121,11 @@ def at(known: Track, phase: Array, omega: Array, angle: Array) -> Array:
     """Continuous phase at frequencies of known principal phase, by the tracked samples around."""
     low = np.clip(np.searchsorted(known.omega, omega, side="right") - 1, 0, len(phase) - 1)
     high = np.clip(np.searchsorted(known.omega, omega), 0, len(phase) - 1)
-    about = (phase[low] + phase[high]) / 2
+    return nearest((phase[low] + phase[high]) / 2, angle)
+
+
+def nearest(about: Array, angle: Array) -> Array:
+    """The angles, by so many whole turns that each lies within half a turn of another."""
     return about + _wrapped(angle - about)
 
 
