@@ -8,7 +8,7 @@ of vectors, and entries without s stay scalars.
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import accumulate
 from math import isfinite
@@ -16,7 +16,16 @@ from operator import add
 from typing import Any, Protocol, TypeAlias
 
 from acsolve.algebra.scaled import Scaled, Vector
-from acsolve.circuit.expression import Expression, Number, PortElement, Product, Sum
+from acsolve.circuit.expression import (
+    Expression,
+    Frequency,
+    Name,
+    Number,
+    PortElement,
+    Product,
+    Quotient,
+    Sum,
+)
 from acsolve.circuit.netlist import Netlist, Part, bindings
 from acsolve.equations.evaluate import (
     BallArithmetic,
@@ -50,6 +59,9 @@ class PolynomialEntry:
 
 
 def _horner(coefficients: Sequence[Scalar], s: Element) -> Element:
+    if len(coefficients) == 2:  # as nearly every entry with s in it
+        low, high = coefficients
+        return high * s + low if _nonzero(low) else high * s
     total = coefficients[-1]
     for item in coefficients[-2::-1]:
         total = total * s + item if _nonzero(item) else total * s
@@ -155,6 +167,29 @@ class Numbers:
         values = [entry.slope(s) for entry in self.distinct]
         return [values[item] for item in self.which]
 
+    def late(self, s: Element) -> Callable[[int], Element]:
+        """The element at a place, worked out when asked for; shared ones once."""
+        counts, all_which = Counter(self.which), self.which
+        known = {which: self.distinct[which].at(s) for which, count in counts.items() if count > 1}
+        lines = [
+            entry.coefficients if isinstance(entry, PolynomialEntry) else ()
+            for entry in self.distinct
+        ]
+
+        def element(place: int) -> Element:
+            which = all_which[place]
+            if which in known:
+                return known[which]
+            line = lines[which]
+            if len(line) != 2:  # written out below: a long ladder asks a million times
+                return self.distinct[which].at(s)
+            found = line[1] * s
+            if line[0]:
+                found += line[0]
+            return found
+
+        return element
+
     def scaled(self, s: Vector) -> tuple[list[Element], list[Element | None]]:
         """Elements and derivatives by place, with powers of two where these may matter."""
         pairs = [
@@ -238,6 +273,10 @@ class _Reader:
         match expression:
             case Sum(left, right):
                 found = _added(self(left), self(right))
+            case Product(Frequency(), Name(name)):  # these two are nearly all there is
+                found = 0.0, self.evaluate.name(name)
+            case Quotient(Number() as top, Name(name)):
+                found = (self.evaluate(top) / self.evaluate.name(name),)
             case Product(Number(value), right) if value == -1:
                 inner = self(right)
                 found = None if inner is None else tuple([-item for item in inner])
@@ -260,7 +299,10 @@ def _added(
 def _entry(expression: Expression, read: _Reader, *, exact: bool) -> Entry | None:
     """The entry, or None where floats say that it is zero at every s."""
     if isinstance(expression, PortElement):
-        return ElementEntry(expression.place, read.evaluate.ports[expression.block])
+        port = read.evaluate.ports.get(expression.block)
+        if port is None:
+            raise known_by_numbers(expression.block)
+        return ElementEntry(expression.place, port)
     try:
         coefficients = read(expression)
     except (ZeroDivisionError, OverflowError) as problem:
@@ -274,6 +316,18 @@ def _entry(expression: Expression, read: _Reader, *, exact: bool) -> Entry | Non
     if not all(isfinite(abs(item)) for item in coefficients):
         raise _not_finite(expression)
     return PolynomialEntry(coefficients) if coefficients else None
+
+
+def known_by_numbers(block: str) -> EquationError:
+    """The error where an answer needs more of a part than numbers at frequencies."""
+    return EquationError(
+        Diagnostic(
+            code="equations.not-rational",
+            message=f"{block} is known by measured numbers only, and this answer needs a formula",
+            hint="Ask for numbers over frequency: a sweep, or a two-port, with --band or --at.",
+            where=block,
+        )
+    )
 
 
 def _not_finite(expression: Expression) -> EquationError:

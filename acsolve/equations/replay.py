@@ -21,9 +21,17 @@ from numpy.typing import NDArray
 
 from acsolve.algebra.blocks import backward_cut, factor_cut, transposed_cut
 from acsolve.algebra.fronts import Fronts
-from acsolve.algebra.lu import Element, Vector, backward, factor, needed_steps, transposed
+from acsolve.algebra.lu import (
+    Element,
+    Vector,
+    backward,
+    factor,
+    needed_steps,
+    transposed,
+)
 from acsolve.algebra.plan import Plan
 from acsolve.algebra.scaled import Exponent, Scaled, aligned, power_of_two
+from acsolve.algebra.stream import streamed
 from acsolve.equations.element_row import element_places, scaled_row
 from acsolve.equations.numeric import ElementEntry, Numbers
 from acsolve.equations.system import Functional
@@ -91,13 +99,13 @@ def replay_quick(
     """Plain values, shape (observed, points), from the steps they need; nothing is checked."""
     wanted = {column for c in observed for column in c}
     with np.errstate(all="ignore"):  # as in `replay`
-        entries, right = numbers.at(s), {numbers.size - 1: 1.0}
+        right = {numbers.size - 1: 1.0}
         if fronts is None:
             steps = needed_steps(plan, wanted)
-            x = backward(factor(plan, entries, right, kept=steps), steps)
+            x = backward(streamed(plan, numbers.late(s), right, steps), steps)
         else:
             steps = needed_steps(fronts.light, wanted)
-            x = backward_cut(factor_cut(fronts, entries, right, len(s), kept=steps), steps)
+            x = backward_cut(factor_cut(fronts, numbers.at(s), right, len(s), kept=steps), steps)
         found = np.zeros((len(observed), len(s)), dtype=complex)
         for row, c in zip(found, observed, strict=True):
             value = _value(c, x)

@@ -58,6 +58,7 @@ class Solver:
         arrays = empty(len(self.observed), len(hertz))
         fronts = self.route.fronts
         length = _block_length(self.plan, fronts)
+        _steady_memory()
         for start in range(0, len(hertz), length):
             here = np.arange(start, min(start + length, len(hertz)))
             self._attempt(self.plan, hertz, here, arrays, Status.OK, fronts)
@@ -85,6 +86,7 @@ class Solver:
         values = np.empty((len(self.observed), len(hertz)), dtype=complex)
         fronts = self.route.fronts
         length = _block_length(self.plan, fronts)
+        _steady_memory()
         for start in range(0, len(hertz), length):
             here = slice(start, start + length)
             s = 2j * pi * hertz[here]
@@ -235,6 +237,16 @@ def _singular(system: System, plan: Plan) -> EquationError:
             "conducts to, or an op-amp without feedback.",
         )
     )
+
+
+def _steady_memory() -> None:
+    """Keep the allocator from giving back what the next vectors need at once.
+
+    The common allocator on Linux returns the top of its heap whenever more than 128 kB are free
+    there, and the next vector pays for fresh pages: half the time of a long ladder (measured).
+    Freeing one large block, never touched, raises that limit; elsewhere this does nothing.
+    """
+    np.empty(1 << 24, dtype=np.uint8)
 
 
 def _block_length(plan: Plan, fronts: Fronts | None) -> int:

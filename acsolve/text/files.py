@@ -2,11 +2,8 @@
 
 from __future__ import annotations
 
-import gc
 import os
 import sys
-from collections.abc import Iterator
-from contextlib import contextmanager
 from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import BinaryIO, NoReturn
@@ -14,6 +11,7 @@ from typing import BinaryIO, NoReturn
 from acsolve.circuit.netlist import Netlist
 from acsolve.codes import Code
 from acsolve.errors import Diagnostic, TextError
+from acsolve.memory import nothing_collected
 from acsolve.source import Source
 from acsolve.text import limits
 
@@ -26,13 +24,14 @@ class Reading:
     warnings: tuple[Diagnostic, ...] = ()
 
 
-def parse(text: str, *, name: str = "text") -> Reading:
+def parse(text: str, *, name: str = "text", folder: str | None = None) -> Reading:
     r"""Read a circuit from a text.
 
     Parameters
     ----------
     text : str, the circuit in the text format
     name : str, default "text", what messages call it
+    folder : str, where files that the text names are looked for, when an answer needs them
 
     Returns
     -------
@@ -63,26 +62,10 @@ def parse(text: str, *, name: str = "text") -> Reading:
     if len(text) > limits.FILE_BYTES:
         _too_large(name, len(text))
     problems = Problems(source)
-    with _nothing_collected():
+    with nothing_collected():
         netlist = build(source, statements(source, problems), problems)
     warnings = problems.finish()
-    return Reading(replace(netlist, remarks=_remarks(source.text)), warnings)
-
-
-@contextmanager
-def _nothing_collected() -> Iterator[None]:
-    """Hold the cyclic garbage collector back while millions of small lasting objects are made.
-
-    Nothing here is garbage yet, so every pass over them is lost: a third of the time for a
-    large file.
-    """
-    running = gc.isenabled()
-    gc.disable()
-    try:
-        yield
-    finally:
-        if running:
-            gc.enable()
+    return Reading(replace(netlist, remarks=_remarks(source.text), folder=folder), warnings)
 
 
 def _remarks(text: str) -> tuple[str, ...]:
@@ -120,9 +103,9 @@ def read(path: str | os.PathLike[str], *, stdin: BinaryIO | None = None) -> Read
     """
     if os.fspath(path) == "-":
         stream = stdin if stdin is not None else sys.stdin.buffer
-        return _decoded(stream.read(limits.FILE_BYTES + 1), "standard input")
+        return _decoded(stream.read(limits.FILE_BYTES + 1), "standard input", ".")
     name = os.fspath(path)
-    return _decoded(_content(Path(path), name), name)
+    return _decoded(_content(Path(path), name), name, str(Path(name).parent))
 
 
 def _content(path: Path, name: str) -> bytes:
@@ -156,7 +139,7 @@ def _near_file(path: Path) -> str:
     return f"Did you mean {path.parent / near}?" if near else "Check the name and the directory."
 
 
-def _decoded(content: bytes, name: str) -> Reading:
+def _decoded(content: bytes, name: str, folder: str) -> Reading:
     if len(content) > limits.FILE_BYTES:
         _too_large(name, len(content))
     if b"\0" in content:
@@ -168,7 +151,7 @@ def _decoded(content: bytes, name: str) -> Reading:
         line = content.count(b"\n", 0, stop.start) + 1
         _fail("file.encoding", f"{name} is not UTF-8: line {line} has a byte that is none",
               "Save the file as UTF-8.")  # fmt: skip
-    return parse(text, name=name)
+    return parse(text, name=name, folder=folder)
 
 
 def _too_large(name: str, size: int) -> NoReturn:
