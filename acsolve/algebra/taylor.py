@@ -143,6 +143,8 @@ def refined(jets: Jets, cell: Cell, rising: int, *, place: int = 0) -> Cell:
             narrowed = _newton(jets, cell, middle, value, place)
             if narrowed is None:
                 side = sign(value)
+                if value.is_zero():  # the root itself, met exactly
+                    return Cell(middle, middle)
                 if not side:
                     return cell
                 narrowed = Cell(cell.low, middle) if side == rising else Cell(middle, cell.high)

@@ -19,6 +19,7 @@ from acsolve.circuit.expression import (
     divide,
     is_zero,
     multiply,
+    negate,
     number,
     power,
     subtract,
@@ -72,3 +73,7 @@ def _of_call(item: Call) -> Expression:
             return multiply(call("sinh", argument), inner)
         case "sinh":
             return multiply(call("cosh", argument), inner)
+        case "cos":
+            return negate(multiply(call("sin", argument), inner))
+        case "sin":
+            return multiply(call("cos", argument), inner)

@@ -8,10 +8,10 @@ from fractions import Fraction
 from math import isclose, pi, sin
 
 import pytest
-from hypothesis import assume, given, settings
+from hypothesis import assume, example, given, settings
 from hypothesis import strategies as st
 
-from acsolve.algebra.bracket import search
+from acsolve.algebra.bracket import Doubt, Root, outermost, search
 from acsolve.algebra.summit import summit
 from acsolve.algebra.taylor import Cell, cells, enclosure, refined, sign_at
 
@@ -63,6 +63,7 @@ places = st.builds(Fraction, st.integers(100, 3000), st.integers(97, 103))
 
 
 @given(st.lists(places, max_size=6, unique=True))
+@example([Fraction(9, 2), Fraction(7)])
 def test_every_simple_root_is_found_and_none_invented(roots):
     """The roots of a polynomial, with their directions, each in a cell of 2**-80."""
     inside = sorted(root for root in roots if BAND.low < root < BAND.high)
@@ -188,3 +189,20 @@ def test_refining_a_slope():
     cell = refined(wave, Cell(Fraction(1), Fraction(2)), -1, place=1)
     assert isclose(float(cell.middle), pi / 2, rel_tol=1e-15)
     assert sign_at(wave, Fraction(3), place=1) == -1
+
+
+@given(st.lists(st.fractions(1, 32, max_denominator=50), min_size=1, max_size=4, unique=True))
+def test_outermost_roots_are_the_ends_of_the_search(roots):
+    """The first and the last root over a band are those of all roots, and none is none."""
+    jets, ordered = product(roots), sorted(roots)
+    for last, root in ((False, ordered[0]), (True, ordered[-1])):
+        found = outermost(jets, BAND, last=last, most=MOST)
+        assert isinstance(found, Root)
+        assert found.cell.low <= root <= found.cell.high
+    beyond = Cell(ordered[-1] + 1, ordered[-1] + 9)
+    assert outermost(jets, beyond, last=True, most=MOST) is None
+
+
+def test_outermost_says_where_it_gave_up():
+    """With too few cells the answer is a doubt, not silence."""
+    assert isinstance(outermost(product([Fraction(7, 3)]), BAND, last=True, most=3), Doubt)
