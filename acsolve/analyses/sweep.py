@@ -17,11 +17,13 @@ from acsolve.circuit.cascade import condensed
 from acsolve.circuit.netlist import Netlist, Pair
 from acsolve.equations.chain import chains
 from acsolve.equations.chain_balls import ball_chains
+from acsolve.equations.measured import MeasuredBalls, has_measured, measured, refuse_outside
 from acsolve.equations.numeric import float_values, takes_branch
 from acsolve.equations.precise import Local
 from acsolve.equations.result import Solution, Status
 from acsolve.equations.solver import Ports, Solver, prepare
 from acsolve.errors import AnalysisError, Diagnostic, EquationError
+from acsolve.memory import nothing_collected
 
 Array = NDArray[Any]
 
@@ -122,10 +124,16 @@ def sweep(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> Sweep:
     return Sweep(settled=settled, placed=None, **arrays)
 
 
-def response(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> NDArray[np.complex128]:
-    """The complex response alone; the shape of `hertz` is kept."""
+def response(
+    netlist: Netlist, ask: Ask, hertz: ArrayLike, *, checked: bool = True
+) -> NDArray[np.complex128]:
+    """The complex response alone; the shape of `hertz` is kept.
+
+    Without the check only points that are not finite, or out of a double's range, are looked at.
+    """
     wanted, shape = _checked(hertz)
-    value = solver_for(netlist, ask, wanted).solve(wanted).value()
+    solver = solver_for(netlist, ask, wanted)
+    value = solver.solve(wanted).value() if checked else solver.quick(wanted)
     return np.asarray(value[0].reshape(shape))
 
 
@@ -145,6 +153,13 @@ def solver_for(
     netlist: Netlist, ask: Ask, hertz: Array, *, targets: Sequence[Pair] | None = None
 ) -> Solver:
     """Assemble and plan a question; `targets` observes voltages there instead of its own."""
+    with nothing_collected():
+        return _prepared(netlist, ask, hertz, targets)
+
+
+def _prepared(
+    netlist: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] | None
+) -> Solver:
     short = condensed(netlist, _asked_about(ask, targets))
     values = float_values(short)
     system = ask.system(short, branch_for=lambda part: takes_branch(values, part))
@@ -155,14 +170,18 @@ def solver_for(
         if targets is None
         else [system.voltage(pair) for pair in targets]
     )
-    rows = chains(short)
+    rows, parts = chains(short), measured(short)
+    refuse_outside(parts, hertz)
     return prepare(
         short,
         system,
         observed=observed,
         driven=ask.driven(system),
         hertz=hertz,
-        ports=Ports(rows, ball_chains(rows)),
+        ports=Ports(
+            {**rows, **parts},
+            {**ball_chains(rows), **{name: MeasuredBalls(port) for name, port in parts.items()}},
+        ),
     )
 
 
@@ -210,6 +229,9 @@ def _phase(
     positive = hertz > 0
     usable = positive & (solution.status[0] < Status.ZERO)
     phase = np.full(len(hertz), np.nan)
+    if has_measured(netlist):
+        phase[usable] = np.unwrap(solution.phase()[0, usable])
+        return phase, False  # 0 Hz, from where phase is counted, may not have been measured
     turned = by_ladder(ladder_of(netlist, ask), hertz[usable], solution.phase()[0, usable])
     if turned is not None and positive.all():
         phase[usable] = turned

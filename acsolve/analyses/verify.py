@@ -124,11 +124,16 @@ def _agrees_exactly(
 def _evaluator(
     values: Mapping[str, Value], arithmetic: Arithmetic, overrides: Mapping[str, Any]
 ) -> Evaluator:
-    """Over the circuit's values; a symbol that no equation holds (times zero, say) is one."""
-    one = arithmetic.number(Fraction(1))
-    unheld = {name: one for name, value in values.items() if value.expression is None}
+    """Over the circuit's values; a symbol that no equation holds may be any number.
+
+    It is none that values are likely to be divided by, as 1 is in R0/(k - 1).
+    """
+    some = arithmetic.number(_UNHELD)
+    unheld = {name: some for name, value in values.items() if value.expression is None}
     return Evaluator(values, arithmetic, overrides={**unheld, **overrides})
 
+
+_UNHELD = Fraction(1_000_003, 1_009)
 
 #: Up to so many terms: points, and the range of their whole numbers. A wrong form of degree
 #: 30 passes with a probability below 1e-9, 1e-5 and 1e-2; evaluation costs as much as the form.

@@ -40,7 +40,7 @@ from acsolve.circuit.netlist import GROUND, Netlist, Pair, Part, QuantityName
 from acsolve.circuit.reach import reach
 from acsolve.errors import Diagnostic, Severity
 
-AskedFor = QuantityName | Literal["impedance", "response"]
+AskedFor = QuantityName | Literal["impedance", "response", "two-port"]
 
 _DRIVES_VOLTAGE = ("voltage-ratio", "transadmittance")
 _OBSERVES_CURRENT = ("current-ratio", "transadmittance")

@@ -80,16 +80,20 @@ class Call:
     argument: Expression
 
 
+ElementName = Literal["g11", "g12", "g21", "g22", "s11", "s12", "s21", "s22"]
+
+
 @dataclass(frozen=True, slots=True)
 class PortElement:
     """An element of a two-port that is known only by its numbers at each s.
 
     `block` is the part it belongs to, `place` one of g11, g12, g21, g22 of the hybrid
-    equations I1 = g11·V1 + g12·I2, V2 = g21·V1 + g22·I2, where I2 leaves at the far end.
+    equations I1 = g11·V1 + g12·I2, V2 = g21·V1 + g22·I2, where I2 leaves at the far end, or
+    one of s11, s12, s21, s22 of the waves b1 = s11·a1 + s12·a2, b2 = s21·a1 + s22·a2.
     """
 
     block: str
-    place: Literal["g11", "g12", "g21", "g22"]
+    place: ElementName
 
 
 Expression = Number | Name | Pi | Frequency | Sum | Product | Quotient | Power | Call | PortElement

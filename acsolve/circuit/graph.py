@@ -79,6 +79,7 @@ _CONDUCTING: dict[str, tuple[tuple[int, int], ...]] = {
     "gyrator": _BOTH,
     "line": ((0, 2), (1, 3)),
     "cascade": ((0, 1), (1, 2)),
+    "measured": ((0, 2), (1, 2)),
 }
 
 #: Kind -> the attribute at whose zero the part is an open circuit.

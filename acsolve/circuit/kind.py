@@ -11,7 +11,7 @@ from typing import Literal
 from acsolve.circuit import unit
 from acsolve.circuit.unit import Dimension
 
-Shape = Literal["value", "in_s", "phasor"]
+Shape = Literal["value", "in_s", "phasor", "text"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,7 +27,8 @@ class Attribute:
     """A named attribute of a kind.
 
     `shape`: "value" is a plain quantity, "in_s" an expression that may contain s,
-    "phasor" an amplitude that may carry an angle (stored under `angle`, in degrees).
+    "phasor" an amplitude that may carry an angle (stored under `angle`, in degrees),
+    "text" a text in double quotes (stored with the part, no value).
     `flag` attributes are words without a value. `at` says whether `at FREQUENCY`
     may follow. A required attribute left out makes the part its own symbol
     (`own_symbol`) or is an error.
@@ -171,6 +172,11 @@ KINDS: dict[str, Kind] = {
             ),
         ),
         Kind("ammeter", _PAIR),
+        Kind(
+            "measured",
+            (Terminal("near"), Terminal("far"), Terminal("ref", "gnd")),
+            (Attribute("file", None, shape="text", required=True),),
+        ),
     )
 }
 

@@ -10,12 +10,15 @@ from __future__ import annotations
 
 from collections.abc import Callable, Collection, Iterator, Mapping
 from dataclasses import dataclass, field, replace
-from typing import Any, Literal
+from typing import TYPE_CHECKING, Any, Literal
 
 from acsolve.circuit.expression import names as names_in
 from acsolve.circuit.kind import KINDS, Kind
 from acsolve.circuit.value import Quantity, Value
 from acsolve.source import Source, Span
+
+if TYPE_CHECKING:
+    from acsolve.ports.data import PortData
 
 GROUND = "gnd"
 
@@ -37,6 +40,7 @@ class Part:
     kind: str
     nodes: tuple[str, ...]
     values: Mapping[str, Value] = field(default_factory=dict)
+    file: str | None = None  # of a measured part, as the text names it
     span: Span | None = field(default=None, compare=False, repr=False)
 
     @property
@@ -189,6 +193,8 @@ class Netlist:
     source: Source | None = field(default=None, compare=False, repr=False)
     cascades: tuple[Cascade, ...] = field(default=(), compare=False, repr=False)
     sections: Mapping[str, Section] = field(default_factory=dict)
+    folder: str | None = field(default=None, compare=False, repr=False)  # of the files it names
+    data: Mapping[str, PortData] = field(default_factory=dict, repr=False)  # of measured parts
     _found: dict[str, Any] = field(init=False, default_factory=dict, compare=False, repr=False)
 
     def nodes(self) -> tuple[str, ...]:

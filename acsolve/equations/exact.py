@@ -17,6 +17,7 @@ from acsolve.circuit.expression import (
     Frequency,
     Name,
     Number,
+    PortElement,
     Power,
     Product,
     Quotient,
@@ -30,6 +31,7 @@ from acsolve.circuit.netlist import Netlist, with_values
 from acsolve.circuit.value import Value
 from acsolve.equations.evaluate import angle_name, in_order
 from acsolve.equations.leaf import collect, monomial
+from acsolve.equations.numeric import known_by_numbers
 from acsolve.equations.system import Functional, System
 from acsolve.errors import Diagnostic, EquationError
 
@@ -222,12 +224,12 @@ class ExactSystem:
 _PRIME = (1 << 61) - 1
 
 
-def exact_system(system: System, expand: Expander) -> ExactSystem:
-    """The system over the smallest ring that holds its values."""
+def exact_system(system: System, expand: Expander, also: Sequence[Expression] = ()) -> ExactSystem:
+    """The system over the smallest ring that holds its values, and those of `also`."""
     entries = [
         {column: expand(entry) for column, entry in law.entries.items()} for law in system.laws
     ]
-    basis = _basis([entry for row in entries for entry in row.values()])
+    basis = _basis([*(entry for row in entries for entry in row.values()), *also])
     convert = _Converter(basis)
     rows = tuple(_cleared(convert, row) for row in entries)
     plan = plan_minors([sorted(row) for row in rows])
@@ -268,6 +270,8 @@ def _leaf_key(leaf: Expression) -> tuple[int, object]:
             return (1, natural_key(name))
         case Number(value):
             return (2, value)
+        case PortElement(block):
+            raise known_by_numbers(block)
         case _:
             return (3, repr(leaf))
 
@@ -341,6 +345,12 @@ class _Converter:
             else:
                 bottom = _product(bottom, factor)
         return top, bottom
+
+
+def ratio_in(basis: Basis, expression: Expression) -> tuple[Polynomial, Polynomial]:
+    """An expanded expression, whose leaves the basis holds, as numerator and denominator."""
+    top, bottom = _Converter(basis)(expression)
+    return top, basis.ring.constant(1) if bottom is None else bottom
 
 
 def _times(polynomial: Polynomial, factor: Polynomial | None) -> Polynomial:

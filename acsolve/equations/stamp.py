@@ -19,6 +19,7 @@ from acsolve.circuit.expression import (
     ONE,
     PI,
     ZERO,
+    ElementName,
     Expression,
     Name,
     PortElement,
@@ -416,6 +417,35 @@ def _cascade(board: Board, part: Part) -> None:
     board.voltage(leaving, far, MINUS_ONE)
     board.voltage(leaving, near, PortElement(part.name, "g21"))
     board.current(leaving, second, PortElement(part.name, "g22"))
+
+
+WAVE_OHM = 50  # reference of the waves inside a measured part; answers do not depend on it
+
+
+@_stamp("measured")
+def _measured(board: Board, part: Part) -> None:
+    """Waves at both ports: V = a + b, I = (a - b)/R, and b = S·a with the measured S."""
+    near, far, ref = part.nodes
+    per_ohm = divide(ONE, number(WAVE_OHM))
+    ports = []
+    for node, name in ((near, "near"), (far, "far")):
+        into, back = (board.branch(part, f" {name} {way}") for way in ("into", "back"))
+        for here, sign in ((node, per_ohm), (ref, negate(per_ohm))):
+            board.leave(here, into, sign)
+            board.leave(here, back, negate(sign))
+        law = board.law(part, f"voltage of {part.name} at {node}")
+        across(board, law, (node, ref))
+        board.current(law, into, MINUS_ONE)
+        board.current(law, back, MINUS_ONE)
+        ports.append((into, back))
+    (a1, b1), (a2, b2) = ports
+    rows: tuple[tuple[int, ElementName, ElementName], ...]
+    rows = (b1, "s11", "s12"), (b2, "s21", "s22")
+    for own, first, second in rows:
+        law = board.law(part, f"wave out of {part.name}")
+        board.current(law, own, MINUS_ONE)
+        board.current(law, a1, PortElement(part.name, first))
+        board.current(law, a2, PortElement(part.name, second))
 
 
 def mutual_inductance(coupling: Coupling) -> Expression:

@@ -8,6 +8,7 @@ from acsolve.text.options import (
     parse_gain,
     parse_level,
     parse_pair,
+    parse_resistance,
     parse_value,
 )
 from acsolve.text.write import write
@@ -21,6 +22,7 @@ __all__ = [
     "parse_gain",
     "parse_level",
     "parse_pair",
+    "parse_resistance",
     "parse_value",
     "read",
     "write",

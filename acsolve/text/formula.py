@@ -20,6 +20,7 @@ from acsolve.text.tree import (
     Formula,
     GroundWord,
     Literal,
+    Quoted,
     Raised,
     Reference,
     Signed,
@@ -106,6 +107,10 @@ class Formulas:
                 return self._power(formula, scope, turns, in_s)
             case Applied():
                 return self._applied(formula, scope, turns, in_s)
+            case Quoted(span=span):
+                self._refuse(
+                    "name.not-a-value", "a text in quotes is not a value", span, "Write a value."
+                )
             case GroundWord(span):
                 self._refuse(
                     "name.not-a-value", "gnd is a node, not a value", span, "Write a value."

@@ -322,6 +322,13 @@ def _named(node: Grown) -> tree.Argument:
     return tree.Argument(node.parts[0], node.parts[1], node.span)
 
 
+def _quoted(node: Grown) -> tree.Argument:
+    path, sign = node.parts
+    span = node.place(sign)
+    text = tree.Quoted(node.quoted(sign), span)
+    return tree.Argument(path, tree.ValueText(text, None, None, None, span), node.span)
+
+
 def _stated(node: Grown) -> tree.Fitted:
     value = node.parts[2] if len(node.parts) > 2 else None
     return tree.Fitted(node.parts[0], node.parts[1], value, node.span)
@@ -494,6 +501,7 @@ _GROWERS: dict[str, Grower] = {
     "count": _count,
     "positional": _positional,
     "named": _named,
+    "quoted": _quoted,
     "stated": _stated,
     "group": _bracket,
     "arm": _arm,

@@ -18,7 +18,7 @@ from acsolve.text import tree
 from acsolve.text.book import Book
 from acsolve.text.formula import Formulas, UnreadableError
 from acsolve.text.givens import Givens, PartPlace, Place
-from acsolve.text.measure import DECIBEL, HERTZ, SECOND, Measure, Solver, measure_of
+from acsolve.text.measure import DECIBEL, HERTZ, OHM, SECOND, Measure, Solver, measure_of
 from acsolve.text.parsing import option
 from acsolve.text.problems import Problems
 from acsolve.text.questions import Questions
@@ -158,6 +158,25 @@ def parse_duration(text: str, *, netlist: Netlist | None = None, name: str = "du
         return desk.done(None)
     clause = tree.Clause("for", content, content.span)
     return desk.done(desk.questions().positive(clause, "a duration", SECOND))
+
+
+def parse_resistance(
+    text: str, *, netlist: Netlist | None = None, name: str = "resistance"
+) -> Value:
+    """Read a resistance above zero: `50 ohm`, `50`, or an expression of the circuit's names.
+
+    Raises
+    ------
+    TextError
+        [syntax.*, value.unit, value.positive] it is no resistance.
+
+    """
+    desk = _Desk(text, name, netlist)
+    content = desk.tree("option_expression")
+    if content is None:
+        return desk.done(None)
+    clause = tree.Clause("reference", content, content.span)
+    return desk.done(desk.questions().positive(clause, "a resistance", OHM))
 
 
 def parse_gain(text: str, *, netlist: Netlist | None = None, name: str = "gain") -> Value:

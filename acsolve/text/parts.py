@@ -14,7 +14,7 @@ from acsolve.text.book import Book, is_absent
 from acsolve.text.formula import UnreadableError
 from acsolve.text.givens import Givens, PartPlace
 from acsolve.text.scope import Draft, Given
-from acsolve.text.tree import Argument
+from acsolve.text.tree import Argument, Quoted
 from acsolve.text.words import listed, meant
 
 
@@ -46,9 +46,29 @@ class Parts:
             self._check_kind(draft, kind)
         nodes = self._nodes(draft, kind, arguments)
         values = self._values(draft, kind, given, arguments)
+        file = self._file(draft, kind, arguments)
         if nodes is None:
             return None
-        return Part(name=draft.name, kind=kind.name, nodes=nodes, values=values, span=draft.span)
+        return Part(
+            name=draft.name, kind=kind.name, nodes=nodes, values=values, file=file, span=draft.span
+        )
+
+    def _file(self, draft: Draft, kind: Kind, arguments: tuple[Argument, ...]) -> str | None:
+        """The text that a kind needs, as the name of a file."""
+        for attribute in kind.attributes:
+            if attribute.shape != "text":
+                continue
+            found = self._attribute(draft, attribute, arguments)
+            text = None if found is None else found.text.formula
+            if isinstance(text, Quoted) and text.text.strip():
+                return text.text
+            self._book.problems.add(
+                "kind.argument",
+                f"{draft.local} needs its {attribute.name}, a text in double quotes",
+                draft.span if found is None else found.span,
+                hint=f'Write {draft.local} : {kind.name}({attribute.name} = "coax.s2p", …).',
+            )
+        return None
 
     # ------------------------------------------------------------ terminals
 
@@ -202,6 +222,8 @@ class Parts:
         """The values of a part by attribute."""
         values: dict[str, Value] = {}
         for attribute in kind.attributes:
+            if attribute.shape == "text":
+                continue
             if attribute.name == kind.principal:
                 found = given
             else:

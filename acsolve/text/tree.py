@@ -68,7 +68,15 @@ class Applied:
     span: Span
 
 
-Formula = Literal | Reference | GroundWord | Signed | Terms | Raised | Applied
+@dataclass(frozen=True, slots=True)
+class Quoted:
+    """A text in double quotes, where an attribute takes one."""
+
+    text: str
+    span: Span
+
+
+Formula = Literal | Reference | GroundWord | Signed | Terms | Raised | Applied | Quoted
 
 
 @dataclass(frozen=True, slots=True)

@@ -110,6 +110,8 @@ class _Writer:
             f"{terminal.name} = {node}"
             for terminal, node in zip(kind.terminals, part.nodes, strict=True)
         ]
+        if part.file is not None:
+            arguments.append(f"file = {text_literal(part.file)}")
         arguments += self._attributes(part)
         return f"{part.name} : {kind.name}({', '.join(arguments)})"
 

@@ -24,6 +24,7 @@ _PORTS = {
     "transformer": ("01", "23"),
     "gyrator": ("01", "23"),
     "line": ("02", "13"),
+    "measured": ("02", "12"),
 }
 _OPEN = {"capacitor": "value", "admittance": "value", "constant_phase": "coefficient"}
 
@@ -180,6 +181,10 @@ class Dense:
                             self._across(ports[there], -y),
                         )
                     )
+            case "measured":
+                for here, there, factor in ((0, 1, 3), (1, 0, 5)):
+                    drops = {currents[here]: -x * factor, currents[there]: -y * factor}
+                    put(self._sum(self._across(ports[here]), drops))
             case _:
                 put(self._sum(across, {current: -x}))
         if "input_resistance" in part.values:

@@ -1,0 +1,1 @@
+"""Networks known by their numbers at frequencies: conversion, cascade, files."""
