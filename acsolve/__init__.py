@@ -31,14 +31,26 @@ if TYPE_CHECKING:
     from acsolve.analyses.closed_form import ClosedForm
     from acsolve.analyses.cutoff import Cutoff, CutoffAnswer
     from acsolve.analyses.equations import Equations
+    from acsolve.analyses.equivalent import Equivalent
+    from acsolve.analyses.insertion import Insertion
     from acsolve.analyses.nested import NestedForm
+    from acsolve.analyses.port_sweep import PortSweep
+    from acsolve.analyses.proof import Verification
+    from acsolve.analyses.steady import SteadySine
+    from acsolve.analyses.step import StepAnswer
     from acsolve.analyses.sweep import Sweep
     from acsolve.analyses.transfer import TransferAnswer
     from acsolve.equations.result import Status
+    from acsolve.over import Member
+    from acsolve.ports.convert import converted
+    from acsolve.ports.data import PortData
+    from acsolve.ports.touchstone import parse_touchstone, read_touchstone
+    from acsolve.ports.write import touchstone_text
+    from acsolve.two_port import TwoPort
 
 __version__ = "0.1.0"
 
-#: Types of answers, loaded when they are first asked for.
+#: Types of answers and what reads and writes them, loaded when they are first asked for.
 _ANSWERS = {
     "Approximation": "acsolve.analyses.approximate",
     "CheckAnswer": "acsolve.analyses.check",
@@ -46,10 +58,23 @@ _ANSWERS = {
     "Cutoff": "acsolve.analyses.cutoff",
     "CutoffAnswer": "acsolve.analyses.cutoff",
     "Equations": "acsolve.analyses.equations",
+    "Equivalent": "acsolve.analyses.equivalent",
+    "Insertion": "acsolve.analyses.insertion",
+    "Member": "acsolve.over",
     "NestedForm": "acsolve.analyses.nested",
+    "PortData": "acsolve.ports.data",
+    "PortSweep": "acsolve.analyses.port_sweep",
     "Status": "acsolve.equations.result",
+    "SteadySine": "acsolve.analyses.steady",
+    "StepAnswer": "acsolve.analyses.step",
     "Sweep": "acsolve.analyses.sweep",
     "TransferAnswer": "acsolve.analyses.transfer",
+    "TwoPort": "acsolve.two_port",
+    "Verification": "acsolve.analyses.proof",
+    "converted": "acsolve.ports.convert",
+    "parse_touchstone": "acsolve.ports.touchstone",
+    "read_touchstone": "acsolve.ports.touchstone",
+    "touchstone_text": "acsolve.ports.write",
 }
 
 __all__ = [
@@ -66,19 +91,32 @@ __all__ = [
     "Draft",
     "EquationError",
     "Equations",
+    "Equivalent",
+    "Insertion",
+    "Member",
     "NestedForm",
     "PairLike",
     "Path",
+    "PortData",
+    "PortSweep",
     "Source",
     "Span",
     "Status",
+    "SteadySine",
+    "StepAnswer",
     "Sweep",
     "TextError",
     "TransferAnswer",
+    "TwoPort",
+    "Verification",
     "__version__",
+    "converted",
     "frame",
     "parse",
+    "parse_touchstone",
     "read",
+    "read_touchstone",
+    "touchstone_text",
 ]
 
 

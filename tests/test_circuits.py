@@ -72,6 +72,8 @@ CUTOFFS = [
     ("charger_feed", None, None, None, [395.2]),
     ("charger_feed", None, None, "low-cost build", [723.3]),
     ("siren_wien", None, None, None, [301.2, 3285.0]),
+    ("mast_cable", None, None, None, [447.5e3]),
+    ("rust_probe", None, None, None, [6.450]),
 ]
 
 

@@ -49,51 +49,66 @@ def integer_coefficients(coefficients: Sequence[Fraction]) -> list[int]:
     return [int(value * common) for value in coefficients]
 
 
-def _simple_roots(factor: Any) -> list[complex]:
-    """The roots of a square-free integer polynomial to double precision.
+def root_balls(factor: Any, bits: int = 54) -> list[Any]:
+    """The roots of a square-free integer polynomial as complex balls.
 
-    Roots come in exact conjugate pairs: one of each pair is computed and mirrored. Roots on
-    the imaginary axis lie in the common factor of p(x) and p(-x), whose roots are
-    symmetric to both axes: there, an isolated root whose ball meets an axis lies on it.
+    Each part is exactly zero or known to a relative width of 2**-bits. Roots on the
+    imaginary axis lie in the common factor of p(x) and p(-x), whose roots are symmetric to
+    both axes: there, an isolated root whose ball meets an axis lies on it.
     """
     from flint import fmpz_poly
 
     mirrored = fmpz_poly([(-1) ** k * int(value) for k, value in enumerate(factor.coeffs())])
     symmetric = factor.gcd(mirrored)
     rest = factor / symmetric
-    roots = _isolated(symmetric, imaginary=True) if symmetric.degree() > 0 else []
-    return roots + (_isolated(rest, imaginary=False) if rest.degree() > 0 else [])
+    roots = _isolated(symmetric, bits, imaginary=True) if symmetric.degree() > 0 else []
+    return roots + (_isolated(rest, bits, imaginary=False) if rest.degree() > 0 else [])
 
 
-def _isolated(factor: Any, *, imaginary: bool) -> list[complex]:
+def _simple_roots(factor: Any) -> list[complex]:
+    """The roots of a square-free integer polynomial to double precision, in exact pairs."""
+    return mirrored_roots(root_balls(factor))
+
+
+def _isolated(factor: Any, goal: int, *, imaginary: bool) -> list[Any]:
     """The roots, sharp in both parts; `imaginary` says whether some may lie on that axis."""
-    for bits in (128, 256, 512, 1024, 2048, 4096):
-        with precision(bits):
+    for doubling in range(6):
+        with precision((goal + 74) << doubling):
             balls = [root for root, _ in factor.complex_roots()]
-            if all(_sharp(ball, imaginary=imaginary) for ball in balls):
-                return _mirrored(balls)
-    raise ArithmeticError("the roots could not be separated at 4096 bits")
+            if all(is_sharp(ball, goal, imaginary=imaginary) for ball in balls):
+                return [settled(ball, imaginary=imaginary) for ball in balls]
+    raise ArithmeticError(f"the roots could not be separated at {(goal + 74) << 5} bits")
 
 
-def _sharp(ball: Any, *, imaginary: bool) -> bool:
-    """Whether both parts are known to double precision, or are zero."""
+def is_sharp(ball: Any, goal: int, *, imaginary: bool) -> bool:
+    """Whether both parts are known well enough, or are zero."""
+    from flint import arb
+
+    width = arb(2) ** -goal
     known = [
-        zero or float(part.rad()) <= 2.0**-54 * abs(float(part.mid()))
+        zero or bool(part.rad() <= width * abs(part.mid()))
         for part, zero in (
             (ball.real, imaginary and ball.real.contains(0)),
             (ball.imag, ball.imag.contains(0)),
         )
     ]
-    return all(known) and float(abs(ball).rad()) <= 2.0**-54 * float(abs(ball).mid())
+    return all(known) and bool(abs(ball).rad() <= width * abs(ball).mid())
 
 
-def _mirrored(balls: list[Any]) -> list[complex]:
-    """Doubles from sharp balls, each pair from its upper half; parts that may be zero are."""
+def settled(ball: Any, *, imaginary: bool) -> Any:
+    """An isolated root on the axis that its ball meets: that part is zero."""
+    from flint import acb
+
+    real = 0 if imaginary and ball.real.contains(0) else ball.real
+    return acb(real, 0 if ball.imag.contains(0) else ball.imag)
+
+
+def mirrored_roots(balls: Sequence[Any]) -> list[complex]:
+    """Doubles from settled balls, each pair from its upper half."""
     roots: list[complex] = []
     for ball in balls:
-        real = 0.0 if ball.real.contains(0) else float(ball.real.mid())
-        imag = float(ball.imag.mid())
-        if ball.imag.contains(0):
+        real, imag = float(ball.real.mid()), float(ball.imag.mid())
+        if ball.imag == 0:
             roots.append(complex(real, 0.0))
         elif imag > 0:
             roots += [complex(real, imag), complex(real, -imag)]

@@ -144,7 +144,8 @@ def refined(jets: Jets, cell: Cell, rising: int, *, place: int = 0) -> Cell:
             if narrowed is None:
                 side = sign(value)
                 if value.is_zero():  # the root itself, met exactly
-                    return Cell(middle, middle)
+                    beside = middle * _RELATIVE / 4
+                    return Cell(max(cell.low, middle - beside), min(cell.high, middle + beside))
                 if not side:
                     return cell
                 narrowed = Cell(cell.low, middle) if side == rising else Cell(middle, cell.high)

@@ -9,7 +9,9 @@ from fractions import Fraction
 from acsolve.algebra.roots import LARGEST_CERTIFIED
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.enclosed import enclosed_roots
+from acsolve.analyses.hidden import is_passive
 from acsolve.analyses.question import Ask, AskedQuantity
+from acsolve.analyses.stability import Stability, judged
 from acsolve.analyses.transfer import ratio
 from acsolve.circuit.check import check, check_question
 from acsolve.circuit.expression import Number
@@ -35,16 +37,23 @@ class Modes:
     held: str
     order: int
     values: tuple[complex, ...] | None
+    stability: Stability
 
     @property
     def stable(self) -> bool | None:
-        """Whether no mode grows; None where it is not known."""
-        return None if self.values is None else all(mode.real <= 0 for mode in self.values)
+        """Whether no mode lies right of the frequency axis; None where it is not known."""
+        planes = self.stability.planes
+        if planes is not None:
+            return planes.right == 0
+        return {"stable": True, "marginal": True, "unstable": False}.get(self.stability.verdict)
 
     @property
     def decays(self) -> bool | None:
         """Whether every mode decays (one at 0 Hz or on the axis does not); None if unknown."""
-        return None if self.values is None else all(mode.real < 0 for mode in self.values)
+        planes = self.stability.planes
+        if planes is not None:
+            return planes.right == planes.axis == 0
+        return {"stable": True, "marginal": False, "unstable": False}.get(self.stability.verdict)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -74,13 +83,13 @@ def check_answer(netlist: Netlist, remarks: Iterable[Diagnostic] = ()) -> CheckA
         () if refused else tuple(found for ask in asks if (found := natural_modes(netlist, ask)))
     )
     if not refused:
-        problems += _instabilities(netlist, modes)
+        problems += _instabilities(modes)
         problems += _one_pole_instabilities(netlist, asks, modes)
     ordered = sorted(_distinct(problems), key=lambda item: item.sort_key)
     return CheckAnswer(netlist.title, netlist.nodes(), netlist.parts, modes, tuple(ordered))
 
 
-_ANSWERED = frozenset({"transfer", "impedance", "cutoff", "sweep"})
+_ANSWERED = frozenset({"transfer", "impedance", "cutoff", "sweep", "step", "two-port"})
 
 
 def _unanswered(netlist: Netlist) -> list[Diagnostic]:
@@ -95,7 +104,7 @@ def _unanswered(netlist: Netlist) -> list[Diagnostic]:
             severity="note",
             message=f"no command of this version answers `{word}` lines",
             span=span,
-            hint="They are read and kept; transfer, impedance, cutoff and sweep are answered.",
+            hint="They are read and kept; acsolve --help lists what is answered.",
         )
         for word, span in found
     ]
@@ -184,21 +193,21 @@ def natural_modes(netlist: Netlist, ask: Ask) -> Modes | None:
     if not form.symbols and order <= LARGEST_CERTIFIED:
         values = enclosed_roots(form, found.driven)
     held = "at rest" if ask.source is None else "open" if ask.quantity == "impedance" else "held"
-    return Modes(ask.source, held, order, values)
+    return Modes(ask.source, held, order, values, judged(form, passive=is_passive(netlist)))
 
 
-def _instabilities(netlist: Netlist, modes: Iterable[Modes]) -> list[Diagnostic]:
-    del netlist
+def _instabilities(modes: Iterable[Modes]) -> list[Diagnostic]:
     problems = []
     for item in modes:
-        growing = [mode for mode in item.values or () if mode.real > 0]
+        planes = item.stability.planes
+        growing = 0 if planes is None else planes.right
         if growing:
             problems.append(
                 Diagnostic(
                     code="graph.unstable",
                     severity="warning",
-                    message=f"the network is not stable: {len(growing)} of its {item.order} "
-                    f"natural modes {'grows' if len(growing) == 1 else 'grow'}, so a steady "
+                    message=f"the network is not stable: {growing} of its {item.order} "
+                    f"natural modes {'grows' if growing == 1 else 'grow'}, so a steady "
                     "response does not exist",
                     hint="Look for positive feedback or a negative value.",
                 )

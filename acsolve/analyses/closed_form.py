@@ -40,6 +40,21 @@ class Checked:
 
 
 @dataclass(frozen=True, slots=True, eq=False, repr=False)
+class Origin:
+    """What a closed form was cancelled from, over its own basis.
+
+    `driven` is the characteristic polynomial of the whole network as the question drives it
+    (up to a factor without s); `removed` and `denominator` are what was taken out of it first
+    and what was left then. `passive` says that no part can give more energy than it stored.
+    """
+
+    driven: Polynomial
+    removed: Polynomial
+    denominator: Polynomial
+    passive: bool
+
+
+@dataclass(frozen=True, slots=True, eq=False, repr=False)
 class ClosedForm:
     """numerator/denominator, exact, common factors removed.
 
@@ -53,6 +68,7 @@ class ClosedForm:
     denominator: Polynomial
     values: Mapping[str, Value] = field(repr=False)
     checked: Checked | None = None
+    origin: Origin | None = None
 
     @property
     def rational(self) -> bool:

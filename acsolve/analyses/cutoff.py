@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from fractions import Fraction
 from math import inf, log10, sqrt
 from typing import Any, Literal
@@ -11,7 +11,9 @@ from typing import Any, Literal
 from acsolve.algebra.ball import precision
 from acsolve.algebra.crossing import Crossings
 from acsolve.analyses.closed_form import ClosedForm
+from acsolve.analyses.grid import HertzBand
 from acsolve.analyses.magnitude import Exact, Magnitude, ReferenceName, magnitude
+from acsolve.analyses.passband import FrequencyBand, bands
 from acsolve.codes import Code
 from acsolve.errors import AnalysisError, Diagnostic
 
@@ -85,12 +87,16 @@ class Reference:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Cutoff:
-    """One crossing; `closed_form` is the angular frequency as text, where there is one."""
+    """One crossing; `closed_form` is the angular frequency as text, where there is one.
+
+    `condition` says when such a text over symbols holds, None where it always does.
+    """
 
     hertz: float | None
     rad_per_s: float | None
     closed_form: str | None
     direction: Direction | None
+    condition: str | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -106,17 +112,21 @@ class CutoffAnswer:
     """All crossings of one level, in rising order, with what is proven about them.
 
     `complete` is True where it is proven that none is missing. `remarks` say in words
-    what a reader must know (no crossing, say, or when a closed form holds).
+    what a reader must know (no crossing, say, or when a closed form holds). `searched` is
+    the band in hertz that all of it speaks of; None where that is every frequency. `form` is
+    None where the network is too large for one. `bands` lie between neighbouring cutoffs.
     """
 
-    form: ClosedForm
+    form: ClosedForm | None
     reference: Reference
     level_db: float
     cutoffs: tuple[Cutoff, ...]
     touches: tuple[Touch, ...] = ()
     complete: bool
     method: str
+    searched: tuple[float, float] | None = None
     remarks: tuple[str, ...] = ()
+    bands: tuple[FrequencyBand, ...] = ()
 
 
 def cutoffs(
@@ -125,6 +135,8 @@ def cutoffs(
     level: CutoffLevel = HALF_POWER,
     reference: ReferenceName | Fraction | None = None,
     formula: ClosedForm | None = None,
+    band: HertzBand | None = None,
+    degree: int = 2,
 ) -> CutoffAnswer:
     """Every frequency where |H| crosses a level below its reference.
 
@@ -137,36 +149,87 @@ def cutoffs(
         the peak where both ends are zero, the larger end where neither is.
     formula : the same question with its parts as symbols, to give numeric cutoffs their
         closed form.
+    degree : closed forms are written up to this degree in ω², four at most.
+    band : only there. A rational form is answered for every frequency without one, any other
+        over a band from its own time scales.
 
     Raises
     ------
     AnalysisError
-        [equations.not-rational] a part is not rational in s; [question.no-reference] the
-        reference asked for is zero or infinite.
+        [equations.not-rational] a part is not rational in s and some values are symbols;
+        [question.no-reference] the reference asked for is zero, infinite or none;
+        [sweep.band] the band is none; [option.value] it is given where symbols stay.
 
     Notes
     -----
     With numbers: the positive roots in x = ω² of |N|² - level·|D|², square-free factored
     and isolated by Descartes' rule of signs (see `acsolve.algebra.real_roots`). With
-    symbols: the quadratic formula where that equation is of first or second degree in x.
+    symbols: radicals where that equation is of first or second degree in x, up to the fourth
+    on request.
+    Forms that are not rational: see `acsolve.analyses.band_cutoff`.
     """
     if not form.rational:
+        return _not_rational(form, level=level, reference=reference, band=band)
+    if form.symbols and band is not None:
         raise _refuse(
-            "equations.not-rational",
-            "the response is not a ratio of polynomials in s, so its cutoffs cannot be counted",
-            "Use `acsolve sweep` and read the crossing, or replace the line or "
-            "constant-phase part by a lumped model.",
+            "option.value",
+            f"a band goes with numbers, and {', '.join(form.symbols[:6])} stay symbols",
+            "Leave the band out, or give the parts values.",
         )
     if form.symbols:
         from acsolve.analyses.cutoff_formula import symbolic_cutoffs
 
-        return symbolic_cutoffs(form, level=level, reference=reference)
+        return symbolic_cutoffs(form, level=level, reference=reference, degree=degree)
     found = _numeric(form, level=level, reference=reference)
-    if formula is not None and formula.symbols:
+    if formula is not None and formula.symbols and formula.rational:
         from acsolve.analyses.cutoff_formula import with_formulas
 
-        return with_formulas(found, formula, level=level, reference=reference)
-    return found
+        found = with_formulas(found, formula, level=level, reference=reference, degree=degree)
+    return found if band is None else _within(found, band)
+
+
+def _not_rational(
+    form: ClosedForm,
+    *,
+    level: CutoffLevel,
+    reference: ReferenceName | Fraction | None,
+    band: HertzBand | None,
+) -> CutoffAnswer:
+    from acsolve.analyses.band_cutoff import band_cutoffs
+
+    if form.symbols:
+        listed = ", ".join(form.symbols[:6])
+        raise _refuse(
+            "equations.not-rational",
+            "the response is not a ratio of polynomials in s, so its cutoffs have no closed "
+            f"form, and {listed} {'is a symbol' if len(form.symbols) == 1 else 'are symbols'}",
+            "Give every part a number.",
+        )
+    found = band_cutoffs(form, level=level, reference=reference, band=band)
+    return replace(found, bands=bands(found.cutoffs) if found.complete else ())
+
+
+def _within(found: CutoffAnswer, band: HertzBand) -> CutoffAnswer:
+    """The part of an answer that lies in a band."""
+    from acsolve.analyses.band_cutoff import checked_band
+
+    edges = checked_band(band)
+    low, high = float(edges.low), float(edges.high)
+
+    def inside(hertz: float | None) -> bool:
+        return hertz is not None and low * (1 - 1e-9) <= hertz <= high * (1 + 1e-9)
+
+    kept = tuple(item for item in found.cutoffs if inside(item.hertz))
+    missing = f"The gain does not cross this level within {edges}."
+    none = not kept and bool(found.cutoffs)
+    return replace(
+        found,
+        cutoffs=kept,
+        bands=tuple(item for item in found.bands if inside(item.low) and inside(item.high)),
+        touches=tuple(item for item in found.touches if inside(item.hertz)),
+        searched=(low, high),
+        remarks=(*found.remarks, missing) if none else found.remarks,
+    )
 
 
 def _numeric(
@@ -180,13 +243,15 @@ def _numeric(
     if basis.exact is None or level.exact is None:
         method = "root isolation by Descartes' rule of signs over enclosed coefficients"
     remarks = () if crossings.found or not crossings.complete else _why_none(size, basis, level)
+    listed = tuple(
+        _cutoff(item.value, item.rises) for item in crossings.found if item.rises is not None
+    )
     return CutoffAnswer(
         form=form,
         reference=basis.shown,
         level_db=level.db,
-        cutoffs=tuple(
-            _cutoff(item.value, item.rises) for item in crossings.found if item.rises is not None
-        ),
+        cutoffs=listed,
+        bands=bands(listed, size),
         touches=tuple(_touch(item.value) for item in crossings.found if item.rises is None),
         complete=crossings.complete,
         method=method if crossings.complete else method + ", undecided at 4096 bits",
@@ -216,7 +281,7 @@ def _crossings(size: Magnitude, basis: _Basis, level: CutoffLevel) -> Crossings:
 def _reference(size: Magnitude, asked: ReferenceName | Fraction | None) -> _Basis:
     if isinstance(asked, Fraction):
         if asked == 0:
-            raise _no_reference("a stated gain of zero is no reference")
+            raise no_reference("a stated gain of zero is no reference")
         constant = size.form.basis.ring.constant
         exact = constant(asked.numerator**2), constant(asked.denominator**2)
         shown = Reference(at="stated", gain=float(asked))
@@ -228,7 +293,7 @@ def _reference(size: Magnitude, asked: ReferenceName | Fraction | None) -> _Basi
     squared = low if name == "dc" else high
     word = "at 0 Hz" if name == "dc" else "at infinite frequency"
     if squared is None or squared[0] == 0:
-        raise _no_reference(f"the gain {word} is {'infinite' if squared is None else 'zero'}")
+        raise no_reference(f"the gain {word} is {'infinite' if squared is None else 'zero'}")
     gain = sqrt(_float(size.ball(squared)))
     shown = Reference(at=name, gain=gain, hertz=0.0 if name == "dc" else None)
     return _Basis(shown, lambda: size.ball(squared), squared)
@@ -236,7 +301,7 @@ def _reference(size: Magnitude, asked: ReferenceName | Fraction | None) -> _Basi
 
 def _by_shape(size: Magnitude, low: Exact | None, high: Exact | None) -> ReferenceName:
     if low is None or high is None:
-        raise _no_reference(
+        raise no_reference(
             f"the gain at {'0 Hz' if low is None else 'infinite frequency'} is infinite"
         )
     if low[0] == 0 and high[0] == 0:
@@ -247,12 +312,12 @@ def _by_shape(size: Magnitude, low: Exact | None, high: Exact | None) -> Referen
 def _peak(size: Magnitude, low: Exact | None, high: Exact | None) -> _Basis:
     """The largest |H|², among the stationary points and both ends."""
     if low is None or high is None:
-        raise _no_reference("the gain is infinite at one end, so there is no peak")
+        raise no_reference("the gain is infinite at one end, so there is no peak")
     if size.axis_poles().found:
-        raise _no_reference("the response has a pole on the frequency axis: no peak is finite")
+        raise no_reference("the response has a pole on the frequency axis: no peak is finite")
     stationary = size.stationary()
     if not stationary.complete:
-        raise _no_reference("the peak could not be located with certainty")
+        raise no_reference("the peak could not be located with certainty")
     values = {item.value: size.value(item.value) for item in stationary.found}
     ends = [_float(size.ball(end)) for end in (low, high)]
     best_x, best = None, max(ends)
@@ -260,7 +325,7 @@ def _peak(size: Magnitude, low: Exact | None, high: Exact | None) -> _Basis:
         if _float(value) > best:
             best_x, best = x, _float(value)
     if best == 0:
-        raise _no_reference("the gain is zero at every frequency")
+        raise no_reference("the gain is zero at every frequency")
     if best_x is None:
         end = low if ends[0] >= ends[1] else high
         shown = Reference(at="peak", gain=sqrt(best), hertz=0.0 if end is low else None)
@@ -328,7 +393,8 @@ def _float(value: Any) -> float:
     return float(value.mid()) if value.is_finite() else inf
 
 
-def _no_reference(message: str) -> AnalysisError:
+def no_reference(message: str) -> AnalysisError:
+    """The error for a reference that is none, `message` saying why."""
     return _refuse(
         "question.no-reference",
         f"{message}: there is nothing to count the level from",

@@ -5,12 +5,13 @@ from __future__ import annotations
 from typing import Any
 
 from acsolve.algebra.ball import precision
+from acsolve.algebra.factors import squarefree
 from acsolve.algebra.ring import Polynomial
-from acsolve.algebra.roots import LARGEST_CERTIFIED
+from acsolve.algebra.roots import LARGEST_CERTIFIED, is_sharp, mirrored_roots, settled
 from acsolve.analyses.closed_form import ClosedForm, evaluate_polynomial
 from acsolve.equations.evaluate import BallArithmetic
 
-_BITS = (256, 1024, 4096)
+_BITS = (256, 1024, 4096, 16384)
 
 
 def ball_coefficients(form: ClosedForm, polynomial: Polynomial) -> list[Any]:
@@ -50,13 +51,13 @@ def enclosed_roots(form: ClosedForm, polynomial: Polynomial) -> tuple[complex, .
     if polynomial.degrees()[place] > LARGEST_CERTIFIED:
         return None
     roots: list[complex] = []
-    for factor, multiplicity in polynomial.factor_squarefree()[1]:
+    for factor, multiplicity in squarefree(polynomial)[1]:
         if factor.degrees()[place] == 0:
             continue
-        found = _roots_of(form, factor)
+        found = factor_balls(form, factor)
         if found is None:
             return None
-        roots += [root for root in found for _ in range(int(multiplicity))]
+        roots += [root for root in mirrored_roots(found) for _ in range(int(multiplicity))]
     return tuple(sorted(roots, key=lambda root: (abs(root), root.imag, root.real)))
 
 
@@ -70,7 +71,7 @@ def axis_part(form: ClosedForm, polynomial: Polynomial) -> Polynomial:
         }
     )
     part = form.basis.ring.constant(1)
-    for factor, _ in polynomial.gcd(mirrored).factor_squarefree()[1]:
+    for factor, _ in squarefree(polynomial.gcd(mirrored))[1]:
         part = part * factor
     return part
 
@@ -82,50 +83,45 @@ def axis_coefficients(form: ClosedForm, part: Polynomial) -> list[Any]:
     return [value * (-1) ** k for k, value in enumerate(values[lowest::2])]
 
 
-def _roots_of(form: ClosedForm, factor: Polynomial) -> list[complex] | None:
-    """The roots of a square-free factor, those on the imaginary axis apart."""
+def factor_balls(form: ClosedForm, factor: Polynomial, bits: int = 54) -> list[Any] | None:
+    """The roots in s of a square-free factor as complex balls, sharp to so many bits.
+
+    Each part is exactly zero or known to a relative width of 2**-bits. None where 16384 bits
+    do not decide on which side of the imaginary axis a root lies.
+    """
     symmetric = axis_part(form, factor)
     parts = [(symmetric, True), (factor / symmetric, False)]
-    roots: list[complex] = []
+    roots: list[Any] = []
     for part, imaginary in parts:
         if part.degrees()[form.basis.s_index or 0] > 0:
-            found = _isolated(form, part, imaginary=imaginary)
+            found = _isolated(form, part, bits, imaginary=imaginary)
             if found is None:
                 return None
             roots += found
     return roots
 
 
-def _isolated(form: ClosedForm, factor: Polynomial, *, imaginary: bool) -> list[complex] | None:
-    from flint import acb_poly
+def _isolated(
+    form: ClosedForm, factor: Polynomial, goal: int, *, imaginary: bool
+) -> list[Any] | None:
+    from flint import acb, acb_poly
 
     for bits in _BITS:
+        if bits < goal + 70:
+            continue
         with precision(bits):
             coefficients = ball_coefficients(form, factor)
             zeros = next(power for power, value in enumerate(coefficients) if value != 0)
             poly = acb_poly(coefficients[zeros:])
             if poly.degree() < 1:
-                return [0j] * zeros
+                return [acb(0)] * zeros
             try:
                 rough = poly.roots()
                 smallest = min(float(ball.abs_lower()) for ball in rough)
-                balls = poly.roots(tol=smallest * 2.0**-60) if smallest > 0 else rough
+                sharp = acb(2) ** -(bits * 3 // 4) * smallest
+                balls = poly.roots(tol=sharp.real.mid()) if smallest > 0 else rough
             except ValueError:
                 continue
-            unsure = not imaginary and any(ball.real.contains(0) for ball in balls)
-            if not unsure or bits == _BITS[-1]:
-                return [0j] * zeros + _mirrored(balls)
+            if all(is_sharp(ball, goal, imaginary=imaginary) for ball in balls):
+                return [acb(0)] * zeros + [settled(ball, imaginary=imaginary) for ball in balls]
     return None
-
-
-def _mirrored(balls: list[Any]) -> list[complex]:
-    """Doubles from isolating balls: pairs exact mirror images, parts that may be zero are."""
-    roots: list[complex] = []
-    for ball in balls:
-        real = 0.0 if ball.real.contains(0) else float(ball.real.mid())
-        if ball.imag.contains(0):
-            roots.append(complex(real, 0.0))
-        elif ball.imag > 0:
-            imag = float(ball.imag.mid())
-            roots += [complex(real, -imag), complex(real, imag)]
-    return roots

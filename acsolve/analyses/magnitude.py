@@ -14,6 +14,7 @@ from acsolve.algebra.crossing import (
     exact_crossings,
     factored_crossings,
 )
+from acsolve.algebra.factors import squarefree
 from acsolve.algebra.ring import Polynomial, lowest_part, univariate
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.enclosed import axis_coefficients, axis_part, ball_coefficients
@@ -113,7 +114,7 @@ class Magnitude:
             return exact_crossings(whole)
         factors = [
             (int(multiplicity), partial(self._balls, factor))
-            for factor, multiplicity in polynomial.factor_squarefree()[1]
+            for factor, multiplicity in squarefree(polynomial)[1]
             if self._degree(factor, lowest=False) > 0
         ]
         return factored_crossings(factors, lambda: self._balls(polynomial))

@@ -118,6 +118,18 @@ def _explain(
     return True
 
 
+def pencil_matrices(solver: Solver, closing: Any) -> tuple[Array, Array] | None:
+    """G and C of the square matrix G + s·C, made linear in s; None where it is none.
+
+    `closing` as in `_pencil`: None for the drive's own row, or the observed functional.
+    """
+    ratios = [ratio_of(entry) for entry in solver.numbers.distinct]
+    known = [item for item in ratios if item is not None]
+    if len(known) < len(ratios):
+        return None
+    return _pencil(solver.numbers, known, closing).whole()
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class _Pencil:
     """A square matrix of polynomials, with first powers of s only in its linearised form."""
@@ -140,6 +152,17 @@ class _Pencil:
             return None
         among = solved[states]
         return np.asarray(np.linalg.eigvals(among if among.imag.any() else among.real))
+
+    def whole(self) -> tuple[Array, Array]:
+        """Constant and linear matrix in s, real where they are."""
+        constant = np.zeros((self.size, self.size), dtype=complex)
+        linear = np.zeros_like(constant)
+        for (row, column), coefficients in self.terms.items():
+            constant[row, column] = coefficients[0]
+            linear[row, column] = coefficients[1] if len(coefficients) > 1 else 0
+        if constant.imag.any() or linear.imag.any():
+            return constant, linear
+        return constant.real, linear.real
 
     def _matrices(self, shift: float) -> tuple[Array, Array]:
         """Constant and linear matrix in s/shift, rows scaled to a largest entry of 1."""

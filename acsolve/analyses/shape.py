@@ -162,7 +162,7 @@ def natural_frequency(write: Writer, coefficients: list[Polynomial]) -> Phrase:
     """sqrt(c0/c2), what can leave the root outside it."""
     first, _, last = coefficients
     top, bottom = cancel(first, last)
-    (outer, upper), (divisor, lower) = _rooted(top), _rooted(bottom)
+    (outer, upper), (divisor, lower) = rooted(top), rooted(bottom)
     lead = write.pieces(outer, divisor)
     under = product(lead.top, [*lead.bottom, root(write.ratio(lower, upper))])
     if upper == 1:
@@ -180,7 +180,7 @@ def quality(write: Writer, coefficients: list[Polynomial]) -> Phrase:
     if sign_of(first) == 0:
         return whole
     first, middle, last = (value * sign_of(first) for value in coefficients)
-    outer, inner = _rooted(first * last)
+    outer, inner = rooted(first * last)
     outer, divisor = cancel(outer, middle)
     ways = [_quotient(write, (outer, divisor), (inner, first * 0 + 1))]
     shared = _radical(inner.gcd(divisor))
@@ -197,7 +197,7 @@ def _quotient(
     return product([*lead.top, root(write.ratio(*inside))], lead.bottom)
 
 
-def _rooted(polynomial: Polynomial) -> tuple[Polynomial, Polynomial]:
+def rooted(polynomial: Polynomial) -> tuple[Polynomial, Polynomial]:
     """outside, inside with outside²·inside the polynomial and outside positive."""
     outside = polynomial.context().constant(1)
     if len(polynomial) > LARGEST_GROUPED:

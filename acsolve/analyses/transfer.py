@@ -6,7 +6,8 @@ from dataclasses import dataclass, replace
 
 from acsolve.algebra.cofactor import OverBudgetError
 from acsolve.algebra.ring import Polynomial, cancel
-from acsolve.analyses.closed_form import ClosedForm, normalised
+from acsolve.analyses.closed_form import ClosedForm, Origin, normalised
+from acsolve.analyses.hidden import is_passive
 from acsolve.analyses.nested import NestedForm, nested_form
 from acsolve.analyses.poles import PolesZeros, poles_zeros
 from acsolve.analyses.question import Ask, no_unique_solution, refuse_unreferenced
@@ -31,13 +32,14 @@ class Ratio:
     """Observed over driven, before common factors are removed; `driven` holds hidden modes.
 
     `lean` is the same ratio without the factors that can be seen only while square roots
-    stand as they are: none but those are removed. `size` is the number of unknowns.
+    stand as they are: none but those, `removed`, are. `size` is the number of unknowns.
     """
 
     basis: Basis
     observed: Polynomial
     driven: Polynomial
     lean: tuple[Polynomial, Polynomial]
+    removed: Polynomial
     size: int
 
 
@@ -64,17 +66,17 @@ def ratio(
     try:
         directions = exact.directions(frozenset(observed) | frozenset(driven), budget=budget)
     except OverBudgetError:
-        raise _over_budget("more", budget or 0) from None
+        raise over_budget("more", budget or 0) from None
     ring = exact.basis.ring
     top, bottom = (apply(part, directions, ring) for part in (observed, driven))
     whole = ring.reduced(top), ring.reduced(bottom)
     if whole[1] == 0:
         raise _no_answer(ask, singular=whole[0] == 0)
     if not ring.squares:
-        return Ratio(exact.basis, *whole, whole, exact.columns)
+        return Ratio(exact.basis, *whole, whole, ring.constant(1), exact.columns)
     lean = cancel(top, bottom)  # of (s + r)(s - r) = s² - 2, with r the root of 2, only now
     reduced = ring.reduced(lean[0]), ring.reduced(lean[1])
-    return Ratio(exact.basis, *whole, reduced, exact.columns)
+    return Ratio(exact.basis, *whole, reduced, bottom / lean[1], exact.columns)
 
 
 def closed_form(
@@ -106,7 +108,10 @@ def closed_form(
     found = ratio(netlist, ask, chosen, budget=budget)
     form = normalised(ask, found.basis, *found.lean, bindings(netlist))
     checked = check_closed_form(with_symbols(netlist, chosen), form, size=found.size)
-    return replace(form, checked=checked)
+    origin = None
+    if form.basis is found.basis:
+        origin = Origin(found.driven, found.removed, found.lean[1], is_passive(netlist))
+    return replace(form, checked=checked, origin=origin)
 
 
 _LARGEST_IMAGE = 300  # unknowns up to which an image of the determinant costs little
@@ -129,7 +134,7 @@ def _refuse_early(
     if budget is not None and _each_its_own_symbol(netlist, exact):
         count = exact.coefficient_sum(driven) + exact.coefficient_sum(observed)
         if count > budget:
-            raise _over_budget(f"{count:,}" if count < 10**9 else f"{count:.3g}", budget)
+            raise over_budget(f"{count:,}" if count < 10**9 else f"{count:.3g}", budget)
 
 
 _PASSIVE = frozenset(
@@ -146,7 +151,8 @@ def _each_its_own_symbol(netlist: Netlist, exact: ExactSystem) -> bool:
     return all(len(part.values) == 1 and part.name in free for part in valued)
 
 
-def _over_budget(size: str, budget: int) -> EquationError:
+def over_budget(size: str, budget: int) -> EquationError:
+    """The error for an answer of so many terms."""
     return EquationError(
         Diagnostic(
             code="equations.budget",

@@ -91,6 +91,8 @@ def _save(answered: Answered, options: Options, draw: Draw | None) -> bool:
 
 def _content(name: str, answered: Answered, options: Options, draw: Draw | None) -> bytes:
     from acsolve.report import save
+    from acsolve.report.entry import families
+    from acsolve.report.family_files import family_npz
 
     entries = [entry for _, entry in answered]
     found = save.ending(name)
@@ -101,11 +103,27 @@ def _content(name: str, answered: Answered, options: Options, draw: Draw | None)
     if found in save.PICTURES:
         from acsolve.report.plot import picture_content
 
+        if entries[0].drawing is not None:
+            return entries[0].drawing.content(found)
+        if entries[0].kind == "step":
+            from acsolve.report.plot_time import time_picture
+
+            return time_picture(entries, found)
         assert draw is not None, "a kind of answer that is saved as a picture can be drawn"
         return picture_content(draw(answered, options), found)
-    if len(entries) > 1 and entries[0].kind == "sweep":
+    family = bool(entries[0].over) and len(families(entries)) == 1
+    if len(entries) > 1 and entries[0].kind in ("sweep", "step") and not family:
         raise refused(
-            f"a {found} file holds one sweep, and {options.file} asks {len(entries)}",
+            f"a {found} file holds one {entries[0].kind}, and {options.file} asks {len(entries)}",
             "Pick one with --from and --to, or save json or a picture.",
         )
-    return save.csv_content(entries) if found == "csv" else save.npz_content(entries[0])
+    if found == "s2p":
+        if len(entries) > 1:
+            raise refused(
+                f"an s2p file holds one network, and {options.file} asks {len(entries)}",
+                "Pick one with --from and --to.",
+            )
+        return save.touchstone_content(entries[0])
+    if found == "csv":
+        return save.csv_content(entries)
+    return family_npz(entries) if family else save.npz_content(entries[0])

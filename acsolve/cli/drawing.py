@@ -6,6 +6,7 @@ from math import pi
 from typing import TYPE_CHECKING, Any
 
 from acsolve import AnalysisError, Diagnostic, EquationError, Path
+from acsolve.cli.family import draw_family
 from acsolve.cli.options import Options, refused
 
 if TYPE_CHECKING:
@@ -21,8 +22,10 @@ def draw(answered: Answered, options: Options) -> Picture:
     from acsolve.report.entry import curve_words, unit_sign
     from acsolve.report.plot import LARGEST, Curve, Picture
 
-    groups = _by_question(answered)
     entries = [entry for _, entry in answered]
+    if entries[0].over:
+        return draw_family(answered, options)
+    groups = _by_question(answered)
     asks = [group[0][1].ask for group in groups]
     units = {unit_sign(ask) for ask in asks if ask is not None}
     if len(units) > 1 or len(groups) > LARGEST:

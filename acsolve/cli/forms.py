@@ -24,7 +24,7 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
     from acsolve.report.entry import Entry
 
     refuse_unfit(options, kind)
-    _ = options.readings, options.share  # refused before any work where they do not read
+    _ = options.readings, options.share, options.places  # refused before any work
     circuit = open_circuit(options)
     shared = heading(circuit, options)
 
@@ -45,6 +45,7 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
                 ask=ask,
                 transfer=found,
                 formula=twin,
+                roots=_roots(item, found, options),
                 readings=options.readings,
                 approximations=_approximations(item, options),
             )
@@ -53,6 +54,13 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
     with progress("working out the closed form"):
         answered, errors = answer_all(asked(circuit, kind, options), answer)
     return deliver(answered, options, errors=errors, draw=draw)
+
+
+def _roots(item: Asked, found: Any, options: Options) -> Any:
+    """Poles, zeros and stability of an expanded form."""
+    if found.order is None:
+        return None
+    return item.path.poles(digits=options.places, form=found.form)
 
 
 def _approximations(item: Asked, options: Options) -> tuple[Any, ...]:

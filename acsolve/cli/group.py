@@ -17,8 +17,11 @@ COMMANDS = {
     "equations": "the nodal equations: matrix, unknowns and excitation",
     "transfer": "closed form from one pair to another, limits, poles and zeros",
     "impedance": "closed form of the impedance looking into a pair",
+    "two-port": "z, y, h, g, ABCD and s parameters of two pairs",
     "cutoff": "every frequency where the response crosses a level",
     "sweep": "gain, phase and delays over a band, as table, file or picture",
+    "step": "response in time to a step, impulse or sine; rise, delay, settling",
+    "draw": "the schematic, drawn from the netlist alone",
 }
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, Literal
 
 import click
 
@@ -34,12 +34,21 @@ class Options:
     form: str | None = None
     assume: tuple[str, ...] = ()
     within: str | None = None
+    digits: str | None = None
     band: str | None = None
     points: str | None = None
     linear: bool = False
     at: str | None = None
+    over: tuple[str, ...] = ()
+    verify: str | None = None
     level: str | None = None
     reference: str | None = None
+    value_for: str | None = None
+    degree: str | None = None
+    duration: str | None = None
+    drive: str | None = None
+    cycles: str | None = None
+    settle: str | None = None
     save: tuple[str, ...] = ()
     as_json: bool = False
     arguments: tuple[str, ...] = ()  # the whole command line, to name options in messages
@@ -77,6 +86,15 @@ class Options:
         return chosen
 
     @property
+    def places(self) -> int | None:
+        """How many digits of each pole and zero are asked for."""
+        if self.digits is None:
+            return None
+        if not (self.digits.isascii() and self.digits.isdecimal() and len(self.digits) < 5):
+            raise refused(f"--digits {self.digits} is no number of digits", "Write, say, 30.")
+        return int(self.digits)
+
+    @property
     def share(self) -> float | None:
         """The largest relative change that --within allows, 0.01 for 1%."""
         if self.within is None:
@@ -93,11 +111,26 @@ class Options:
         return found
 
     @property
+    def radical(self) -> int:
+        """Up to which degree closed forms are written."""
+        if self.degree not in (None, "1", "2", "3", "4"):
+            raise refused(f"--degree {self.degree} is no degree", "Write 2, 3 or 4.")
+        return int(self.degree or 2)
+
+    @property
+    def proven(self) -> int | Literal["all"] | None:
+        """How many points --verify proves; None for a handful."""
+        if self.verify == "all":
+            return "all"
+        return None if self.verify in (None, A_HANDFUL) else int(self.verify or 0)
+
+    @property
     def asks(self) -> bool:
         """Whether the command line itself says where to drive or observe."""
         return any((self.source, self.target, self.into, self.through))
 
 
+A_HANDFUL = "a handful"  # what --verify says without a value
 READINGS = ("collected", "unit", "factored", "standard", "real", "delay", "asymptotes")
 
 
@@ -137,12 +170,35 @@ _TABLE = {
         "--assume", "'R2 >> R1'", "leading order only; may be repeated", multiple=True
     ),
     "within": _option("--within", "1%", "drop terms that change less than this over --band"),
+    "digits": _option("--digits", "30", "so many certified digits of each pole and zero"),
     "band": _option("--band", "10Hz..1MHz", "lowest and highest frequency"),
-    "points": _option("--points", "NUMBER", "so many in all, or 50/decade"),
+    "points": _option("--points", "NUMBER", "so many in all, 50/decade, or auto"),
     "linear": _option("--linear", None, "even steps instead of even ratios"),
     "at": _option("--at", "50Hz,60Hz", "just these frequencies"),
+    "over": _option(
+        "--over",
+        "R1=1k..10k",
+        "a curve for each value: five, R1=1k..10k:7, or R1=1k,2k2; may be repeated",
+        multiple=True,
+    ),
+    "verify": _option(
+        "--verify",
+        "[NUMBER|all]",
+        "prove the accuracy of a handful of points, of so many, or of all",
+        is_flag=False,
+        flag_value=A_HANDFUL,
+    ),
     "level": _option("--level", "-6dB", "below the reference; half power if not given"),
     "reference": _option("--reference", "WHERE", "dc, infinity, peak, or a gain such as 0.5"),
+    "for": _option("--for duration", "5ms", "how long the curve is; as it takes if not given"),
+    "drive": _option("--drive", "NAME", "step, impulse, or a sine's frequency, as 1kHz"),
+    "cycles": _option("--cycles", "5", "how long the sine lasts; it goes on if not given"),
+    "settle": _option("--settle", "2%", "half the band around the final value, 2% if not given"),
+    "resistance": _option(
+        "--reference", "50ohm", "reference of the s parameters; 50ohm,75ohm for one each"
+    ),
+    "value-for": _option("--value-for", "R1", "the values of it that put a cutoff where --at says"),
+    "degree": _option("--degree", "4", "closed forms up to this degree, 2 if not given"),
     "save": _option("--save", "FILE", "save as its ending says; may be repeated", multiple=True),
     "json": _option("--json as_json", None, "one JSON document on standard output"),
 }
@@ -151,7 +207,7 @@ PAIRS = ("from", "to", "through", "quantity")
 VALUES = ("variant", "let")
 FORMS = ("symbolic", "keep")
 SIZES = ("nested", "budget")
-READ = ("form", "assume", "within", "band")
+READ = ("form", "digits", "assume", "within", "band")
 OUTPUT = ("save", "json")
 
 
@@ -163,6 +219,7 @@ def make_command(
 
     def callback(**given: Any) -> int:
         known = {key: value for key, value in given.items() if value is not None}
+        _settle_verify(known)
         chosen = Options(**known, arguments=tuple(click.get_current_context().obj or ()))
         _check(chosen)
         if "to" in listed:
@@ -181,6 +238,19 @@ def make_command(
             help_option(),
         ],
     )
+
+
+def _settle_verify(given: dict[str, Any]) -> None:
+    """Sort out whether what follows --verify is its value, or already the file."""
+    text = given.get("verify", A_HANDFUL)
+    if text in ("all", A_HANDFUL) or (text.isascii() and text.isdecimal() and int(text) > 0):
+        return
+    if given["files"]:
+        raise refused(
+            f"--verify {text} is no number of points",
+            "Write --verify, --verify 20 or --verify all.",
+        )
+    given["files"], given["verify"] = (text,), A_HANDFUL
 
 
 def _check(options: Options) -> None:
@@ -204,6 +274,8 @@ def _check(options: Options) -> None:
         )
     if options.into is not None and options.quantity is not None:
         raise refused("--into always asks an impedance", "Leave --quantity out.")
+    if options.cycles is not None and options.drive in (None, "step", "impulse"):
+        raise refused("--cycles goes with a sine", "Name its frequency, as --drive 1kHz.")
     if options.at is not None and (options.band or options.points or options.linear):
         raise refused(
             "--at names every frequency, so --band, --points and --linear do not go with it",

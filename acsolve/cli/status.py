@@ -16,6 +16,7 @@ _OF_THE_CALL = (
     "save.ending",
     "sweep.",
     "variant.",
+    "ports.reference",
 )
 
 

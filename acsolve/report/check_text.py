@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from acsolve.errors import frame
 from acsolve.report.entry import Entry, pair_text
+from acsolve.report.pole_text import stability_rows
 from acsolve.report.root_text import root_words
 from acsolve.report.table import labelled
 
@@ -58,12 +59,14 @@ def _mode_rows(item: Modes) -> list[tuple[str, str]]:
     where = f", {how} at {pair_text(item.driven)}" if item.driven and how else ", left to itself"
     rows = [("order", f"{item.order}{where}")]
     if item.values is None:
-        return [*rows, ("", "natural modes: not as numbers (values missing, or too many)")]
+        return [
+            *rows,
+            ("", "natural modes: not as numbers (values missing, or too many)"),
+            *stability_rows(item.stability, None),
+        ]
     words = root_words(item.values)
     shown = words[:_MODES_SHOWN]
     if len(words) > _MODES_SHOWN:
         shown.append(f"… and {len(words) - _MODES_SHOWN} more; --json gives all of them")
     rows += [("natural modes" if place == 0 else "", text) for place, text in enumerate(shown)]
-    if words:
-        rows.append(("", "every mode decays" if item.decays else "not every mode decays"))
-    return rows
+    return rows if not words else [*rows, *stability_rows(item.stability, None)]

@@ -7,12 +7,13 @@ from typing import TYPE_CHECKING
 
 from acsolve.report.entry import Entry, unit_sign
 from acsolve.report.json import cutoff_names
-from acsolve.report.number import angular, decibels, engineering
+from acsolve.report.number import angular, decibels, engineering, plain
 from acsolve.report.table import labelled
 from acsolve.report.transfer_text import checked_rows
 
 if TYPE_CHECKING:
     from acsolve.analyses.cutoff import Cutoff, CutoffAnswer
+    from acsolve.analyses.passband import FrequencyBand
 
 _PLACES = {
     "dc": "at 0 Hz",
@@ -37,9 +38,11 @@ def cutoff_lines(entry: Entry) -> list[str]:
     for touch in found.touches:
         where = f"{engineering(touch.hertz, 'Hz')}  ({angular(touch.rad_per_s)})"
         rows.append(("touches", f"{where}, meets the level without crossing it"))
+    for band in found.bands:
+        rows += _band_rows(band)
     rows.append(("complete", _proof(found)))
     rows += [("remark", readable(entry, remark)) for remark in found.remarks]
-    return labelled([*rows, *checked_rows(found.form)])
+    return labelled([*rows, *(checked_rows(found.form) if found.form is not None else ())])
 
 
 def _reference(found: CutoffAnswer, unit: str) -> str:
@@ -74,6 +77,17 @@ def _cutoff_rows(entry: Entry, item: Cutoff) -> list[tuple[str, str]]:
     return [*rows, ("", f"w = {formula} = {number}" if formula else f"w = {number}")]
 
 
+def _band_rows(item: FrequencyBand) -> list[tuple[str, str]]:
+    """Bandwidth, centre and quality factor of what lies between two cutoffs."""
+    q = "" if item.q is None else f", Q = {plain(item.q)}"
+    rows = [(f"{item.kind} band", f"{engineering(item.width, 'Hz')} wide{q}")]
+    rows.append(("", f"centre (geometric mean) {engineering(item.centre, 'Hz')}"))
+    if item.extremum is not None:
+        word = "peak" if item.kind == "pass" else "deepest"
+        rows.append(("", f"{word} at {engineering(item.extremum, 'Hz')}"))
+    return rows
+
+
 def readable(entry: Entry, text: str) -> str:
     """A closed form with the file's own names and `^` for powers."""
     names = {safe: name for name, safe in cutoff_names(entry).items()}
@@ -82,6 +96,13 @@ def readable(entry: Entry, text: str) -> str:
 
 
 def _proof(found: CutoffAnswer) -> str:
+    where = "" if found.searched is None else f" from {_band(found.searched)}"
     if found.complete:
-        return "proven: none is missing"
-    return f"not proven, there may be more ({found.method})"
+        numeric = " (numeric, in ball arithmetic)" if found.method.startswith("numeric") else ""
+        return f"proven: none is missing{where}{numeric}"
+    return f"not proven{where}, there may be more ({found.method})"
+
+
+def _band(edges: tuple[float, float]) -> str:
+    low, high = (engineering(edge, "Hz") for edge in edges)
+    return f"{low} to {high}"

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import groupby
 from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
@@ -11,12 +12,30 @@ if TYPE_CHECKING:
     from acsolve.analyses.check import CheckAnswer
     from acsolve.analyses.cutoff import CutoffAnswer
     from acsolve.analyses.equations import Equations
+    from acsolve.analyses.family import Setting
+    from acsolve.analyses.pole_record import PoleAnswer
+    from acsolve.analyses.port_answer import PortAnswer
+    from acsolve.analyses.proof import Verification
     from acsolve.analyses.question import Ask
+    from acsolve.analyses.step import StepAnswer
     from acsolve.analyses.sweep import Sweep
     from acsolve.analyses.transfer import TransferAnswer
+    from acsolve.analyses.value_for import ValueAnswer
     from acsolve.errors import Diagnostic
+    from acsolve.report.drawing.drawing import Drawing
 
-Kind = Literal["check", "equations", "transfer", "impedance", "cutoff", "sweep"]
+Kind = Literal[
+    "check",
+    "equations",
+    "transfer",
+    "impedance",
+    "part-value",
+    "cutoff",
+    "sweep",
+    "step",
+    "two-port",
+    "draw",
+]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -34,8 +53,10 @@ class Entry:
     """One answer. Exactly the field that its kind names is filled.
 
     `formula` is the same question with every part a symbol, where that is small: it gives
-    the numbers of a standard form their formulas. `readings` name the shapes the form is
-    written in besides, `approximations` go with it.
+    the numbers of a standard form their formulas. `roots` tell of its poles, zeros and
+    stability. `readings` name the shapes the form is
+    written in besides, `approximations` go with it, `verified` with a sweep.
+    `over` says which member of a family a sweep is.
     """
 
     kind: Kind
@@ -43,12 +64,33 @@ class Entry:
     ask: Ask | None = None
     transfer: TransferAnswer | None = None
     formula: TransferAnswer | None = None
+    roots: PoleAnswer | None = None
     readings: tuple[str, ...] = ()
     approximations: tuple[Approximation, ...] = ()
     cutoff: CutoffAnswer | None = None
+    part_value: ValueAnswer | None = None
     sweep: Sweep | None = None
+    step: StepAnswer | None = None
+    two_port: PortAnswer | None = None
+    drawing: Drawing | None = None
+    over: tuple[Setting, ...] = ()
+    verified: Verification | None = None
     check: CheckAnswer | None = None
     equations: Equations | None = None
+
+
+def families(entries: Sequence[Entry]) -> list[tuple[Entry, ...]]:
+    """Entries that belong to one family together, every other entry alone."""
+    found: list[tuple[Entry, ...]] = []
+    for _, group in groupby(enumerate(entries), lambda item: _key(*item)):
+        found.append(tuple(entry for _, entry in group))
+    return found
+
+
+def _key(place: int, entry: Entry) -> tuple[object, ...]:
+    if not entry.over:
+        return (place,)
+    return (entry.ask, tuple(setting.name for setting in entry.over))
 
 
 _WORDS = {
@@ -58,6 +100,7 @@ _WORDS = {
     "transadmittance": "transadmittance",
     "impedance": "impedance",
     "response": "response",
+    "two-port": "two-port",
 }
 _LETTERS = {
     "voltage-ratio": "H",
@@ -66,6 +109,7 @@ _LETTERS = {
     "transadmittance": "Y",
     "impedance": "Z",
     "response": "V",
+    "two-port": "H",
 }
 
 

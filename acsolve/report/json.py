@@ -13,9 +13,12 @@ from acsolve.report.entry import Entry
 
 if TYPE_CHECKING:
     from acsolve.algebra.ring import Polynomial
-    from acsolve.analyses.closed_form import ClosedForm
+    from acsolve.analyses.closed_form import Checked, ClosedForm
     from acsolve.analyses.cutoff import CutoffAnswer
     from acsolve.analyses.nested import NestedForm
+    from acsolve.analyses.passband import FrequencyBand
+    from acsolve.analyses.proof import Verification
+    from acsolve.analyses.sweep import Placement
     from acsolve.analyses.transfer import TransferAnswer
 
 FORMAT = 1
@@ -96,7 +99,7 @@ def _remarks(entry: Entry) -> dict[str, Any]:
     }
 
 
-def _replaced(names: Mapping[str, str]) -> dict[str, str]:
+def replaced_names(names: Mapping[str, str]) -> dict[str, str]:
     """Safe name -> name, for the names that had to be replaced."""
     return {safe: name for name, safe in names.items() if safe != name}
 
@@ -116,10 +119,18 @@ def _closed_form(entry: Entry) -> dict[str, Any]:
         "poles": _roots(found, "poles"),
         "zeros": _roots(found, "zeros"),
         "checked": _checked(found.form),
-        "symbols": _replaced(found.form.spelled(safe=True).names),
+        "symbols": replaced_names(found.form.spelled(safe=True).names),
+        **_described(entry),
         **_readings(entry),
         **_approximations(entry),
     }
+
+
+def _described(entry: Entry) -> dict[str, Any]:
+    """Poles and zeros one by one, hidden modes and stability, where they were asked for."""
+    from acsolve.report.pole_json import pole_body
+
+    return {} if entry.roots is None else pole_body(entry.roots)
 
 
 def _readings(entry: Entry) -> dict[str, Any]:
@@ -231,11 +242,14 @@ def _roots(found: TransferAnswer, name: str) -> list[list[float | None]] | None:
 
 
 def _checked(form: ClosedForm | NestedForm) -> dict[str, Any] | None:
-    if form.checked is None:
-        return None
+    return None if form.checked is None else closed_form_check(form.checked)
+
+
+def closed_form_check(checked: Checked) -> dict[str, Any]:
+    """What an answer was checked at, and the largest difference."""
     return {
-        "points": form.checked.points,
-        "max_relative_error": number(form.checked.max_relative_error),
+        "points": checked.points,
+        "max_relative_error": number(checked.max_relative_error),
     }
 
 
@@ -254,18 +268,34 @@ def _cutoff(entry: Entry) -> dict[str, Any]:
                 "rad_per_s": number(item.rad_per_s),
                 "closed_form": item.closed_form,
                 "direction": item.direction,
+                "condition": item.condition,
             }
             for item in found.cutoffs
         ],
+        "bands": [_band(item) for item in found.bands],
         "touches": [
             {"hertz": number(item.hertz), "rad_per_s": number(item.rad_per_s)}
             for item in found.touches
         ],
         "complete": found.complete,
         "method": found.method,
+        "searched_hertz": None if found.searched is None else list(found.searched),
         "remarks": list(found.remarks),
-        "checked": _checked(found.form),
-        "symbols": _replaced(cutoff_names(entry)),
+        "checked": None if found.form is None else _checked(found.form),
+        "symbols": replaced_names(cutoff_names(entry)),
+    }
+
+
+def _band(item: FrequencyBand) -> dict[str, Any]:
+    """A band between two cutoffs; its centre is the geometric mean of the edges."""
+    return {
+        "kind": item.kind,
+        "low_hertz": number(item.low),
+        "high_hertz": number(item.high),
+        "bandwidth_hertz": number(item.width),
+        "centre_hertz": number(item.centre),
+        "extremum_hertz": number(item.extremum),
+        "q": number(item.q),
     }
 
 
@@ -274,6 +304,8 @@ def cutoff_names(entry: Entry) -> dict[str, str]:
     from acsolve.equations.naming import safe_names
 
     found: CutoffAnswer = _filled(entry.cutoff)
+    if found.form is None:
+        return {}
     held = {word for item in found.cutoffs for word in _WORD.findall(item.closed_form or "")}
     names = found.form.symbols or tuple(found.form.values)
     return {name: safe for name, safe in safe_names(names).items() if safe in held}
@@ -284,7 +316,9 @@ _WORD = re.compile(r"[A-Za-z_]\w*")
 
 def _sweep(entry: Entry) -> dict[str, Any]:
     found = _filled(entry.sweep)
+    family = {item.name: number(item.value) for item in entry.over}
     return {
+        **({"over": family} if family else {}),
         "hertz": numbers(found.hertz.tolist()),
         "real": numbers(found.value.real.tolist()),
         "imag": numbers(found.value.imag.tolist()),
@@ -294,6 +328,40 @@ def _sweep(entry: Entry) -> dict[str, Any]:
         "group_delay_s": numbers(found.group_delay_s.tolist()),
         "status": status_words(found.status.tolist()),
         "settled": bool(found.settled),
+        "placed": None if found.placed is None else _placed(found.placed),
+        "verified": None if entry.verified is None else _verified(entry.verified),
+    }
+
+
+def _placed(how: Placement) -> dict[str, Any]:
+    """What straight lines between points that were placed automatically are worth."""
+    return {
+        "within_db": how.gain_db,
+        "within_deg": how.phase_deg,
+        "axis": "linear" if how.linear else "logarithmic",
+        "sure": how.sure,
+        "complete": how.complete,
+        "ends_hertz": numbers(how.ends_hertz),
+    }
+
+
+def _verified(proven: Verification) -> dict[str, Any]:
+    """What was proven about chosen points, each list in the order of `hertz`."""
+    worst = proven.worst
+    return {
+        "points": proven.points,
+        "max_relative_error": number(proven.max_relative_error),
+        "at_hertz": None if worst is None else number(worst.hertz),
+        "max_gain_error_db": number(proven.largest("gain_error_db")),
+        "max_phase_error_deg": number(proven.largest("phase_error_deg")),
+        "max_group_delay_error_s": number(proven.largest("group_delay_error_s")),
+        "bits": proven.bits,
+        "hertz": numbers(item.hertz for item in proven.proofs),
+        "relative_error": numbers(item.relative_error for item in proven.proofs),
+        "estimated_error": numbers(item.claimed for item in proven.proofs),
+        "unproven": [
+            {"hertz": number(item.hertz), "reason": item.reason} for item in proven.unproven
+        ],
     }
 
 
@@ -306,6 +374,8 @@ def status_words(codes: Iterable[int]) -> list[str]:
 
 
 def _check(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.pole_json import stability_body
+
     found = _filled(entry.check)
     return {
         "ok": found.ok,
@@ -324,6 +394,7 @@ def _check(entry: Entry) -> dict[str, Any]:
                 if item.values is None
                 else [complex_number(value) for value in item.values],
                 "stable": item.stable,
+                "stability": stability_body(item.stability),
             }
             for item in found.modes
         ],
@@ -347,11 +418,39 @@ def _equations(entry: Entry) -> dict[str, Any]:
         "excitation": [expression_text(item, spelling) for item in found.excitation],
         "meanings": list(found.meanings),
         "references": list(found.references),
-        "symbols": _replaced(names),
+        "symbols": replaced_names(names),
     }
 
 
+def _step(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.step_json import step_body
+
+    return step_body(entry)
+
+
+def _two_port(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.two_port_json import two_port_body
+
+    return two_port_body(entry)
+
+
+def _part_value(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.part_value import part_value_body
+
+    return part_value_body(entry)
+
+
+def _draw(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.drawing.drawing import sheet_body
+
+    return sheet_body(_filled(entry.drawing).sheet)
+
+
 _BODIES = {
+    "draw": _draw,
+    "part-value": _part_value,
+    "two-port": _two_port,
+    "step": _step,
     "transfer": _closed_form,
     "impedance": _closed_form,
     "cutoff": _cutoff,

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import io
 import logging
+from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -23,7 +24,7 @@ if TYPE_CHECKING:
 
 #: Hues told apart with any colour vision (after M. Okabe and K. Ito, "Color universal
 #: design", 2008), each with a dash pattern and falling lightness for print without colour.
-_LINES: tuple[tuple[str, Any], ...] = (
+LINES: tuple[tuple[str, Any], ...] = (
     ("#0072b2", "solid"),
     ("#d55e00", (0, (7, 2.5))),
     ("#007f5f", (0, (1.6, 1.6))),
@@ -31,8 +32,8 @@ _LINES: tuple[tuple[str, Any], ...] = (
     ("#4d4d4d", (0, (3.5, 1.5))),
     ("#b8860b", (0, (8, 2, 1.6, 2, 1.6, 2))),
 )
-LARGEST = len(_LINES)
-_INK, _PALE = "#222222", "#c9c9c9"
+LARGEST = len(LINES)
+INK, _PALE = "#222222", "#c9c9c9"
 _SETTINGS: Any = {
     "font.family": "DejaVu Sans",
     "font.size": 9.5,
@@ -51,6 +52,7 @@ class Curve:
     sweep: Sweep
     label: str
     marks: tuple[float, ...] = ()
+    line: tuple[str, Any] | None = None  # colour and dashes, where not those of its place
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -63,16 +65,22 @@ class Picture:
     unit: str = ""
     linear: bool = False
     level_db: float | None = None
+    told_by: str | None = None  # a family: what its curves differ in
 
 
 def picture_content(picture: Picture, ending: str) -> bytes:
     """The picture as the bytes of an svg, png or pdf file, the same on every run."""
+    return rendered(lambda: figure(picture), ending)
+
+
+def rendered(make: Callable[[], Figure], ending: str) -> bytes:
+    """A figure, made under this program's settings, as the bytes of a file."""
     logging.getLogger("matplotlib").setLevel(logging.ERROR)
     import matplotlib as mpl
 
     with mpl.rc_context(_SETTINGS):
         store = io.BytesIO()
-        figure(picture).savefig(
+        make().savefig(
             store, format=ending, dpi=160, metadata=_METADATA[ending], facecolor="white"
         )
     return store.getvalue()
@@ -92,7 +100,7 @@ def figure(picture: Picture) -> Figure:
     drawn = Figure(figsize=(7.2, 5.4), layout="constrained")
     upper, lower = drawn.subplots(2, 1, sharex=True, height_ratios=(3, 2))
     for axes in (upper, lower):
-        _plain_axes(axes)
+        plain_axes(axes)
     for place, curve in enumerate(picture.curves):
         _draw(upper, lower, curve, place, picture)
     set_magnitude_axis(upper, _sizes(picture), picture.unit)
@@ -101,21 +109,31 @@ def figure(picture: Picture) -> Figure:
     upper.tick_params(labelbottom=False)
     if picture.level_db is not None:
         _level_line(upper, picture)
-    if len(picture.curves) > 1:
+    if picture.told_by is not None:
+        drawn.legend(
+            *upper.get_legend_handles_labels(),
+            loc="outside right upper",
+            title=picture.told_by,
+            alignment="left",
+            frameon=False,
+            handlelength=3.2,
+        )
+    elif len(picture.curves) > 1:
         upper.legend(frameon=False, handlelength=3.2, loc="best")
-    _titles(upper, picture)
+    titles(upper, picture)
     drawn.align_ylabels([upper, lower])
     return drawn
 
 
-def _plain_axes(axes: Axes) -> None:
+def plain_axes(axes: Axes) -> None:
+    """Axes without a box, a pale grid behind the curves."""
     for side in ("top", "right"):
         axes.spines[side].set_visible(False)
     for side in ("left", "bottom"):
-        axes.spines[side].set_color(_INK)
+        axes.spines[side].set_color(INK)
         axes.spines[side].set_linewidth(0.8)
     axes.grid(visible=True, which="major", color=_PALE, linewidth=0.6)
-    axes.tick_params(colors=_INK, width=0.8)
+    axes.tick_params(colors=INK, width=0.8)
     axes.set_axisbelow(True)
 
 
@@ -128,7 +146,7 @@ def magnitude(sweep: Sweep, unit: str) -> Any:
 
 
 def _draw(upper: Axes, lower: Axes, curve: Curve, place: int, picture: Picture) -> None:
-    colour, dashes = _LINES[place % LARGEST]
+    colour, dashes = curve.line or LINES[place % LARGEST]
     style = {"color": colour, "linestyle": dashes, "linewidth": 1.7, "label": curve.label}
     few = len(curve.sweep.hertz) <= 12
     style |= {"marker": "o", "markersize": 4} if few else {}
@@ -146,11 +164,11 @@ def _mark(upper: Axes, lower: Axes, curve: Curve, picture: Picture) -> None:
     axis = hertz if picture.linear else np.log(np.maximum(hertz, 1e-300))
     where = np.array(marks) if picture.linear else np.log(np.array(marks))
     sizes = np.interp(where, axis, magnitude(curve.sweep, picture.unit))
-    upper.plot(marks, sizes, "o", color=_INK, markersize=4.5, zorder=4)
+    upper.plot(marks, sizes, "o", color=INK, markersize=4.5, zorder=4)
     if len(picture.curves) > 1:
         return
     line: dict[str, Any] = {
-        "color": _INK,
+        "color": INK,
         "linewidth": 0.9,
         "linestyle": (0, (4, 3)),
         "zorder": 1.5,
@@ -194,15 +212,20 @@ def _number(axes: Axes, mark: float, row: int, *, left: bool) -> None:
 
     if row >= _MOST_ROWS:
         return
+    number_beside(axes, mark, tick_text(mark, "Hz", 4), left=left, row=row)
+
+
+def number_beside(axes: Axes, place: float, text: str, *, left: bool, row: int = 0) -> None:
+    """A number at the foot of an upright line."""
     axes.annotate(
-        tick_text(mark, "Hz", 4),
-        xy=(mark, 0.0),
+        text,
+        xy=(place, 0.0),
         xycoords=("data", "axes fraction"),
         xytext=(-4 if left else 4, 5 + 14 * row),
         textcoords="offset points",
         ha="right" if left else "left",
         va="bottom",
-        color=_INK,
+        color=INK,
         fontsize=8.5,
         bbox={"facecolor": "white", "edgecolor": "none", "pad": 1.0, "alpha": 0.85},
         zorder=3,
@@ -212,10 +235,10 @@ def _number(axes: Axes, mark: float, row: int, *, left: bool) -> None:
 def _level_line(axes: Axes, picture: Picture) -> None:
     assert picture.level_db is not None, "drawn only where there is a level"
     height = 10 ** (picture.level_db / 20) if picture.unit else picture.level_db
-    axes.axhline(height, color=_INK, linewidth=0.9, linestyle=(0, (4, 3)), zorder=1.5)
+    axes.axhline(height, color=INK, linewidth=0.9, linestyle=(0, (4, 3)), zorder=1.5)
 
 
-def _titles(axes: Axes, picture: Picture) -> None:
+def titles(axes: Axes, picture: Picture) -> None:
     """Title and question in words, flush left with the axes."""
     from textwrap import wrap
 
@@ -223,7 +246,7 @@ def _titles(axes: Axes, picture: Picture) -> None:
     below = wrap(picture.subtitle, 100)[:2]
     if lines:
         axes.set_title(
-            "\n".join(lines), loc="left", fontsize=11, color=_INK, pad=8 + 13 * len(below)
+            "\n".join(lines), loc="left", fontsize=11, color=INK, pad=8 + 13 * len(below)
         )
     if below:
         axes.annotate(
@@ -246,7 +269,7 @@ def _phase_axis(axes: Axes, picture: Picture) -> None:
     axes.set_yticks(ticks)
     span = ticks[-1] - ticks[0]
     axes.set_ylim(ticks[0] - 0.04 * span, ticks[-1] + 0.04 * span)
-    axes.set_ylabel("phase (°)", color=_INK)
+    axes.set_ylabel("phase (°)", color=INK)
 
 
 def _sizes(picture: Picture) -> Any:

@@ -15,11 +15,12 @@ def root_words(roots: Iterable[complex]) -> list[str]:
     for root, same in groupby(upper):
         count = sum(1 for _ in same)
         times = "" if count == 1 else f", {count} times"
-        words.append(_root_text(root) + times)
+        words.append(root_text(root) + times)
     return words
 
 
-def _root_text(root: complex) -> str:
+def root_text(root: complex) -> str:
+    """A root, or the pair it belongs to, with its frequency and quality factor."""
     size = abs(root)
     if size == 0:
         return "0"

@@ -14,17 +14,22 @@ from pathlib import Path
 
 from acsolve.errors import AnalysisError, Diagnostic, TextError
 from acsolve.report.entry import Entry, Kind, pair_text, unit_sign
+from acsolve.report.family_files import setting_heads
 
 PICTURES = ("svg", "png", "pdf")
 
 #: What each kind of answer can be saved as.
 ENDINGS: dict[Kind, tuple[str, ...]] = {
+    "two-port": ("s2p", "json"),
+    "draw": (*PICTURES, "json"),
     "check": ("json",),
     "equations": ("json",),
     "transfer": ("json", *PICTURES),
     "impedance": ("json", *PICTURES),
     "cutoff": ("csv", "json", *PICTURES),
+    "part-value": ("json",),
     "sweep": ("csv", "npz", "json", *PICTURES),
+    "step": ("csv", "npz", "json", *PICTURES),
 }
 
 
@@ -70,7 +75,7 @@ def _unfit(name: str, kind: Kind) -> Diagnostic | None:
 
 
 def _with_article(kind: Kind) -> str:
-    return {"impedance": "an impedance", "equations": "a set of equations"}.get(kind, f"a {kind}")
+    return {"impedance": "an impedance", "equations": "a set of equations", "draw": "a drawing"}.get(kind, f"a {kind}")
 
 
 def _listed(endings: Sequence[str]) -> str:
@@ -141,10 +146,11 @@ def _permissions(target: Path) -> int:
 
 
 def csv_content(entries: Sequence[Entry]) -> bytes:
-    """A sweep, or all cutoffs, as RFC 4180 text in full double precision."""
+    """A sweep, a response in time, or all cutoffs, as RFC 4180 text in full double precision."""
     maker: dict[str, Callable[[Sequence[Entry]], list[list[str]]]] = {
         "sweep": _sweep_rows,
         "cutoff": _cutoff_rows,
+        "step": _step_rows,
     }
     text = io.StringIO()
     csv.writer(text, lineterminator="\r\n").writerows(maker[entries[0].kind](entries))
@@ -157,7 +163,17 @@ def _cell(value: float | None) -> str:
 
 
 def _sweep_rows(entries: Sequence[Entry]) -> list[list[str]]:
-    (entry,) = entries
+    head, rows = _one_sweep(entries[0])
+    if not entries[0].over:
+        return [head, *rows]
+    long = [setting_heads(entries[0]) + head]
+    for entry in entries:
+        settings = [_cell(item.value) for item in entry.over]
+        long += [settings + row for row in _one_sweep(entry)[1]]
+    return long
+
+
+def _one_sweep(entry: Entry) -> tuple[list[str], list[list[str]]]:
     found = entry.sweep
     assert found is not None, "a sweep entry holds a sweep"
     unit = unit_sign(entry.ask) if entry.ask else ""
@@ -175,7 +191,35 @@ def _sweep_rows(entries: Sequence[Entry]) -> list[list[str]]:
         found.group_delay_s,
     )
     rows = zip(*(column.tolist() for column in columns), strict=True)
-    return [head, *([_cell(value) for value in row] for row in rows)]
+    return head, [[_cell(value) for value in row] for row in rows]
+
+
+def _step_rows(entries: Sequence[Entry]) -> list[list[str]]:
+    seconds, value = _in_time(entries[0])
+    unit = unit_sign(entries[0].ask) if entries[0].ask else ""
+    head = ["time (s)", f"response ({unit})" if unit else "response"]
+    return [head, *([_cell(a), _cell(b)] for a, b in zip(seconds, value, strict=True))]
+
+
+def _in_time(entry: Entry) -> tuple[list[float], list[float]]:
+    """Times and values of a response.
+
+    Raises
+    ------
+    AnalysisError
+        [question.no-value] symbols are left, so there is no curve.
+    """
+    found = entry.step
+    assert found is not None, "a step entry holds a response in time"
+    if found.seconds is None or found.value is None:
+        raise AnalysisError(
+            Diagnostic(
+                code="question.no-value",
+                message=f"{', '.join(found.form.symbols[:6])} have no value, so there is no curve",
+                hint="Give values in the file or with --let, or save json.",
+            )
+        )
+    return found.seconds.tolist(), found.value.tolist()
 
 
 def _cutoff_rows(entries: Sequence[Entry]) -> list[list[str]]:
@@ -204,6 +248,11 @@ def npz_content(entry: Entry) -> bytes:
     """A sweep as NumPy arrays under the names of the JSON keys, and the complex `value`."""
     import numpy as np
 
+    if entry.kind == "step":
+        seconds, value = _in_time(entry)
+        store = io.BytesIO()
+        np.savez(store, seconds=np.array(seconds), value=np.array(value))
+        return store.getvalue()
     found = entry.sweep
     assert found is not None, "a sweep entry holds a sweep"
     store = io.BytesIO()
@@ -218,3 +267,23 @@ def npz_content(entry: Entry) -> bytes:
         status=found.status,
     )
     return store.getvalue()
+
+
+def touchstone_content(entry: Entry) -> bytes:
+    """The s parameters of a two-port as a Touchstone file, in full double precision.
+
+    Raises
+    ------
+    AnalysisError
+        [ports.reference], [ports.no-set].
+    """
+    from acsolve.ports.write import touchstone_text
+
+    found = entry.two_port
+    assert found is not None, "a two-port entry holds a two-port answer"
+    assert found.sweep is not None, "the command asked for a sweep"
+    heading, ask = entry.heading, entry.ask
+    comments = [text for text in (heading.title,) if text]
+    if ask is not None and ask.source is not None:
+        comments.append(f"port 1 {pair_text(ask.source)}, port 2 {pair_text(ask.target)}")
+    return touchstone_text(found.sweep.data("s"), comments=comments).encode()

@@ -3,22 +3,27 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from importlib import import_module
 
 from acsolve.errors import Diagnostic, frame
-from acsolve.report.entry import Entry, question_text
+from acsolve.report.entry import Entry, families, question_text
 from acsolve.report.table import wrapped
 
 #: Kind of answer -> the module and function that write its body, loaded when it occurs.
 _BODIES = {
+    "draw": ("drawing.summary", "drawing_lines"),
+    "two-port": ("two_port_text", "two_port_lines"),
     "transfer": ("transfer_text", "transfer_lines"),
     "impedance": ("transfer_text", "transfer_lines"),
     "cutoff": ("cutoff_text", "cutoff_lines"),
+    "part-value": ("part_value", "part_value_lines"),
     "sweep": ("sweep_text", "sweep_lines"),
+    "step": ("step_text", "step_lines"),
     "check": ("check_text", "check_lines"),
     "equations": ("equations_text", "equations_lines"),
 }
+DRIVES = {"step": "step response", "impulse": "impulse response", "sine": "response in time"}
 _FRAMES_SHOWN = 50
 
 
@@ -31,14 +36,21 @@ def answers_text(entries: Iterable[Entry]) -> str:
     lines = list(wrapped(heading.title, 80)) if heading.title else []
     if heading.variant is not None:
         lines.append(f'variant "{heading.variant}"')
-    for entry in listed:
+    for group in families(listed):
+        entry = group[0]
         question = _question(entry)
         lines += [*([""] if lines and question and entry is not listed[0] else []), *question]
-        lines += [*([""] if lines else []), *_body(entry)]
+        lines += [*([""] if lines else []), *(_family(group) if entry.over else _body(entry))]
     for text in heading.cautions:
         first, *rest = wrapped(text, 71)
         lines += ["", f"caution: {first}", *(" " * 9 + line for line in rest)]
     return "\n".join(lines) + "\n"
+
+
+def _family(group: Sequence[Entry]) -> list[str]:
+    from acsolve.report.family_text import family_lines
+
+    return family_lines(group)
 
 
 def _body(entry: Entry) -> list[str]:
@@ -52,6 +64,10 @@ def _question(entry: Entry) -> list[str]:
         return []
     words = question_text(entry.ask)
     named = {"cutoff": f"cutoffs of the {words}", "sweep": f"sweep of the {words}"}
+    if entry.step is not None:
+        named["step"] = f"{DRIVES[entry.step.drive.kind]} of the {words}"
+    if entry.part_value is not None:
+        named["part-value"] = f"{entry.part_value.name} for a cutoff of the {words}"
     return wrapped(named.get(entry.kind, words), 80)
 
 

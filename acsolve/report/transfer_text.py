@@ -15,6 +15,7 @@ from acsolve.report.number import (
     hertz,
     plain,
 )
+from acsolve.report.pole_text import pole_rows
 from acsolve.report.root_text import root_words
 from acsolve.report.table import labelled
 from acsolve.report.values import limit_number, standard_numbers
@@ -60,7 +61,7 @@ def transfer_lines(entry: Entry) -> list[str]:
     else:
         rows.append(("note", "not a ratio of polynomials in s: no poles, zeros or order"))
     rows += _standard_rows(found, entry.formula, unit)
-    rows += _root_rows(found)
+    rows += _root_rows(found) if entry.roots is None else pole_rows(entry.roots)
     rows += checked_rows(form)
     from acsolve.report.reading_text import approximation_lines, reading_lines
 

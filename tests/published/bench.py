@@ -14,6 +14,7 @@ import acsolve
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.cutoff import CutoffAnswer
 from acsolve.analyses.poles import PolesZeros
+from acsolve.analyses.step import StepAnswer
 from acsolve.circuit.expression import Number
 
 FOLDER = File(__file__).parent
@@ -133,6 +134,12 @@ def cutoffs(asked: Asked, reference: Literal["peak"] | None = None) -> CutoffAns
     found = asked.path().cutoffs(reference=reference)
     assert found.complete
     return found
+
+
+@cache
+def stepped(asked: Asked) -> StepAnswer:
+    """The step response of a question."""
+    return asked.path().step()
 
 
 @dataclass(frozen=True, slots=True)

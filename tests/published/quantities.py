@@ -13,7 +13,7 @@ from typing import Any
 
 import numpy as np
 
-from .bench import Asked, Bench, Row, cutoffs, roots
+from .bench import Asked, Bench, Row, cutoffs, roots, stepped
 
 Measure = Callable[[Bench, Row], Any]
 
@@ -229,6 +229,39 @@ def resonance(*names: str) -> Measure:
     return lambda bench, _: 1 / (2 * np.pi * np.sqrt(np.prod([bench.part(name) for name in names])))
 
 
+def step(bench: Bench) -> Any:
+    """The step response of the transfer that the file asks for."""
+    return stepped(bench.transfer())
+
+
+def at_time(bench: Bench, row: Row) -> float:
+    """The step response at the row's time."""
+    return float(step(bench).at(row.given["time_s"]))
+
+
+def figure(name: str) -> Measure:
+    """A figure of the step response."""
+    return lambda bench, _: getattr(step(bench), name)
+
+
+def overshoot(bench: Bench, row: Row) -> float:
+    """The overshoot, which is also what the response is at the row's time."""
+    found = step(bench)
+    assert abs(found.peak_s - row.given["time_s"]) < 1e-12 * found.peak_s
+    assert abs(at_time(bench, row) - 1 - found.overshoot) < 1e-12
+    return float(found.overshoot)
+
+
+def rise_times_bandwidth(bench: Bench, row: Row) -> float:
+    """The 10 to 90 % rise time times the half-power frequency in hertz."""
+    return float(step(bench).rise_s * cutoff(unit="hertz")(bench, row))
+
+
+def elmore_rise(bench: Bench, row: Row) -> float:  # noqa: ARG001
+    """sqrt(2 pi) times the width of the impulse response, over R1·C1."""
+    return float(step(bench).moments.elmore_rise_s / time_constant(bench))
+
+
 DESIGN: dict[str, Measure] = {
     "balance frequency [Hz]": resonance("R1", "R2", "C1", "C2"),
     "series resonance of the motional arm [Hz]": resonance("L1", "C1"),
@@ -342,6 +375,14 @@ TABLE: dict[str, Measure] = {
     "delay to out = * [us]": delay(lambda bench: bench.ratio("in", "out"), times=1e6),
     "delay to x = * [us]": delay(lambda bench: bench.ratio("in", "x"), times=1e6),
     "T_D/RC [1]": lambda bench, row: delay()(bench, row) / time_constant(bench),
+    # steps and moments
+    "response at t = * [1]": at_time,
+    "response at the first undershoot [1]": at_time,
+    "50 % delay = ln 2 tau [s]": figure("delay_s"),
+    "10-90 % rise time = ln 9 tau [s]": figure("rise_s"),
+    "rise time times 3 dB bandwidth* [1]": rise_times_bandwidth,
+    "overshoot = * [1]": overshoot,
+    "T_R/RC [1]": elmore_rise,
     **DESIGN,
 }
 

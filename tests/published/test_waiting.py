@@ -1,9 +1,7 @@
-"""Rows that no analysis answers yet: noise, noise bandwidth, steps and moments."""
+"""Rows that no analysis answers yet: noise and noise bandwidth."""
 
 from .bench import rows
 from .quantities import measures
-
-STEP = ("overshoot = exp(-pi z/sqrt(1-z^2))", "response at the first undershoot")
 
 WAITING = frozenset(
     {
@@ -20,17 +18,6 @@ WAITING = frozenset(
         ("enbw-cascade-n2", "noise bandwidth / overall 3 dB frequency"),
         ("enbw-cascade-n3", "noise bandwidth / section corner frequency"),
         ("enbw-cascade-n3", "noise bandwidth / overall 3 dB frequency"),
-        ("step-rc-first-order", "response at t = tau"),
-        ("step-rc-first-order", "response at t = 5 tau"),
-        ("step-rc-first-order", "50 % delay = ln 2 tau"),
-        ("step-rc-first-order", "10-90 % rise time = ln 9 tau"),
-        ("step-rc-first-order", "rise time times 3 dB bandwidth"),
-        ("step-rc-first-order", "rise time times 3 dB bandwidth, exact ln 9/(2 pi)"),
-        ("step-rlc-zeta-0.2", STEP[0]),
-        ("step-rlc-zeta-0.2", STEP[1]),
-        ("step-rlc-zeta-0.707", STEP[0]),
-        ("step-rlc-zeta-0.707", STEP[1]),
-        ("elmore-rise-time-rc", "T_R/RC"),
     }
 )
 
