@@ -62,6 +62,7 @@ def streamed(
                 forward[other] = term
         late[pivot], values[pivot] = 0, inverse
         if place not in kept:
+            forward[row] = None
             for slot in (pivot, *rights):
                 values[slot] = None
     return Factors(plan, values, forward)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from functools import partial
 
+from acsolve.algebra.factors import squarefree
 from acsolve.algebra.residue import Factor, Ratio, exact_ratio
 from acsolve.algebra.ring import Polynomial
 from acsolve.analyses.closed_form import ClosedForm
@@ -21,7 +22,7 @@ def ratio_of(form: ClosedForm) -> Ratio:
         return exact_ratio(*numbers)
     top, bottom = form.coefficients()
     factors: list[Factor] = []
-    for factor, multiplicity in form.denominator.factor_squarefree()[1]:
+    for factor, multiplicity in squarefree(form.denominator)[1]:
         factors += _split(form, factor, int(multiplicity))
     return Ratio(
         numerator=partial(ball_coefficients, form, form.numerator),

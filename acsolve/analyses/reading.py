@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Literal, get_args
 
+from acsolve.algebra.factors import factors
 from acsolve.algebra.ring import Polynomial
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.shape import StandardForm, sign_of, standard_form
@@ -149,14 +150,14 @@ def _factors(
     page: _Page, polynomial: Polynomial, constants: _TimeConstants
 ) -> tuple[Polynomial, list[Phrase], int]:
     """What is free of s, the factors with s as phrases, and the power of s alone."""
-    number, factors = polynomial.factor()
+    number, found = factors(polynomial)
     lead, phrases, alone = page.form.basis.ring.constant(int(number)), [], 0
     place = page.form.basis.s_index
 
     def degree(factor: Polynomial) -> int:
         return 0 if place is None else int(factor.degrees()[place])
 
-    for factor, exponent in sorted(factors, key=lambda item: (degree(item[0]), str(item[0]))):
+    for factor, exponent in sorted(found, key=lambda item: (degree(item[0]), str(item[0]))):
         count = int(exponent)
         coefficients = page.form.by_power(factor)
         if degree(factor) == 0:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from math import isqrt
 from typing import Literal
 
+from acsolve.algebra.factors import factors
 from acsolve.algebra.ring import Polynomial, cancel, positive
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.equations.grouping import LARGEST_GROUPED, Writer, factored
@@ -211,7 +212,7 @@ def rooted(polynomial: Polynomial) -> tuple[Polynomial, Polynomial]:
     if isqrt(number) ** 2 == number:
         number, whole = 1, whole * isqrt(number)
     outside, inside = outside * whole, inside * number
-    for factor, exponent in (*found.sums, *found.monomial.factor()[1]):
+    for factor, exponent in (*found.sums, *factors(found.monomial)[1]):
         count = int(exponent) // 2 if sign_of(factor) > 0 else 0
         outside, inside = outside * factor**count, inside * factor ** (int(exponent) - 2 * count)
     return outside, inside
@@ -222,7 +223,7 @@ def _radical(polynomial: Polynomial) -> Polynomial:
     one = polynomial.context().constant(1)
     if polynomial.is_constant():
         return one
-    for factor, exponent in polynomial.factor()[1]:
+    for factor, exponent in factors(polynomial)[1]:
         if sign_of(factor) > 0 and exponent == 1:
             one = one * factor
     return one

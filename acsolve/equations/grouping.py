@@ -13,6 +13,7 @@ from itertools import combinations
 from operator import ge, sub
 from typing import Any
 
+from acsolve.algebra.factors import factors
 from acsolve.algebra.ring import Polynomial, cancel, positive
 from acsolve.circuit.expression import Name
 from acsolve.equations.exact import Basis
@@ -49,9 +50,9 @@ class Factored:
 
 def factored(polynomial: Polynomial) -> Factored:
     """The factors of a polynomial that is not zero, most terms of each sum positive."""
-    number, factors = polynomial.factor()
+    number, found = factors(polynomial)
     size, monomial, sums = int(number), polynomial.context().constant(1), []
-    for factor, exponent in factors:
+    for factor, exponent in found:
         count = int(exponent)
         if len(factor) == 1:
             monomial = monomial * factor**count
@@ -222,7 +223,7 @@ class Writer:
             return []
         if any(sum(map(int, term)) != 1 for term in factor.monoms()):
             return []
-        items = sorted((item for item, _ in top.factor()[1]), key=self._first)
+        items = sorted((item for item, _ in factors(top)[1]), key=self._first)
         return next(([a, b] for a, b in combinations(items, 2) if a + b == factor), [])
 
     def _first(self, polynomial: Polynomial) -> tuple[int, int, object]:

@@ -12,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from acsolve.algebra.fronts import Fronts
+from acsolve.algebra.lu import needed_steps
 from acsolve.algebra.plan import Plan, plan_elimination
 from acsolve.algebra.route import Route, choose_route
 from acsolve.circuit.netlist import Netlist
@@ -29,6 +30,7 @@ _RANGE = 2.0**800  # answers (or their inverses) beyond this are solved with pow
 _WORTH_A_PLAN = 16  # failing points that pay for a plan of their own (empirical)
 _BYTES = 1 << 28  # working set of one block of points: larger blocks gain nothing (empirical)
 _BLOCK = (32, 4096)  # points in a block, least and most
+_IN_HAND = 64  # vectors of a streamed elimination besides those it is asked to hold
 _ACCEPTABLE = 1e-5  # the same, where balls would cost too much
 _BALL_BUDGET = 3_000_000  # entries times points that may be solved in balls: some ten seconds
 _ZEROS_ENOUGH = 3  # exact zeros in a row after which all failing points count as zero
@@ -85,7 +87,7 @@ class Solver:
         hertz = np.asarray(hertz, dtype=float)
         values = np.empty((len(self.observed), len(hertz)), dtype=complex)
         fronts = self.route.fronts
-        length = _block_length(self.plan, fronts)
+        length = _block_length(self.plan, fronts) if fronts else self._streamed_length()
         _steady_memory()
         for start in range(0, len(hertz), length):
             here = slice(start, start + length)
@@ -96,6 +98,13 @@ class Solver:
         if len(bad):
             values[:, bad] = self.solve(hertz[bad]).value()
         return values
+
+    def _streamed_length(self) -> int:
+        """Points in a block where only what the observed quantities need is held."""
+        wanted = {column for c in self.observed for column in c}
+        held = sum(len(self.plan.steps[at].right) + 2 for at in needed_steps(self.plan, wanted))
+        least, most = _BLOCK
+        return int(np.clip(_BYTES // (16 * (held + _IN_HAND)), least, most))
 
     def near_zero(self) -> list[Local | None]:
         """H near 0 Hz: its order and leading coefficient, for each functional."""
