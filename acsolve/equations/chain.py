@@ -22,6 +22,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from acsolve.algebra.scaled import Scaled, normal, power_of_two
+from acsolve.algebra.two_by_two import Matrix, product, times, total
 from acsolve.circuit.netlist import GROUND, Netlist, Pair, Part
 from acsolve.circuit.value import Quantity
 from acsolve.equations.numeric import Hybrid, float_values, takes_branch
@@ -30,7 +31,6 @@ from acsolve.equations.solver import Solver, prepare
 from acsolve.equations.system import DRIVE, SHORT, Functional, System, assemble
 
 Array: TypeAlias = NDArray[Any]
-Matrix: TypeAlias = tuple[Array, Array, Array, Array]  # by rows; shape (points,) each
 
 _EPSILON = float(np.finfo(float).eps)
 _ONE_WAY = frozenset(
@@ -226,16 +226,16 @@ def power(base: Base, count: int) -> tuple[Matrix, Matrix, Array]:
     first = found
     for bit in bin(count)[3:]:
         double = 2 * near
-        rate = _sum(_times(rate, double), _product(rate, found), _product(found, rate))
-        found = _sum(_times(found, double), _product(found, found))
+        rate = total(times(rate, double), product(rate, found), product(found, rate))
+        found = total(times(found, double), product(found, found))
         exponent = 2 * exponent
         if bit == "1":
-            rate = _sum(
-                _times(_sum(rate, base.slope), near),
-                _product(rate, first),
-                _product(found, base.slope),
+            rate = total(
+                times(total(rate, base.slope), near),
+                product(rate, first),
+                product(found, base.slope),
             )
-            found = _sum(_times(_sum(found, first), near), _product(found, first))
+            found = total(times(total(found, first), near), product(found, first))
         found, near = _left(found, near)
         found, rate, exponent = _shifted(found, rate, exponent, near)
         first = _chosen(near > 0, base.beside_one, base.matrix)
@@ -268,30 +268,13 @@ def _size(found: Matrix) -> Array:
     return np.asarray(np.maximum(np.maximum(a, d), np.sqrt(b) * np.sqrt(c)))
 
 
-def _product(x: Matrix, y: Matrix) -> Matrix:
-    a, b, c, d = x
-    e, f, g, h = y
-    return a * e + b * g, a * f + b * h, c * e + d * g, c * f + d * h
-
-
-def _sum(first: Matrix, *others: Matrix) -> Matrix:
-    a, b, c, d = first
-    for other in others:
-        a, b, c, d = a + other[0], b + other[1], c + other[2], d + other[3]
-    return a, b, c, d
-
-
-def _times(x: Matrix, factor: Array) -> Matrix:
-    return x[0] * factor, x[1] * factor, x[2] * factor, x[3] * factor
-
-
 def _shifted(
     found: Matrix, rate: Matrix, exponent: Array, near: Array
 ) -> tuple[Matrix, Matrix, Array]:
     """The same with magnitudes between 1/2 and 1, as they are near one."""
     shift = np.where(near > 0, 0, np.frexp(_size(found))[1])
     factor = power_of_two(-shift)
-    return _times(found, factor), _times(rate, factor), exponent + shift
+    return times(found, factor), times(rate, factor), exponent + shift
 
 
 def _scaled_power(base: Scaled, count: int) -> Scaled:

@@ -12,11 +12,11 @@ from typing import Any, TypeAlias
 import numpy as np
 
 from acsolve.algebra.ball import working_bits
+from acsolve.algebra.two_by_two import Matrix, product, total
 from acsolve.equations.chain import Chain
 from acsolve.equations.numeric import Hybrid
 
 Ball: TypeAlias = Any  # flint.acb
-Matrix: TypeAlias = tuple[Ball, Ball, Ball, Ball]  # by rows
 
 _GENERIC_HERTZ = np.array([13.7, 1.37e3, 1.37e5])  # only where nothing was swept before
 
@@ -55,22 +55,12 @@ def _power(base: Matrix, rate: Matrix, count: int) -> tuple[Matrix, Matrix]:
     """base ** count and its derivative, binary powers from the highest bit on."""
     found, slope = base, rate
     for bit in bin(count)[3:]:
-        slope = _sum(_product(slope, found), _product(found, slope))
-        found = _product(found, found)
+        slope = total(product(slope, found), product(found, slope))
+        found = product(found, found)
         if bit == "1":
-            slope = _sum(_product(slope, base), _product(found, rate))
-            found = _product(found, base)
+            slope = total(product(slope, base), product(found, rate))
+            found = product(found, base)
     return found, slope
-
-
-def _product(x: Matrix, y: Matrix) -> Matrix:
-    a, b, c, d = x
-    e, f, g, h = y
-    return a * e + b * g, a * f + b * h, c * e + d * g, c * f + d * h
-
-
-def _sum(x: Matrix, y: Matrix) -> Matrix:
-    return x[0] + y[0], x[1] + y[1], x[2] + y[2], x[3] + y[3]
 
 
 def _hybrid(chain: Matrix, slope: Matrix, turned: tuple[Ball, Ball]) -> Hybrid:

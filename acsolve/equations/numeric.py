@@ -240,14 +240,16 @@ class _Table:
         self.exact = exact
         self.places: list[tuple[int, int, int]] = []
         self.distinct: list[Entry] = []
-        self.known: dict[Entry, int] = {}
+        self.known: dict[Any, int] = {}
 
     def put(self, row: int, column: int, entry: Entry | None) -> None:
         if entry is None:
             return
         which = len(self.distinct)
         if not self.exact:
-            which = self.known.setdefault(entry, which)
+            # a tuple is found more quickly than an entry
+            key = entry.coefficients if isinstance(entry, PolynomialEntry) else entry
+            which = self.known.setdefault(key, which)
         if which == len(self.distinct):
             self.distinct.append(entry)
         self.places.append((row, column, which))
