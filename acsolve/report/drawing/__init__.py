@@ -1,0 +1,1 @@
+"""Schematics from the netlist alone: plan, placement, wires, shapes, pictures."""
