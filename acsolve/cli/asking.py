@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import sys
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
+from shutil import get_terminal_size
 from typing import TYPE_CHECKING, Any, TypeVar
 
 import click
@@ -52,7 +54,13 @@ def heading(circuit: Circuit, options: Options) -> Heading:
         variant=circuit.variant,
         cautions=circuit.cautions,
         warnings=(*circuit.warnings, *_problems(circuit, options)),
+        columns=_columns(),
     )
+
+
+def _columns() -> int | None:
+    """The width of the terminal that shows the answers, None where there is none."""
+    return get_terminal_size().columns if sys.stdout.isatty() else None
 
 
 def _problems(circuit: Circuit, options: Options) -> tuple[Diagnostic, ...]:

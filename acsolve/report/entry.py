@@ -40,12 +40,17 @@ Kind = Literal[
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Heading:
-    """What all answers about one circuit share."""
+    """What all answers about one circuit share.
+
+    `columns` is the width of the terminal they are shown on, None where there is none:
+    formulas are then one line each, for other programs to pick up.
+    """
 
     title: str | None = None
     variant: str | None = None
     cautions: tuple[str, ...] = ()
     warnings: tuple[Diagnostic, ...] = ()
+    columns: int | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

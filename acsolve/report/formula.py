@@ -21,21 +21,27 @@ _WORKABLE = 2000  # terms of a coefficient that are put in order to show the fir
 _POWERS = 12  # powers of s shown of a long polynomial
 
 
-def formula_lines(form: ClosedForm | NestedForm, name: str) -> list[str]:
-    """`name = …` on as few lines as it takes; a long one is cut and says so."""
+def formula_lines(
+    form: ClosedForm | NestedForm, name: str, *, columns: int | None = WIDTH
+) -> list[str]:
+    """`name = …`; a long one is cut and says so.
+
+    On a terminal of so many columns a quotient is written as a fraction with its bar where that
+    fits; with None, for a pipe, it is one line whatever its length.
+    """
     from acsolve.analyses.nested import NestedForm
 
     if isinstance(form, NestedForm):
         return _steps(form, name)
     found = None if form.symbols else coefficients(form)
     if found is not None:
-        return _numeric(found, name)
+        return _numeric(found, name, columns)
     count = term_count(form)
     if count > LONGEST:
         return _long_symbolic(form, name, count)
     spelling = form.spelled(safe=False)
     top, bottom = (form.part_text(part, spelling) for part in (form.numerator, form.denominator))
-    return fraction(f"{name} = ", top, bottom)
+    return fraction(f"{name} = ", top, bottom, columns)
 
 
 def _steps(form: NestedForm, name: str) -> list[str]:
@@ -63,27 +69,35 @@ def hung(head: str, text: str, *, width: int = WIDTH) -> list[str]:
     return [head + first, *(" " * len(head) + line for line in rest)]
 
 
-def _numeric(found: Coefficients, name: str) -> list[str]:
+def _numeric(found: Coefficients, name: str, columns: int | None) -> list[str]:
     top, bottom = numeric_polynomial(found.top), numeric_polynomial(found.bottom)
     count = sum(value != 0 for value in (*found.top, *found.bottom))
     if count <= LONGEST:
-        return fraction(f"{name} = ", top, bottom)
+        return fraction(f"{name} = ", top, bottom, columns)
     lines = [f"{name} = N(s)/D(s)"]
     lines += _power_lines("N(s)", [_coefficient(value) for value in found.top])
     lines += _power_lines("D(s)", [_coefficient(value) for value in found.bottom])
     return [*lines, _remark(count)]
 
 
-def fraction(head: str, top: str, bottom: str, *, width: int = WIDTH) -> list[str]:
-    """top/bottom on one line where it fits, else the divisor below the dividend."""
-    if bottom == "1":
-        return hung(head, top, width=width)
+def fraction(head: str, top: str, bottom: str, columns: int | None) -> list[str]:
+    """top/bottom: with its bar on a terminal, else on one line; wrapped where it is too wide."""
     first = f"({top})" if " " in top else top
     second = f"({bottom})" if any(sign in bottom for sign in " */") else bottom
-    if len(head) + len(first) + 1 + len(second) <= width:
-        return [f"{head}{first}/{second}"]
+    if columns is None:
+        return [head + (top if bottom == "1" else f"{first}/{second}")]
+    if bottom == "1":
+        return hung(head, top, width=columns)
+    bar = max(len(top), len(bottom)) + 2
+    if len(head) + bar <= columns:
+        left = " " * len(head)
+        return [
+            f"{left}{top.center(bar)}".rstrip(),
+            head + "-" * bar,
+            f"{left}{bottom.center(bar)}".rstrip(),
+        ]
     left = " " * (len(head) - 2)
-    return [*hung(head, first, width=width), *hung(f"{left}/ ", second, width=width)]
+    return [*hung(head, first, width=columns), *hung(f"{left}/ ", second, width=columns)]
 
 
 def numeric_polynomial(values: tuple[complex | Decimal, ...]) -> str:

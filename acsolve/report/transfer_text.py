@@ -48,7 +48,8 @@ def transfer_lines(entry: Entry) -> list[str]:
     assert entry.ask is not None, "a transfer entry holds its question"
     form = found.form
     unit = unit_sign(entry.ask)
-    lines = formula_lines(form, f"{letter(entry.ask)}(s)")
+    name, columns = f"{letter(entry.ask)}(s)", entry.heading.columns
+    lines = formula_lines(form, name, columns=columns)
     rows: list[tuple[str, str]] = []
     if isinstance(form, NestedForm):
         rows += [("note", text) for text in _NESTED_NOTES]
