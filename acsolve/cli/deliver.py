@@ -14,9 +14,10 @@ from acsolve.cli.status import ANSWERED, status_of
 if TYPE_CHECKING:
     from acsolve.report.entry import Entry, Kind
     from acsolve.report.plot import Picture
+    from acsolve.report.plot_poles import PoleMap
 
 Answered = Sequence[tuple[Path | None, "Entry"]]
-Draw = Callable[[Answered, Options], "Picture"]
+Draw = Callable[[Answered, Options], "Picture | PoleMap"]
 
 
 def refuse_unfit(options: Options, kind: Kind) -> None:
@@ -101,7 +102,7 @@ def _content(name: str, answered: Answered, options: Options, draw: Draw | None)
 
         return answers_text(entries).encode()
     if found in save.PICTURES:
-        from acsolve.report.plot import picture_content
+        from acsolve.report.pictures import drawing_content
 
         if entries[0].drawing is not None:
             return entries[0].drawing.content(found)
@@ -110,7 +111,7 @@ def _content(name: str, answered: Answered, options: Options, draw: Draw | None)
 
             return time_picture(entries, found)
         assert draw is not None, "a kind of answer that is saved as a picture can be drawn"
-        return picture_content(draw(answered, options), found)
+        return drawing_content(draw(answered, options), found)
     family = bool(entries[0].over) and len(families(entries)) == 1
     if len(entries) > 1 and entries[0].kind in ("sweep", "step") and not family:
         raise refused(

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from math import pi
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, cast
 
 from acsolve import AnalysisError, Diagnostic, EquationError, Path
 from acsolve.cli.family import draw_family
@@ -12,19 +13,62 @@ from acsolve.cli.options import Options, refused
 if TYPE_CHECKING:
     from acsolve.cli.deliver import Answered
     from acsolve.report.entry import Entry
+    from acsolve.report.picture_kind import PictureKind
     from acsolve.report.plot import Picture
+    from acsolve.report.plot_poles import PoleMap
 
     Group = list[tuple[Path, Entry]]
 
 
-def draw(answered: Answered, options: Options) -> Picture:
+def draw(answered: Answered, options: Options) -> Picture | PoleMap:
+    """What --picture names; without it gain and phase."""
+    if options.picture == "poles":
+        return _pole_map(answered)
+    return _curves(answered, options)
+
+
+def placed(options: Options) -> Options:
+    """The options, with automatic points where a curve in a plane needs them."""
+    from acsolve.report.picture_kind import PLANES
+
+    if options.picture not in PLANES or options.points is not None or options.at is not None:
+        return options
+    return replace(options, points="auto")
+
+
+def _pole_map(answered: Answered) -> PoleMap:
+    """Poles, zeros and hidden modes of one answer."""
+    from acsolve.report.entry import question_text
+    from acsolve.report.plot_poles import PoleMap
+
+    (path, entry), *more = answered
+    if more:
+        raise refused(
+            f"one picture holds the poles and zeros of one answer, not of {len(answered)}",
+            "Pick one with --from and --to, or --into, and leave --over out.",
+        )
+    assert path is not None, "an answer that is drawn belongs to a path"
+    return PoleMap(
+        roots=entry.roots or path.poles(),
+        title=_title(entry),
+        subtitle=question_text(path.ask),
+    )
+
+
+def _title(entry: Entry) -> str:
+    heading = entry.heading
+    variant = f' (variant "{heading.variant}")' if heading.variant else ""
+    return (heading.title or "") + variant
+
+
+def _curves(answered: Answered, options: Options) -> Picture:
     """Every question once, as a curve over the band that shows it, cutoffs marked."""
     from acsolve.report.entry import curve_words, unit_sign
     from acsolve.report.plot import LARGEST, Curve, Picture
 
     entries = [entry for _, entry in answered]
     if entries[0].over:
-        return draw_family(answered, options)
+        return replace(draw_family(answered, options), kind=_kind(options))
     groups = _by_question(answered)
     asks = [group[0][1].ask for group in groups]
     units = {unit_sign(ask) for ask in asks if ask is not None}
@@ -35,12 +79,12 @@ def draw(answered: Answered, options: Options) -> Picture:
         )
     subtitle, labels = curve_words([ask for ask in asks if ask is not None])
     marks = [_marks(group) for group in groups]
-    swept = _given(groups) or _swept(groups, marks)
-    heading = entries[0].heading
-    variant = f' (variant "{heading.variant}")' if heading.variant else ""
+    swept = _given(groups) or _swept(groups, marks, options)
     return Picture(
         curves=tuple(map(Curve, swept, labels, marks)),
-        title=(heading.title or "") + variant,
+        kind=_kind(options),
+        asymptotes=_asymptotes(groups, options),
+        title=_title(entries[0]),
         subtitle=subtitle,
         unit=next(iter(units), ""),
         linear=options.linear,
@@ -66,7 +110,28 @@ def _given(groups: list[Group]) -> list[Any]:
     return [group[0][1].sweep for group in groups if group[0][1].sweep is not None]
 
 
-def _swept(groups: list[Group], marks: list[tuple[float, ...]]) -> list[Any]:
+def _kind(options: Options) -> PictureKind:
+    return cast("PictureKind", options.picture or "gain")  # checked with the other options
+
+
+_MOST_STORING = 12  # parts that store energy; a gain of more has too many corners to be drawn
+
+
+def _asymptotes(groups: list[Group], options: Options) -> tuple[Any, ...]:
+    """The asymptotes of a lone gain, where it is small and its form is known."""
+    from acsolve.report.plot_asymptotes import asymptotes_of
+
+    path, entry = groups[0][0]
+    storing = sum(part.kind != "resistor" for part in path.circuit.netlist.parts)
+    if _kind(options) != "gain" or len(groups) > 1 or storing > _MOST_STORING:
+        return ()
+    try:
+        return asymptotes_of(entry.transfer or path.transfer())
+    except (AnalysisError, EquationError):
+        return ()
+
+
+def _swept(groups: list[Group], marks: list[tuple[float, ...]], options: Options) -> list[Any]:
     """Each path over one band that shows every pole, zero and mark."""
     from acsolve.report.band import drawn_frequencies, natural_band
 
@@ -76,6 +141,8 @@ def _swept(groups: list[Group], marks: list[tuple[float, ...]]) -> list[Any]:
     if not places and None in roots:
         raise no_band()
     band = natural_band(places)
+    if placed(options).points == "auto":
+        return [group[0][0].sweep(band_text(band), points="auto") for group in groups]
     return [
         group[0][0].sweep(drawn_frequencies(band, own or (), mark))
         for group, own, mark in zip(groups, roots, marks, strict=True)

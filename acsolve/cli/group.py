@@ -22,6 +22,7 @@ COMMANDS = {
     "sweep": "gain, phase and delays over a band, as table, file or picture",
     "step": "response in time to a step, impulse or sine; rise, delay, settling",
     "draw": "the schematic, drawn from the netlist alone",
+    "note": "the design note: one document with derivation, pictures and numbers",
 }
 
 

@@ -11,6 +11,7 @@ import click
 
 from acsolve import AnalysisError, Diagnostic
 from acsolve.cli.group import Command, help_option
+from acsolve.report.picture_kind import PICTURE_KINDS
 
 QUANTITIES = ("voltage-ratio", "current-ratio", "transimpedance", "transadmittance")
 
@@ -49,6 +50,8 @@ class Options:
     drive: str | None = None
     cycles: str | None = None
     settle: str | None = None
+    date: str | None = None
+    picture: str | None = None
     save: tuple[str, ...] = ()
     as_json: bool = False
     arguments: tuple[str, ...] = ()  # the whole command line, to name options in messages
@@ -153,6 +156,7 @@ def _option(names: str, place: str | None, text: str, **more: Any) -> Callable[[
     return make
 
 
+_KINDS = ", ".join(PICTURE_KINDS)
 _TABLE = {
     "from": _option("--from source", "PAIR", "where it is driven: out, or a,b, or a port"),
     "to": _option("--to target", "PAIR", "where it is observed, likewise"),
@@ -194,11 +198,13 @@ _TABLE = {
     "drive": _option("--drive", "NAME", "step, impulse, or a sine's frequency, as 1kHz"),
     "cycles": _option("--cycles", "5", "how long the sine lasts; it goes on if not given"),
     "settle": _option("--settle", "2%", "half the band around the final value, 2% if not given"),
+    "date": _option("--date", "TEXT", "a date to show; the note has none of its own"),
     "resistance": _option(
         "--reference", "50ohm", "reference of the s parameters; 50ohm,75ohm for one each"
     ),
     "value-for": _option("--value-for", "R1", "the values of it that put a cutoff where --at says"),
     "degree": _option("--degree", "4", "closed forms up to this degree, 2 if not given"),
+    "picture": _option("--picture", "KIND", f"what a saved picture shows: {_KINDS}"),
     "save": _option("--save", "FILE", "save as its ending says; may be repeated", multiple=True),
     "json": _option("--json as_json", None, "one JSON document on standard output"),
 }
@@ -274,12 +280,27 @@ def _check(options: Options) -> None:
         )
     if options.into is not None and options.quantity is not None:
         raise refused("--into always asks an impedance", "Leave --quantity out.")
+    _check_picture(options)
     if options.cycles is not None and options.drive in (None, "step", "impulse"):
         raise refused("--cycles goes with a sine", "Name its frequency, as --drive 1kHz.")
     if options.at is not None and (options.band or options.points or options.linear):
         raise refused(
             "--at names every frequency, so --band, --points and --linear do not go with it",
             "Give --at alone, or a band.",
+        )
+
+
+def _check_picture(options: Options) -> None:
+    if options.picture is None:
+        return
+    if options.picture not in PICTURE_KINDS:
+        raise refused(f"there is no picture {options.picture}", f"The pictures are {_KINDS}.")
+    from acsolve.report.save import PICTURES, ending
+
+    if not any(ending(name) in PICTURES for name in options.save):
+        raise refused(
+            f"--picture {options.picture} says what a saved picture shows, and none is saved",
+            f"Add --save {options.picture}.svg, or png or pdf.",
         )
 
 

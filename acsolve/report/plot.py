@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import io
 import logging
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -15,12 +15,15 @@ from acsolve.report.axes import (
     set_frequency_axis,
     set_magnitude_axis,
 )
+from acsolve.report.plot_asymptotes import draw_asymptotes, name_asymptotes
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
+    from acsolve.analyses.corners import Segment
     from acsolve.analyses.sweep import Sweep
+    from acsolve.report.picture_kind import PictureKind
 
 #: Hues told apart with any colour vision (after M. Okabe and K. Ito, "Color universal
 #: design", 2008), each with a dash pattern and falling lightness for print without colour.
@@ -34,7 +37,7 @@ LINES: tuple[tuple[str, Any], ...] = (
 )
 LARGEST = len(LINES)
 INK, _PALE = "#222222", "#c9c9c9"
-_SETTINGS: Any = {
+SETTINGS: Any = {
     "font.family": "DejaVu Sans",
     "font.size": 9.5,
     "svg.hashsalt": "acsolve",
@@ -57,9 +60,14 @@ class Curve:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Picture:
-    """What is drawn: the curves, their unit and how the frequency axis runs."""
+    """What is drawn: the curves, their unit and how the frequency axis runs.
+
+    `asymptotes` belong to a lone curve of a gain.
+    """
 
     curves: tuple[Curve, ...]
+    kind: PictureKind = "gain"
+    asymptotes: tuple[Segment, ...] = ()
     title: str = ""
     subtitle: str = ""
     unit: str = ""
@@ -78,11 +86,9 @@ def rendered(make: Callable[[], Figure], ending: str) -> bytes:
     logging.getLogger("matplotlib").setLevel(logging.ERROR)
     import matplotlib as mpl
 
-    with mpl.rc_context(_SETTINGS):
+    with mpl.rc_context(SETTINGS):
         store = io.BytesIO()
-        make().savefig(
-            store, format=ending, dpi=160, metadata=_METADATA[ending], facecolor="white"
-        )
+        make().savefig(store, format=ending, dpi=160, metadata=_METADATA[ending], facecolor="white")
     return store.getvalue()
 
 
@@ -103,26 +109,67 @@ def figure(picture: Picture) -> Figure:
         plain_axes(axes)
     for place, curve in enumerate(picture.curves):
         _draw(upper, lower, curve, place, picture)
-    set_magnitude_axis(upper, _sizes(picture), picture.unit)
+    band = _straight_band(picture)
+    ends = draw_asymptotes(upper, picture.asymptotes, band, picture.unit) if band else []
+    set_magnitude_axis(upper, np.append(_sizes(picture), ends), picture.unit)
     _phase_axis(lower, picture)
     set_frequency_axis(lower, _hertz(picture), linear=picture.linear)
     upper.tick_params(labelbottom=False)
     if picture.level_db is not None:
         _level_line(upper, picture)
+    name_curves(drawn, upper, picture)
+    titles(upper, picture)
+    drawn.align_ylabels([upper, lower])
+    if band:
+        curve = picture.curves[0]
+        name_asymptotes(
+            upper,
+            picture.asymptotes,
+            band,
+            picture.unit,
+            marks=curve.marks,
+            curve=(curve.sweep.hertz, magnitude(curve.sweep, picture.unit)),
+        )
+    return drawn
+
+
+def _straight_band(picture: Picture) -> tuple[float, float] | None:
+    """The band over which asymptotes are drawn; None where they would be no straight lines."""
+    hertz = _hertz(picture)
+    hertz = hertz[hertz > 0]
+    if not picture.asymptotes or picture.linear or len(picture.curves) > 1 or not hertz.size:
+        return None
+    return float(hertz.min()), float(hertz.max())
+
+
+def name_curves(drawn: Figure, axes: Axes, picture: Picture, *, beside: bool = True) -> None:
+    """A legend where there are several curves; of a family, and with `beside` false, outside."""
     if picture.told_by is not None:
         drawn.legend(
-            *upper.get_legend_handles_labels(),
+            *axes.get_legend_handles_labels(),
             loc="outside right upper",
             title=picture.told_by,
             alignment="left",
             frameon=False,
             handlelength=3.2,
         )
+    elif len(picture.curves) > 1 and beside:
+        axes.legend(frameon=False, handlelength=3.2, loc="best")
     elif len(picture.curves) > 1:
-        upper.legend(frameon=False, handlelength=3.2, loc="best")
-    titles(upper, picture)
-    drawn.align_ylabels([upper, lower])
-    return drawn
+        drawn.legend(
+            *axes.get_legend_handles_labels(),
+            loc="outside lower left",
+            frameon=False,
+            handlelength=3.2,
+        )
+
+
+def curve_style(curve: Curve, place: int) -> dict[str, Any]:
+    """Colour, dashes and name of a curve; a dot at each point where there are few."""
+    colour, dashes = curve.line or LINES[place % LARGEST]
+    style = {"color": colour, "linestyle": dashes, "linewidth": 1.7, "label": curve.label}
+    few = len(curve.sweep.hertz) <= 12
+    return style | ({"marker": "o", "markersize": 4} if few else {})
 
 
 def plain_axes(axes: Axes) -> None:
@@ -146,10 +193,7 @@ def magnitude(sweep: Sweep, unit: str) -> Any:
 
 
 def _draw(upper: Axes, lower: Axes, curve: Curve, place: int, picture: Picture) -> None:
-    colour, dashes = curve.line or LINES[place % LARGEST]
-    style = {"color": colour, "linestyle": dashes, "linewidth": 1.7, "label": curve.label}
-    few = len(curve.sweep.hertz) <= 12
-    style |= {"marker": "o", "markersize": 4} if few else {}
+    style = curve_style(curve, place)
     size = magnitude(curve.sweep, picture.unit)
     upper.plot(curve.sweep.hertz, size, **style)
     lower.plot(curve.sweep.hertz, curve.sweep.phase_deg, **style)
@@ -238,12 +282,12 @@ def _level_line(axes: Axes, picture: Picture) -> None:
     axes.axhline(height, color=INK, linewidth=0.9, linestyle=(0, (4, 3)), zorder=1.5)
 
 
-def titles(axes: Axes, picture: Picture) -> None:
-    """Title and question in words, flush left with the axes."""
+def titles(axes: Axes, picture: Picture, notes: Sequence[str] = ()) -> None:
+    """Title, question in words and notes on what is drawn, flush left with the axes."""
     from textwrap import wrap
 
     lines = wrap(picture.title, 78)[:2]
-    below = wrap(picture.subtitle, 100)[:2]
+    below = wrap(picture.subtitle, 100)[:2] + [line for note in notes for line in wrap(note, 100)]
     if lines:
         axes.set_title(
             "\n".join(lines), loc="left", fontsize=11, color=INK, pad=8 + 13 * len(below)

@@ -22,6 +22,7 @@ PICTURES = ("svg", "png", "pdf")
 ENDINGS: dict[Kind, tuple[str, ...]] = {
     "two-port": ("s2p", "json"),
     "draw": (*PICTURES, "json"),
+    "note": ("html", "md", "tex", "pdf", "json"),
     "check": ("json",),
     "equations": ("json",),
     "transfer": ("json", *PICTURES),
@@ -74,8 +75,15 @@ def _unfit(name: str, kind: Kind) -> Diagnostic | None:
     return None
 
 
+_ARTICLES = {
+    "impedance": "an impedance",
+    "equations": "a set of equations",
+    "draw": "a drawing",
+}
+
+
 def _with_article(kind: Kind) -> str:
-    return {"impedance": "an impedance", "equations": "a set of equations", "draw": "a drawing"}.get(kind, f"a {kind}")
+    return _ARTICLES.get(kind, f"a {kind}")
 
 
 def _listed(endings: Sequence[str]) -> str:

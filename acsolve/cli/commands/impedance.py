@@ -16,6 +16,6 @@ command = make_command(
     "The closed form of the impedance looking into a pair.\n"
     "Without --into it answers the file's own ask lines.",
     work,
-    ("into", *VALUES, *FORMS, *SIZES, *READ, *OUTPUT),
+    ("into", *VALUES, *FORMS, *SIZES, *READ, "picture", *OUTPUT),
     "filter.circuit --into out",
 )

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 from acsolve import Path
 from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit
 from acsolve.cli.deliver import deliver, refuse_unfit
-from acsolve.cli.drawing import band_text, draw, features, no_band
+from acsolve.cli.drawing import band_text, draw, features, no_band, placed
 from acsolve.cli.family import members_of, paths_of, sweeps_of
 from acsolve.cli.options import OUTPUT, PAIRS, VALUES, Options, make_command
 from acsolve.cli.progress import progress
@@ -29,7 +29,7 @@ def work(options: Options) -> int:
 
     def answer(item: Asked) -> Sequence[Entry]:
         paths = paths_of(item.path, members)
-        found = sweeps_of(paths, options.at or _band(item, paths, options), options)
+        found = sweeps_of(paths, options.at or _band(item, paths, options), placed(options))
         return [
             Entry(
                 kind="sweep",
@@ -68,6 +68,12 @@ command = make_command(
     "Gain, phase, phase delay and group delay over a band.\n"
     "Without --from, --to or --into it answers the file's own ask lines.",
     work,
-    (*PAIRS, "into", "band", "points", "linear", "at", "over", "verify", *VALUES, *OUTPUT),
+    (
+        *PAIRS,
+        *("into", "band", "points", "linear", "at", "over", "verify"),
+        *VALUES,
+        "picture",
+        *OUTPUT,
+    ),
     "filter.circuit --band 10Hz..1MHz --save sweep.svg",
 )

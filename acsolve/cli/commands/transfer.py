@@ -16,6 +16,6 @@ command = make_command(
     "The closed form from one pair to another, with limits, poles and zeros.\n"
     "Without --from and --to it answers the file's own ask lines.",
     work,
-    (*PAIRS, *VALUES, *FORMS, *SIZES, *READ, *OUTPUT),
+    (*PAIRS, *VALUES, *FORMS, *SIZES, *READ, "picture", *OUTPUT),
     "filter.circuit --from in --to out --symbolic",
 )
