@@ -6,7 +6,7 @@ from dataclasses import replace
 from math import pi
 from typing import TYPE_CHECKING, Any, cast
 
-from acsolve import AnalysisError, Diagnostic, EquationError, Path
+from acsolve import AnalysisError, Circuit, Diagnostic, EquationError, Path
 from acsolve.cli.family import draw_family
 from acsolve.cli.options import Options, refused
 
@@ -34,6 +34,19 @@ def placed(options: Options) -> Options:
     if options.picture not in PLANES or options.points is not None or options.at is not None:
         return options
     return replace(options, points="auto")
+
+
+def placed_for(options: Options, circuit: Circuit) -> Options:
+    """The same for a sweep that is only looked at: its curves are drawn from its points."""
+    endings = {name.lower().rpartition(".")[2] for name in options.save}
+    looked_at = bool(endings) and endings <= {"svg", "png", "pdf"} and not options.as_json
+    free = options.points is None and options.at is None and options.picture != "poles"
+    if looked_at and free and len(circuit.parts) <= _MOST_PLACED:
+        return replace(options, points="auto")
+    return placed(options)
+
+
+_MOST_PLACED = 2_000  # parts; placing points takes several sweeps
 
 
 def _pole_map(answered: Answered) -> PoleMap:

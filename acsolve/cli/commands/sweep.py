@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 from acsolve import Path
 from acsolve.cli.asking import Asked, answer_all, asked, heading, open_circuit
 from acsolve.cli.deliver import deliver, refuse_unfit
-from acsolve.cli.drawing import band_text, draw, features, no_band, placed
+from acsolve.cli.drawing import band_text, draw, features, no_band, placed_for
 from acsolve.cli.family import members_of, paths_of, sweeps_of
 from acsolve.cli.options import OUTPUT, PAIRS, VALUES, Options, make_command
 from acsolve.cli.progress import progress
@@ -29,7 +29,7 @@ def work(options: Options) -> int:
 
     def answer(item: Asked) -> Sequence[Entry]:
         paths = paths_of(item.path, members)
-        found = sweeps_of(paths, options.at or _band(item, paths, options), placed(options))
+        found = sweeps_of(paths, options.at or _band(item, paths, options), placed_for(options, circuit))
         return [
             Entry(
                 kind="sweep",
