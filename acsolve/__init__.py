@@ -12,7 +12,7 @@ path.response([10.0, 100.0])
 from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
-from acsolve.door import Circuit, PairLike, Path, parse, read
+from acsolve.door import Circuit, parse, read
 from acsolve.draft import Draft
 from acsolve.errors import (
     AcsolveError,
@@ -23,6 +23,7 @@ from acsolve.errors import (
     TextError,
     frame,
 )
+from acsolve.path import PairLike, Path
 from acsolve.source import Source, Span
 
 if TYPE_CHECKING:
@@ -46,6 +47,7 @@ if TYPE_CHECKING:
     from acsolve.ports.data import PortData
     from acsolve.ports.touchstone import parse_touchstone, read_touchstone
     from acsolve.ports.write import touchstone_text
+    from acsolve.report.note.note import Note
     from acsolve.two_port import TwoPort
 
 __version__ = "0.1.0"
@@ -62,6 +64,7 @@ _ANSWERS = {
     "Insertion": "acsolve.analyses.insertion",
     "Member": "acsolve.over",
     "NestedForm": "acsolve.analyses.nested",
+    "Note": "acsolve.report.note.note",
     "PortData": "acsolve.ports.data",
     "PortSweep": "acsolve.analyses.port_sweep",
     "Status": "acsolve.equations.result",
@@ -95,6 +98,7 @@ __all__ = [
     "Insertion",
     "Member",
     "NestedForm",
+    "Note",
     "PairLike",
     "Path",
     "PortData",

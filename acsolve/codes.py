@@ -54,6 +54,7 @@ Code = Literal[
     "touchstone.ports",
     "save.ending",
     "save.failed",
+    "note.pdf",
     "variant.unknown",
     # spelling, found while reading the text
     "ask.clause",

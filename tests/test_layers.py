@@ -13,8 +13,8 @@ import pytest
 
 PACKAGE = Path(__file__).parent.parent / "acsolve"
 
-BASE = ("source", "errors", "codes", "memory")
-DOOR = ("__init__", "door", "draft", "drive", "given", "over", "two_port")
+BASE = ("source", "errors", "codes", "memory", "shown")
+DOOR = ("__init__", "door", "draft", "drive", "given", "over", "path", "two_port")
 
 #: Layer -> layers that it may import, besides its own.
 MAY_IMPORT: dict[str, frozenset[str]] = {
@@ -38,6 +38,8 @@ HOMES: dict[str, tuple[str, ...]] = {
     "scipy": ("algebra", "analyses"),
     "networkx": ("circuit",),
     "matplotlib": ("report",),
+    "jinja2": ("report",),
+    "markupsafe": ("report",),
     "sympy": ("acsolve.analyses.sympy_edge",),
     "typer": ("cli", "report"),
     "click": ("cli", "report"),

@@ -111,3 +111,10 @@ def _yun(polynomial: Polynomial, place: int) -> Factors:
         right = right - left.derivative(place)
         count += 1
     return found
+
+
+def whole_text(value: int) -> str:
+    """A whole number of any size in decimal; Python's own way stops at 4,300 digits."""
+    from flint import fmpz
+
+    return str(fmpz(value))

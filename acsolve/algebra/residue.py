@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import partial
 from math import lcm
 from typing import Any
 
@@ -82,7 +83,7 @@ class Expansion:
 
 def exact_ratio(top: Sequence[Fraction], bottom: Sequence[Fraction]) -> Ratio:
     """A ratio with rational coefficients, by rising power; the bottom's last is not zero."""
-    from flint import arb, fmpz_poly
+    from flint import fmpz_poly
 
     common = lcm(*(value.denominator for value in (*top, *bottom)))
     first, second = ([int(value * common) for value in part] for part in (top, bottom))
@@ -91,13 +92,19 @@ def exact_ratio(top: Sequence[Fraction], bottom: Sequence[Fraction]) -> Ratio:
     for factor, multiplicity in fmpz_poly(second[zeros:]).factor_squarefree()[1]:
         factors += _split(factor, int(multiplicity))
     return Ratio(
-        numerator=lambda: [arb(value) for value in first],
-        denominator=lambda: [arb(value) for value in second],
+        numerator=partial(_balls, tuple(first)),
+        denominator=partial(_balls, tuple(second)),
         zeros=zeros,
         factors=tuple(factors),
         degrees=(degree(first), len(second) - 1),
         lowest=next((power for power, value in enumerate(first) if value), 0),
     )
+
+
+def _balls(values: Sequence[int]) -> list[Any]:
+    from flint import arb
+
+    return [arb(value) for value in values]
 
 
 def degree(values: Sequence[int | Fraction]) -> int:

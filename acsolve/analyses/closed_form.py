@@ -25,6 +25,7 @@ from acsolve.equations.evaluate import (
 from acsolve.equations.exact import Basis, Generator
 from acsolve.equations.naming import safe_names
 from acsolve.equations.write import Spelling, polynomial_text
+from acsolve.shown import Shown
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -55,7 +56,7 @@ class Origin:
 
 
 @dataclass(frozen=True, slots=True, eq=False, repr=False)
-class ClosedForm:
+class ClosedForm(Shown):
     """numerator/denominator, exact, common factors removed.
 
     Coefficients are integers over the symbols; the denominator's lowest power of s has a

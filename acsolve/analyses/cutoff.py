@@ -16,6 +16,7 @@ from acsolve.analyses.magnitude import Exact, Magnitude, ReferenceName, magnitud
 from acsolve.analyses.passband import FrequencyBand, bands
 from acsolve.codes import Code
 from acsolve.errors import AnalysisError, Diagnostic
+from acsolve.shown import Shown
 
 HALF_POWER_DB = 10 * log10(0.5)
 _BITS = 256  # leaves the doubles that are shown right to the last place
@@ -108,7 +109,7 @@ class Touch:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class CutoffAnswer:
+class CutoffAnswer(Shown):
     """All crossings of one level, in rising order, with what is proven about them.
 
     `complete` is True where it is proven that none is missing. `remarks` say in words

@@ -32,12 +32,13 @@ from acsolve.equations.naming import safe_names
 from acsolve.equations.nested import PRIME, Step, nested
 from acsolve.equations.write import Spelling, expression_text
 from acsolve.errors import Diagnostic, EquationError
+from acsolve.shown import Shown
 
 _NARROW = 6  # columns open at once up to which branch currents read best (a ladder has 3)
 
 
 @dataclass(frozen=True, slots=True, eq=False, repr=False)
-class NestedForm:
+class NestedForm(Shown):
     """An answer as steps, each over the parts, s and earlier steps, and a result over them.
 
     Exact like the expanded form, of a size that grows with the elimination's work.

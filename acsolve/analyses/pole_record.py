@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from math import ceil, inf, log2
 from typing import Any
 
-from acsolve.algebra.factors import factors
+from acsolve.algebra.factors import factors, whole_text
 from acsolve.algebra.ring import Polynomial, univariate
 from acsolve.algebra.roots import (
     LARGEST_CERTIFIED,
@@ -163,7 +163,7 @@ def root_table(
         return None
     content, split = factors(polynomial)
     spelling = whole.spelled(safe=safe)
-    listed = [Factor(str(content), 0, 1)] if content != 1 or not split else []
+    listed = [Factor(whole_text(content), 0, 1)] if content != 1 or not split else []
     found: list[RootRecord] = []
     for factor, multiplicity in split:
         coefficients = whole.by_power(factor)

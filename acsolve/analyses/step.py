@@ -27,6 +27,7 @@ from acsolve.analyses.time_check import disagreement
 from acsolve.analyses.time_formula import TimeFormulas, time_formulas
 from acsolve.codes import Code
 from acsolve.errors import Diagnostic, EquationError
+from acsolve.shown import Shown
 
 POINTS = 501
 BAND = Fraction(1, 50)
@@ -47,7 +48,7 @@ class Mode:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class StepAnswer:
+class StepAnswer(Shown):
     """A response in time with its figures; arrays are read-only.
 
     seconds, value : times and the response there (just after 0 at 0), in SI units; None where

@@ -24,6 +24,7 @@ from acsolve.equations.result import Solution, Status
 from acsolve.equations.solver import Ports, Solver, prepare
 from acsolve.errors import AnalysisError, Diagnostic, EquationError
 from acsolve.memory import nothing_collected
+from acsolve.shown import Shown
 
 Array = NDArray[Any]
 
@@ -50,7 +51,7 @@ class Placement:
 
 
 @dataclass(frozen=True, slots=True, eq=False)
-class Sweep:
+class Sweep(Shown):
     """A response over frequency; all arrays are read-only and of the same shape.
 
     hertz : in the order asked for.
@@ -157,18 +158,14 @@ def solver_for(
         return _prepared(netlist, ask, hertz, targets)
 
 
-def _prepared(
-    netlist: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] | None
-) -> Solver:
+def _prepared(netlist: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] | None) -> Solver:
     short = condensed(netlist, _asked_about(ask, targets))
     values = float_values(short)
     system = ask.system(short, branch_for=lambda part: takes_branch(values, part))
     if targets is None:
         refuse_unreferenced(system, ask)
     observed = (
-        ask.all_observed(system)
-        if targets is None
-        else [system.voltage(pair) for pair in targets]
+        ask.all_observed(system) if targets is None else [system.voltage(pair) for pair in targets]
     )
     rows, parts = chains(short), measured(short)
     refuse_outside(parts, hertz)

@@ -25,6 +25,7 @@ from acsolve.equations.exact import (
 )
 from acsolve.equations.system import Functional
 from acsolve.errors import Diagnostic, EquationError
+from acsolve.shown import Shown
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -186,7 +187,7 @@ def _no_answer(ask: Ask, *, singular: bool) -> EquationError:
 
 
 @dataclass(frozen=True, slots=True, eq=False)
-class TransferAnswer:
+class TransferAnswer(Shown):
     """A checked closed form with what a reader asks of it next."""
 
     form: ClosedForm | NestedForm

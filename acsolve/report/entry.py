@@ -35,6 +35,7 @@ Kind = Literal[
     "step",
     "two-port",
     "draw",
+    "note",
 ]
 
 

@@ -36,10 +36,9 @@ def _table_rows(label: str, table: RootTable | None, form: ClosedForm) -> list[t
         return []
     words = [text for item in table.roots if (text := _words(item, form))]
     words += [
-        f"{item.degree} roots of {for_people(item.text, form)}"
+        f"{item.degree} roots of {_polynomial(item.text, form)}"
         for item in table.factors
         if item.degree > 2 and all(root.value is None for root in table.roots)
-        if len(item.text) <= _LONGEST
     ]
     shown = words[:_SHOWN] or ["none"]
     if len(words) > _SHOWN:
@@ -47,6 +46,13 @@ def _table_rows(label: str, table: RootTable | None, form: ClosedForm) -> list[t
     if not table.certified:
         shown.append("eigenvalues, not certified; --json gives their estimated errors")
     return [(label if place == 0 else "", text) for place, text in enumerate(shown)]
+
+
+def _polynomial(text: str, form: ClosedForm) -> str:
+    """A polynomial whose roots have no closed form here."""
+    if len(text) > _LONGEST:
+        return "a long polynomial over the symbols, see --json"
+    return for_people(text, form)
 
 
 def _words(item: RootRecord, form: ClosedForm) -> str | None:

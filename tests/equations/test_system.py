@@ -6,8 +6,8 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from acsolve.analyses.question import transfer_ask
-from acsolve.circuit.expression import ZERO
 from acsolve.circuit.cascade import CASCADE
+from acsolve.circuit.expression import ZERO
 from acsolve.circuit.kind import KINDS
 from acsolve.equations.stamp import STAMPS
 from acsolve.equations.system import DRIVE, SHORT, assemble

@@ -29,7 +29,9 @@ def work(options: Options) -> int:
 
     def answer(item: Asked) -> Sequence[Entry]:
         paths = paths_of(item.path, members)
-        found = sweeps_of(paths, options.at or _band(item, paths, options), placed_for(options, circuit))
+        found = sweeps_of(
+            paths, options.at or _band(item, paths, options), placed_for(options, circuit)
+        )
         return [
             Entry(
                 kind="sweep",

@@ -1,0 +1,1 @@
+"""The design note: one document from the answers about a circuit."""

@@ -1,0 +1,65 @@
+"""From the facts of a note to its document: one builder for each section, in a table."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from acsolve.report.entry import question_text
+from acsolve.report.note.facts import Chapter, Facts
+from acsolve.report.note.model import Block, Document, Section, say
+from acsolve.report.note.sections import (
+    assumptions,
+    closing,
+    derivation,
+    loading,
+    opening,
+    parts,
+    response,
+    result,
+    times,
+    two_port,
+)
+
+#: The parts of a chapter in the order in which a reviewer reads them.
+CHAPTER: tuple[Callable[[Chapter], Section | None], ...] = (
+    derivation.derivation,
+    result.result,
+    two_port.two_port,
+    result.limits,
+    result.roots,
+    loading.loading,
+    response.response,
+    times.step,
+    response.numbers,
+)
+_BEFORE: tuple[Callable[[Facts], Section | None], ...] = (
+    opening.purpose,
+    opening.schematic,
+    parts.parts,
+    assumptions.assumptions,
+)
+_AFTER = (closing.checks, closing.origin)
+
+
+def build(facts: Facts) -> Document:
+    """The document of a note."""
+    sections: list[Section] = [found for make in _BEFORE if (found := make(facts)) is not None]
+    for chapter in facts.chapters:
+        sections += _chapter(chapter)
+    sections += [make(facts) for make in _AFTER]
+    variant = "" if facts.variant is None else f", variant “{facts.variant}”"
+    return Document(
+        title=facts.title,
+        subtitle=f"Design note{variant}",
+        date=facts.date,
+        sections=tuple(sections),
+    )
+
+
+def _chapter(chapter: Chapter) -> list[Section]:
+    words = question_text(chapter.ask)
+    inner = [found for make in CHAPTER if (found := make(chapter)) is not None]
+    blocks: tuple[Block, ...] = ()
+    if not inner:
+        blocks = (say("There is no answer; the reasons stand with the checks."),)
+    return [Section(title=f"{words[0].upper()}{words[1:]}", blocks=blocks), *inner]

@@ -1,0 +1,1 @@
+"""Formulas as trees, read from this program's own spelling, written as MathML and TeX."""

@@ -1,0 +1,1 @@
+"""Pictures as strokes and labels, written as SVG and as PDF operators inside LaTeX."""

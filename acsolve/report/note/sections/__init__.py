@@ -1,0 +1,1 @@
+"""The sections of the note, one file each: answers in, blocks of the document out."""
