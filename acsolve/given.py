@@ -212,9 +212,18 @@ def dimension_of(name: str, netlist: Netlist) -> Dimension | None:
 
 
 def _unknown(name: str, known: Iterable[str]) -> AnalysisError:
-    near = get_close_matches(name, sorted(known), n=1)
-    hint = f"Did you mean {near[0]}?" if near else "Name a part, an attribute or a quantity."
+    names = sorted(known)
+    near = [item for item in names if item.casefold() == name.casefold()]
+    near = near or get_close_matches(name, names, n=1)
+    hint = "Name a part, an attribute or a quantity."
+    if near:
+        hint = f"Did you mean {near[0]}?"
+    elif 0 < len(names) <= _NAMES_SHOWN:
+        hint = f"There are {', '.join(names)}."
     return refuse("question.unknown-name", f"there is nothing named {name} in this circuit", hint)
+
+
+_NAMES_SHOWN = 12  # names that a hint lists
 
 
 def level_of(given: Any) -> CutoffLevel:

@@ -95,7 +95,7 @@ def explicit(frequencies: list[Fraction]) -> NDArray[np.float64]:
             raise _refuse(
                 "sweep.band",
                 f"a frequency is negative: {_hertz(item)}",
-                "Frequencies start at 0 Hz.",
+                "Frequencies start at 0 Hz; a band is written 10Hz..100kHz, with two dots.",
             )
     return np.array([float(item) for item in frequencies])
 

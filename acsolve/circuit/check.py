@@ -164,6 +164,8 @@ def _dangling(
         if part.kind in _OPEN_ENDS or (place < 2 and _senses_voltage(part)):
             continue
         alike = [name for name in spellings[node.casefold().replace("_", "")] if name != node]
+        if node.casefold() in _MEANT_AS_GROUND:
+            alike = [GROUND]
         yield finding(
             "graph.dangling",
             f"nothing but {part.name} is connected to {node}",
@@ -171,6 +173,9 @@ def _dangling(
             hint=f"Did you mean {alike[0]}?" if alike else "Connect the node, or ask about it.",
             severity=severity,
         )
+
+
+_MEANT_AS_GROUND = ("gnd", "ground", "earth", "0")  # the format's word is gnd, spelled so
 
 
 def check_question(

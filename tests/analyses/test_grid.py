@@ -126,7 +126,7 @@ def test_explicit_frequencies_stay_as_they_are():
         ),
         (
             lambda: explicit([Fraction(-1)]),
-            "sweep.band: a frequency is negative: -1 Hz\n  Frequencies start at 0 Hz.",
+            "sweep.band: a frequency is negative: -1 Hz\n  Frequencies start at 0 Hz; a band is written 10Hz..100kHz, with two dots.",
         ),
     ],
 )

@@ -48,7 +48,7 @@ def _write(page: str) -> None:
 
 command = make_command(
     "note",
-    "The design note: the file's ask lines answered in one document that explains itself.\n"
+    "The design note: the file's ask lines answered in one document.\n"
     "HTML goes into a pipe; --save writes html, md, tex, pdf or json.",
     work,
     ("date", *VALUES, *OUTPUT),
