@@ -533,10 +533,10 @@ class Circuit:
         Examples
         --------
         >>> import acsolve
-        >>> circuit = acsolve.parse('title "Lag"; in -- R1 -- out; out -- C1 -- gnd')
+        >>> circuit = acsolve.parse("in -- R1 -- out -- C1 -- gnd")
         >>> note = circuit.note()
         >>> note, note.html()[:15]
-        (Note('Lag': 13 sections), '<!DOCTYPE html>')
+        (Note('Untitled circuit': 11 sections), '<!DOCTYPE html>')
         """
         from acsolve import __version__
         from acsolve.report.note.note import make_note
