@@ -209,7 +209,7 @@ class Circuit:
         Examples
         --------
         >>> import acsolve
-        >>> circuit = acsolve.parse("in -- R1 -- out; out -- C1 -- gnd")
+        >>> circuit = acsolve.parse("in -- R1 -- out -- C1 -- gnd")
         >>> (a, b), (c, d) = circuit.two_port("in", "out").abcd
         >>> print(a, b, c, d, sep=", ")
         1 + R1*C1*s, R1, C1*s, 1
