@@ -159,7 +159,17 @@ def solver_for(
 
 
 def _prepared(netlist: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] | None) -> Solver:
+    """With rows of copies put away; written out where a copy has no chain matrix."""
     short = condensed(netlist, _asked_about(ask, targets))
+    if short is netlist:
+        return _as_it_stands(netlist, ask, hertz, targets)
+    try:
+        return _as_it_stands(short, ask, hertz, targets)
+    except EquationError:  # nothing gets through a copy forwards, or the network itself is at fault
+        return _as_it_stands(netlist, ask, hertz, targets)
+
+
+def _as_it_stands(short: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] | None) -> Solver:
     values = float_values(short)
     system = ask.system(short, branch_for=lambda part: takes_branch(values, part))
     if targets is None:

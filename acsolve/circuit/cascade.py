@@ -17,7 +17,8 @@ from acsolve.circuit.value import Value
 
 CASCADE = "cascade"  # the kind of the part that stands for a row; the format has no such kind
 _FEWEST = 32  # copies that are worth a two-port (empirical)
-_SOURCES = ("voltage_source", "current_source")
+#: Sources act on their own; measured parts get their data by their own names, copy by copy.
+_WRITTEN_OUT = ("voltage_source", "current_source", "measured")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -85,9 +86,9 @@ def _equal(netlist: Netlist, item: Cascade) -> bool:
 
 
 def _is_two_port(netlist: Netlist, item: Cascade) -> bool:
-    """Whether a copy conducts between its pins and `gnd`, and holds no source."""
+    """Whether a copy conducts between its pins and `gnd`, and its parts alone tell what it is."""
     copy = Netlist(parts=tuple(_copy(netlist, item, 1)), quantities=netlist.quantities)
-    if any(part.kind in _SOURCES for part in copy.parts) or GROUND not in copy.nodes():
+    if any(part.kind in _WRITTEN_OUT for part in copy.parts) or GROUND not in copy.nodes():
         return False
     groups = reference_groups(copy)
     return all(

@@ -185,3 +185,27 @@ def test_powers_of_any_matrix(items, count):
         assert abs(slope[place][0] * 2.0 ** float(exponent[0]) - whole[i, k + 2]) <= (
             1e-13 * count * scale[i, k + 2]
         )
+
+
+def test_a_row_that_passes_nothing_forwards_is_written_out():
+    """Buffers that point backwards have no chain matrix; the other direction has its answer."""
+    block = (
+        "U1 : opamp(plus = m, minus = a, out = a)\n m -- C -- gnd\n m -- R -- b\n"
+        "b -- G1 -- gnd\n R = 1 kohm\n C = 100 pF\n G1 : resistor\n G1 = 1 kohm"
+    )
+    whole = circuit(block, 40)
+    assert whole.netlist.cascades
+    hertz = np.geomspace(1e3, 1e6, 5)
+    path = whole.path("far", "src")
+    there = written_out(whole).path("far", "src").response(hertz)
+    np.testing.assert_allclose(path.response(hertz), there, rtol=1e-12)
+    assert np.all(there != 0)
+
+
+def test_measured_parts_keep_a_row_written_out():
+    """Their data belong to each copy by its name, and need not be reciprocal."""
+    text = (
+        'block section(a, b)\n a -- X1 : measured(file = "cable.s2p") -- b\n b -- R -- gnd\n'
+        " R = 1 kohm\nend\nin -- N1 : 40 * section -- out\n"
+    )
+    assert acsolve.parse(text).netlist.cascades == ()
