@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from bisect import bisect_right
 from dataclasses import dataclass, field
+from typing import NamedTuple
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,13 +36,18 @@ class Source:
         return self.text[start:end].rstrip("\r")
 
 
-@dataclass(frozen=True, slots=True)
-class Span:
-    """The characters `start` to `end` (exclusive) of a source."""
+class Span(NamedTuple):
+    """The characters `start` to `end` (exclusive) of a source.
 
-    source: Source = field(repr=False)
+    A named tuple, since large files make a million of them: a third of the time of a class.
+    """
+
+    source: Source
     start: int
     end: int
+
+    def __repr__(self) -> str:
+        return f"Span(start={self.start}, end={self.end})"
 
     @property
     def line(self) -> int:

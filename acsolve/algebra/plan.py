@@ -10,7 +10,7 @@ holds no number of the matrix and serves every field.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from heapq import heapify, heappop, heappush
 from operator import mul, sub, truediv
@@ -162,11 +162,12 @@ class _Elimination:
         self.heap = [(len(self.lines[kind][at]), kind, at) for kind in (0, 1) for at in range(size)]
         heapify(self.heap)
         self.steps: list[Step] = []
+        self.touched: tuple[int, int] | None = None  # row and column beside the last pivot
 
     def plan(self) -> Plan:
         """Eliminate until nothing is left or nothing can be a pivot."""
         for threshold in (_THRESHOLD, 0.0):
-            while (place := self._choose(threshold)) is not None:
+            while (place := self._next(threshold) or self._choose(threshold)) is not None:
                 self._eliminate(*place)
             self._all_again()
         return Plan(
@@ -185,6 +186,24 @@ class _Elimination:
             if self.active[kind][at]
         ]
         heapify(self.heap)
+
+    def _next(self, threshold: float) -> tuple[int, int] | None:
+        """The place beside the last pivot, where nothing can be cheaper: along a ladder.
+
+        Its row and column are in the heap again only if it is not taken, which spares most of
+        the heap's work in long networks.
+        """
+        if self.touched is None:
+            return None
+        row, column = self.touched
+        line, across = self.lines[1][row], self.lines[0][column]
+        if len(line) <= 2 >= len(across) and (not self.heap or self.heap[0][0] > 1):
+            here = self._largest(line) if len(line) > 1 else None
+            if self._relative_size(line[column], here, across) > threshold:
+                return self.touched
+        self._put_back((row,), (column,))
+        self.touched = None
+        return None
 
     def _choose(self, threshold: float) -> tuple[int, int] | None:
         """The next pivot, or None. A line without one is set aside until it changes."""
@@ -266,10 +285,13 @@ class _Elimination:
             self.arrays.update(pivot, below, right, targets, self.slots)
         for other_row in pivot_column:
             del by_row[other_row][column]
-            heappush(self.heap, (len(by_row[other_row]), 1, other_row))
         for other_column in pivot_row:
             del by_column[other_column][row]
-            heappush(self.heap, (len(by_column[other_column]), 0, other_column))
+        if len(pivot_row) == len(pivot_column) == 1:
+            self.touched = other_row, other_column
+        else:
+            self.touched = None
+            self._put_back(pivot_column, pivot_row)
         self.active[1][row] = self.active[0][column] = False
         self.steps.append(
             Step(
@@ -283,6 +305,12 @@ class _Elimination:
                 tuple(targets),
             )
         )
+
+    def _put_back(self, rows: Iterable[int], columns: Iterable[int]) -> None:
+        """Lines that have changed, with their new counts."""
+        for kind, lines in ((1, rows), (0, columns)):
+            for at in lines:
+                heappush(self.heap, (len(self.lines[kind][at]), kind, at))
 
     def _targets(self, pivot_row: dict[int, int], pivot_column: dict[int, int]) -> list[int]:
         """Slots of the updates, row by row; places without an entry get one."""

@@ -14,7 +14,7 @@ from acsolve.analyses.closed_form import ClosedForm, evaluate_polynomial, genera
 from acsolve.analyses.question import Ask
 from acsolve.circuit.netlist import Netlist, bindings
 from acsolve.equations.evaluate import Evaluator
-from acsolve.equations.numeric import Numbers, float_values, numbers, takes_branch
+from acsolve.equations.numeric import Numbers, ball_values, float_values, numbers, takes_branch
 from acsolve.equations.series import SeriesArithmetic, coefficients, frequency, near_zero, terms
 from acsolve.equations.solver import prepare
 from acsolve.equations.system import Functional, System
@@ -128,7 +128,14 @@ def solved_response(netlist: Netlist, ask: Ask, hertz: Any) -> SolvedResponse:
     values = float_values(netlist)
     system = ask.system(netlist, branch_for=lambda part: takes_branch(values, part))
     driven, observed = ask.driven(system), ask.observed(system)
-    solver = prepare(netlist, system, observed=[observed], driven=driven, hertz=hertz)
+    solver = prepare(
+        system,
+        observed=[observed],
+        driven=driven,
+        hertz=hertz,
+        values=values,
+        balls=lambda: ball_values(netlist),
+    )
     places = tuple(zip(solver.numbers.rows, solver.numbers.columns, strict=True))
     return SolvedResponse(netlist, system, driven, observed, solver.plan, places)
 

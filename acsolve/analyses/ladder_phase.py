@@ -245,6 +245,10 @@ class _Note:
         if node == other == self.part.nodes[0]:
             self.admittance = add(self.admittance, factor)
 
+    def admit(self, pair: tuple[str, ...], admittance: Expression) -> None:
+        del pair
+        self.admittance = add(self.admittance, admittance)
+
     def voltage(self, law: int, node: str, factor: Expression) -> None:
         del law
         if node == self.part.nodes[0]:

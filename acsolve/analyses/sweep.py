@@ -18,10 +18,10 @@ from acsolve.circuit.netlist import Netlist, Pair
 from acsolve.equations.chain import chains
 from acsolve.equations.chain_balls import ball_chains
 from acsolve.equations.measured import MeasuredBalls, has_measured, measured, refuse_outside
-from acsolve.equations.numeric import float_values, takes_branch
+from acsolve.equations.numeric import TwoPort, ball_values, float_values, takes_branch
 from acsolve.equations.precise import Local
 from acsolve.equations.result import Solution, Status
-from acsolve.equations.solver import Ports, Solver, prepare
+from acsolve.equations.solver import Solver, prepare
 from acsolve.errors import AnalysisError, Diagnostic, EquationError
 from acsolve.memory import nothing_collected
 from acsolve.shown import Shown
@@ -170,25 +170,24 @@ def _prepared(netlist: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] 
 
 
 def _as_it_stands(short: Netlist, ask: Ask, hertz: Array, targets: Sequence[Pair] | None) -> Solver:
-    values = float_values(short)
+    rows, parts = chains(short), measured(short)
+    values = float_values(short, ports={**rows, **parts})
     system = ask.system(short, branch_for=lambda part: takes_branch(values, part))
     if targets is None:
         refuse_unreferenced(system, ask)
     observed = (
         ask.all_observed(system) if targets is None else [system.voltage(pair) for pair in targets]
     )
-    rows, parts = chains(short), measured(short)
     refuse_outside(parts, hertz)
+    in_balls: dict[str, TwoPort] = {**ball_chains(rows)}
+    in_balls.update({name: MeasuredBalls(port) for name, port in parts.items()})
     return prepare(
-        short,
         system,
         observed=observed,
         driven=ask.driven(system),
         hertz=hertz,
-        ports=Ports(
-            {**rows, **parts},
-            {**ball_chains(rows), **{name: MeasuredBalls(port) for name, port in parts.items()}},
-        ),
+        values=values,
+        balls=lambda: ball_values(short, ports=in_balls),
     )
 
 

@@ -136,7 +136,9 @@ def add(left: Expression, right: Expression) -> Expression:
 
 def negate(value: Expression) -> Expression:
     """-value."""
-    return multiply(MINUS_ONE, value)
+    if isinstance(value, Number | Product):
+        return multiply(MINUS_ONE, value)
+    return Product(MINUS_ONE, value)
 
 
 def subtract(left: Expression, right: Expression) -> Expression:

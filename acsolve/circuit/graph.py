@@ -30,6 +30,9 @@ def natural_key(name: str) -> NaturalKey:
     Texts and numbers alternate, text first, so two keys always compare; the name itself
     decides between `R1` and `R01`.
     """
+    stem = name.rstrip("0123456789")
+    if len(stem) < len(name) and stem.isalpha():  # as nearly every name in a large network
+        return (stem, int(name[len(stem) :]), ""), name
     pieces = _DIGITS.split(name)
     return tuple(int(item) if at % 2 else item for at, item in enumerate(pieces)), name
 

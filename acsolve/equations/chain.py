@@ -15,6 +15,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from functools import partial
 from math import pi
 from typing import Any, NamedTuple, TypeAlias
 
@@ -25,7 +26,7 @@ from acsolve.algebra.scaled import Scaled, normal, power_of_two
 from acsolve.algebra.two_by_two import Matrix, product, times, total
 from acsolve.circuit.netlist import GROUND, Netlist, Pair, Part
 from acsolve.circuit.value import Quantity
-from acsolve.equations.numeric import Hybrid, float_values, takes_branch
+from acsolve.equations.numeric import Hybrid, ball_values, float_values, takes_branch
 from acsolve.equations.result import Solution, Status
 from acsolve.equations.solver import Solver, prepare
 from acsolve.equations.system import DRIVE, SHORT, Functional, System, assemble
@@ -162,7 +163,12 @@ class Chain:
             asked.append(self.copy.backwards())
         return tuple(
             prepare(
-                item.netlist, item.system, observed=item.observed, driven=item.driven, hertz=hertz
+                item.system,
+                observed=item.observed,
+                driven=item.driven,
+                hertz=hertz,
+                values=float_values(item.netlist),
+                balls=partial(ball_values, item.netlist),
             )
             for item in asked
         )

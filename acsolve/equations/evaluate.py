@@ -257,8 +257,10 @@ class Evaluator:
         known = self._known.get(name)
         if known is not None:
             return known
-        if isinstance(self._expression(name), Number):  # as nearly every value is
-            found = self._known[name] = self._number(name)
+        expression = self._expression(name)
+        if isinstance(expression, Number) and angle_name(name) not in self._values:
+            # as nearly every value is
+            found = self._known[name] = self._arithmetic.number(expression.value)
             return found
         for item in in_order(name, self._expression, self._known):
             self._known[item] = self._number(item)

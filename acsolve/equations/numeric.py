@@ -15,8 +15,12 @@ from math import isfinite
 from operator import add
 from typing import Any, Protocol, TypeAlias
 
+import numpy as np
+
 from acsolve.algebra.scaled import Scaled, Vector
 from acsolve.circuit.expression import (
+    MINUS_ONE,
+    ONE,
     Expression,
     Frequency,
     Name,
@@ -162,6 +166,21 @@ class Numbers:
         values = [entry.at(s) for entry in self.distinct]
         return [values[item] for item in self.which]
 
+    def table(self, s: Vector) -> Vector:
+        """The elements at a few s, shape (places, points): lines in s all at once."""
+        found = np.empty((len(self.distinct), len(s)), dtype=complex)
+        lines, coefficients = [], []
+        for at, entry in enumerate(self.distinct):
+            if isinstance(entry, PolynomialEntry) and len(entry.coefficients) <= 2:
+                lines.append(at)
+                coefficients.append((*entry.coefficients, 0.0)[:2])
+            else:
+                found[at] = entry.at(s)
+        if lines:
+            low, high = np.array(coefficients).T[:, :, None]
+            found[lines] = low + high * s
+        return found[list(self.which)]
+
     def slopes(self, s: Element) -> list[Element | None]:
         """The derivatives by s, by place; None where zero."""
         values = [entry.slope(s) for entry in self.distinct]
@@ -229,7 +248,7 @@ def numbers(
             if kept is None or (row, column) in kept:
                 table.put(row, column, _entry(expression, read, exact=table.exact))
     for column, factor in driven.items():
-        table.put(len(system.laws), column, PolynomialEntry((float(factor),)))
+        table.put(len(system.laws), column, (float(factor),))
     return table.closed(len(system.unknowns))
 
 
@@ -242,16 +261,14 @@ class _Table:
         self.distinct: list[Entry] = []
         self.known: dict[Any, int] = {}
 
-    def put(self, row: int, column: int, entry: Entry | None) -> None:
-        if entry is None:
+    def put(self, row: int, column: int, entry: Entry | tuple[Scalar, ...]) -> None:
+        """Take an entry, or the coefficients of one; none of these, and nothing stands there."""
+        if not entry:
             return
-        which = len(self.distinct)
-        if not self.exact:
-            # a tuple is found more quickly than an entry
-            key = entry.coefficients if isinstance(entry, PolynomialEntry) else entry
-            which = self.known.setdefault(key, which)
-        if which == len(self.distinct):
-            self.distinct.append(entry)
+        new = len(self.distinct)
+        which = new if self.exact else self.known.setdefault(entry, new)
+        if which == new:
+            self.distinct.append(PolynomialEntry(entry) if isinstance(entry, tuple) else entry)
         self.places.append((row, column, which))
 
     def closed(self, size: int) -> Numbers:
@@ -261,31 +278,37 @@ class _Table:
         return Numbers(size, rows, columns, tuple(self.distinct), which, starts)
 
 
+_UNREAD = object()
+
+
 class _Reader:
     """Coefficients of expressions in s; terms that entries share are read once."""
 
     def __init__(self, evaluate: Evaluator) -> None:
         self.evaluate = evaluate
-        self.known: dict[int, tuple[Scalar, ...] | None] = {}
+        self.one = evaluate(ONE)
+        self.known: dict[int, tuple[Scalar, ...] | object | None] = {}
 
     def __call__(self, expression: Expression) -> tuple[Scalar, ...] | None:
+        if type(expression) is Sum:  # each stands in one place only
+            return _added(self(expression.left), self(expression.right))
         key = id(expression)  # the system holds its expressions as long as this is used
-        if key in self.known:
-            return self.known[key]
-        match expression:
-            case Sum(left, right):
-                found = _added(self(left), self(right))
-            case Product(Frequency(), Name(name)):  # these two are nearly all there is
-                found = 0.0, self.evaluate.name(name)
-            case Quotient(Number() as top, Name(name)):
-                found = (self.evaluate(top) / self.evaluate.name(name),)
-            case Product(Number(value), right) if value == -1:
+        found = self.known.get(key, _UNREAD)
+        if found is _UNREAD:
+            found = self.known[key] = self._read(expression)
+        return found  # type: ignore[return-value]
+
+    def _read(self, expression: Expression) -> tuple[Scalar, ...] | None:
+        match expression:  # the first three are nearly all there is
+            case Product(left, right) if left is MINUS_ONE:
                 inner = self(right)
-                found = None if inner is None else tuple([-item for item in inner])
-            case _:
-                found = polynomial_in_s(expression, self.evaluate)
-        self.known[key] = found
-        return found
+                return None if inner is None else tuple([-item for item in inner])
+            case Product(Frequency(), Name(name)):
+                return 0.0, self.evaluate.name(name)
+            case Quotient(Number() as top, Name(name)):
+                above = self.one if top is ONE else self.evaluate(top)
+                return (above / self.evaluate.name(name),)
+        return polynomial_in_s(expression, self.evaluate)
 
 
 def _added(
@@ -298,8 +321,10 @@ def _added(
     return (*map(add, first, second), *first[len(second) :])
 
 
-def _entry(expression: Expression, read: _Reader, *, exact: bool) -> Entry | None:
-    """The entry, or None where floats say that it is zero at every s."""
+def _entry(
+    expression: Expression, read: _Reader, *, exact: bool
+) -> FunctionEntry | ElementEntry | tuple[Scalar, ...]:
+    """The entry, or its coefficients; none where floats say that it is zero at every s."""
     if isinstance(expression, PortElement):
         port = read.evaluate.ports.get(expression.block)
         if port is None:
@@ -312,12 +337,13 @@ def _entry(expression: Expression, read: _Reader, *, exact: bool) -> Entry | Non
     if coefficients is None:
         return FunctionEntry(expression, slope(expression), read.evaluate)
     if exact:
-        return PolynomialEntry(coefficients)
+        return coefficients
     while coefficients and coefficients[-1] == 0:
         coefficients = coefficients[:-1]
-    if not all(isfinite(abs(item)) for item in coefficients):
-        raise _not_finite(expression)
-    return PolynomialEntry(coefficients) if coefficients else None
+    for item in coefficients:
+        if not isfinite(abs(item)):
+            raise _not_finite(expression)
+    return coefficients
 
 
 def known_by_numbers(block: str) -> EquationError:

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
 from math import pi
-from typing import Any, NamedTuple
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,8 +15,8 @@ from acsolve.algebra.fronts import Fronts
 from acsolve.algebra.lu import needed_steps
 from acsolve.algebra.plan import Plan, plan_elimination
 from acsolve.algebra.route import Route, choose_route
-from acsolve.circuit.netlist import Netlist
-from acsolve.equations.numeric import Numbers, TwoPort, ball_values, float_values, numbers
+from acsolve.equations.evaluate import Evaluator
+from acsolve.equations.numeric import Numbers, numbers
 from acsolve.equations.precise import Local, Precise
 from acsolve.equations.replay import Replayed, replay, replay_quick, replay_scaled
 from acsolve.equations.result import Solution, Status, empty, finished
@@ -157,35 +157,26 @@ class Solver:
                 _keep_local(arrays, int(row), int(place), item)
 
 
-class Ports(NamedTuple):
-    """Two-ports that are known by their numbers, in doubles and in balls, by part."""
-
-    floats: Mapping[str, TwoPort]
-    balls: Mapping[str, TwoPort]
-
-
-NO_PORTS = Ports({}, {})
-
-
 def prepare(
-    netlist: Netlist,
     system: System,
     *,
     observed: Sequence[Functional],
     driven: Functional,
     hertz: Array,
-    ports: Ports = NO_PORTS,
+    values: Evaluator,
+    balls: Callable[[], Evaluator],
 ) -> Solver:
     """Evaluate the circuit's values, plan the elimination and choose how to run it.
 
     Parameters
     ----------
-    netlist, system : the circuit and its equations for the question.
+    system : the equations of the circuit for the question.
     observed : what is asked for, each a linear function of the unknowns.
     driven : what is set to 1.
     hertz : where the solver will be used; a few of these are the samples of the plan, and
         their number decides between single steps and dense blocks.
-    ports : the two-ports of the circuit that are known by their numbers.
+    values : the circuit's values in doubles.
+    balls : makes the same in balls, at the working precision of the moment.
 
     Raises
     ------
@@ -194,7 +185,7 @@ def prepare(
         determines some unknowns.
 
     """
-    entries = numbers(system, driven, float_values(netlist, ports=ports.floats))
+    entries = numbers(system, driven, values)
     hertz = np.asarray(hertz, dtype=float)
     plan = _plan(entries, _spread(hertz))
     if plan.undetermined:
@@ -206,7 +197,7 @@ def prepare(
     places = tuple(zip(entries.rows, entries.columns, strict=True))
     precise = Precise(
         plan,
-        lambda: numbers(system, driven, ball_values(netlist, ports=ports.balls), places=places),
+        lambda: numbers(system, driven, balls(), places=places),
         tuple(observed),
     )
     return Solver(entries, plan, tuple(observed), precise, route)
@@ -228,10 +219,7 @@ def _spread(hertz: Array) -> Array:
 def _plan(entries: Numbers, hertz: Array) -> Plan:
     s = 2j * pi * hertz
     with np.errstate(all="ignore"):  # a sample out of range only makes a poorer order
-        values = entries.at(s)
-        samples = np.zeros((len(values), len(s)), dtype=complex)
-        for row, value in zip(samples, values, strict=True):
-            row[:] = value
+        samples = entries.table(s)
     samples[~np.isfinite(samples)] = 0
     return plan_elimination(entries.rows, entries.columns, samples, size=entries.size)
 

@@ -52,6 +52,9 @@ class Board(Protocol):
     def conduct(self, node: str, other: str, factor: Expression) -> None:
         """Let factor · V(other) leave a node as a current."""
 
+    def admit(self, pair: tuple[str, ...], admittance: Expression) -> None:
+        """Let admittance · (V(first) - V(second)) flow from the first node to the second."""
+
     def branch(self, part: Part, suffix: str = "") -> int:
         """A new branch current of the part."""
 
@@ -124,16 +127,6 @@ def across(board: Board, law: int, pair: tuple[str, ...], factor: Expression = O
     board.voltage(law, second, negate(factor))
 
 
-def conductance(board: Board, pair: tuple[str, ...], admittance: Expression) -> None:
-    """A two-terminal admittance between two nodes."""
-    first, second = pair
-    minus = negate(admittance)
-    board.conduct(first, first, admittance)
-    board.conduct(first, second, minus)
-    board.conduct(second, second, admittance)
-    board.conduct(second, first, minus)
-
-
 def _series(
     board: Board, part: Part, nodes: tuple[str, ...], ratio: tuple[Expression, Expression]
 ) -> None:
@@ -150,7 +143,7 @@ def _resistor(board: Board, part: Part) -> None:
     resistance = _needed(part, "value")
     inductance = value(part, "series_inductance")
     if inductance is None and not board.wants_branch(part):
-        conductance(board, part.nodes, divide(ONE, resistance))
+        board.admit(part.nodes, divide(ONE, resistance))
         return
     if inductance is not None:
         resistance = add(resistance, multiply(S, inductance))
@@ -186,7 +179,7 @@ def _capacitor(board: Board, part: Part) -> None:
         omega = multiply(multiply(number(2), PI), _at(part, "quality"))
         extra = add(extra, divide(S, multiply(omega, quality)))
     if is_zero(extra):
-        conductance(board, part.nodes, susceptance)
+        board.admit(part.nodes, susceptance)
     else:
         _series(board, part, part.nodes, (add(ONE, extra), susceptance))
 
@@ -198,13 +191,13 @@ def _impedance(board: Board, part: Part) -> None:
 
 @_stamp("admittance")
 def _admittance(board: Board, part: Part) -> None:
-    conductance(board, part.nodes, _in_s(part, "value"))
+    board.admit(part.nodes, _in_s(part, "value"))
 
 
 @_stamp("constant_phase")
 def _constant_phase(board: Board, part: Part) -> None:
     admittance = multiply(_needed(part, "coefficient"), power(S, _needed(part, "exponent")))
-    conductance(board, part.nodes, admittance)
+    board.admit(part.nodes, admittance)
 
 
 @_stamp("voltage_source")
@@ -395,7 +388,7 @@ def _crystal(board: Board, part: Part) -> None:
             "shunt_capacitance",
         )
     )
-    conductance(board, part.nodes, multiply(S, shunt))
+    board.admit(part.nodes, multiply(S, shunt))
     susceptance = multiply(S, capacitance)
     arm = add(resistance, multiply(S, inductance))
     _series(board, part, part.nodes, (add(ONE, multiply(susceptance, arm)), susceptance))

@@ -109,7 +109,8 @@ class _Board:
     positions: dict[str, int] = field(default_factory=dict)
     meanings: list[str] = field(default_factory=list)
     rows: list[dict[int, Expression]] = field(default_factory=list)
-    balances: dict[str, int] = field(default_factory=dict)
+    balances: dict[str, int] = field(default_factory=dict)  # node -> its law
+    voltages: dict[str, int] = field(default_factory=dict)  # node -> its unknown
 
     def unknown(self, kind: UnknownKind, name: str) -> int:
         item = Unknown(kind, name)
@@ -125,7 +126,7 @@ class _Board:
     def node(self, name: str) -> None:
         if self.groups.reference(name) == name:
             return
-        self.unknown("voltage", name)
+        self.voltages[name] = self.unknown("voltage", name)
         self.balances[name] = self.equation(f"current balance at {name}")
 
     def _put(self, row: int, column: int, factor: Expression) -> None:
@@ -133,7 +134,7 @@ class _Board:
         entries[column] = add(entries[column], factor) if column in entries else factor
 
     def voltage(self, law: int, node: str, factor: Expression) -> None:
-        column = self.positions.get(f"V({node})")
+        column = self.voltages.get(node)
         if column is not None:
             self._put(law, column, factor)
 
@@ -149,6 +150,19 @@ class _Board:
         row = self.balances.get(node)
         if row is not None:
             self.voltage(row, other, factor)
+
+    def admit(self, pair: tuple[str, ...], admittance: Expression) -> None:
+        here, there = (self.balances.get(node) for node in pair)
+        if pair[0] == pair[1]:
+            return  # both ends at one potential
+        if here is not None:
+            self._put(here, self.voltages[pair[0]], admittance)
+        if there is not None:
+            self._put(there, self.voltages[pair[1]], admittance)
+        if here is not None and there is not None:
+            minus = negate(admittance)
+            self._put(here, self.voltages[pair[1]], minus)
+            self._put(there, self.voltages[pair[0]], minus)
 
     def branch(self, part: Part, suffix: str = "") -> int:
         return self.unknown("current", part.name + suffix)

@@ -53,7 +53,7 @@ def _is_fitted(draft: Draft, book: Book) -> bool:
     """Whether a block is written out; it may be left out, but has no value."""
     scope = draft.scope
     given = scope.values.get(draft.local) or scope.arguments.get(draft.local)
-    value = given.text if given is not None else draft.value
+    value = given.text if given is not None else draft.own_value
     if value is None:
         return True
     if value.formula is not None:
@@ -128,7 +128,7 @@ def _copies(draft: Draft, block: Block, book: Book, walker: Walker) -> None:
     if count > 1 and not scope.prefix:
         _note_row(shared, book)
     for number in range(1, count + 1):
-        book.step(kind.span)
+        book.step(kind)
         child = _copy(shared, number, book)
         walker.enter(block.body, child)
         settle(child, book, walker)

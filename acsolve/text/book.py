@@ -7,11 +7,11 @@ from dataclasses import dataclass, field
 from typing import NamedTuple
 
 from acsolve.circuit.cascade import Row
-from acsolve.source import Source, Span
+from acsolve.source import Source
 from acsolve.text import limits
 from acsolve.text.problems import Problems
 from acsolve.text.scope import Draft, Given, Named, Scope, Turns
-from acsolve.text.tree import Block, Couple, Item, Path, ValueText
+from acsolve.text.tree import Block, Couple, Item, KindText, Nested, Path, ValueText
 
 
 class Coupled(NamedTuple):
@@ -76,14 +76,14 @@ class Book:
     asked: set[str] = field(default_factory=set)  # nodes that questions, ports and joins name
     steps: int = 0
 
-    def step(self, span: Span, count: int = 1) -> None:
+    def step(self, statement: Nested | KindText) -> None:
         """Count statements as they are written out; refuse a text that grows too large."""
-        self.steps += count
+        self.steps += 1
         if self.steps > limits.EXPANSION:
             self.problems.refuse(
                 "limit.expansion",
                 f"written out, this text has more than {limits.EXPANSION:,} statements",
-                span,
+                statement.span,
                 hint="Use fewer copies, or smaller ranges.",
             )
 

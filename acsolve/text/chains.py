@@ -9,9 +9,9 @@ from typing import TYPE_CHECKING
 from acsolve.errors import Label
 from acsolve.source import Span
 from acsolve.text.book import Book
-from acsolve.text.scope import Scope, Turns
+from acsolve.text.scope import RESERVED, Draft, Scope, Turns
 from acsolve.text.spell import node_name, spelled
-from acsolve.text.tree import Arm, Chain, Fitted, Item, Numbered, Path
+from acsolve.text.tree import Arm, Chain, Fitted, Item, Numbered, Path, Placed
 
 if TYPE_CHECKING:
     from acsolve.text.walk import Walker
@@ -40,6 +40,20 @@ class Chains:
                 self._arm(item, left, right, scope, turns)
         if len(names) > 2:
             self._suspect(items, scope)
+
+    def walk_placed(self, placed: Placed, scope: Scope, turns: Turns) -> None:
+        """Place the one part of a chain, taken apart only where its names are not plain news."""
+        left, name, right = placed.names()
+        if turns or name in scope.drafts or name in RESERVED or not name[0].isalpha():
+            self.walk(placed.whole(), scope, turns)
+            return
+        span, nodes = placed.part, scope.nodes
+        if left not in nodes:
+            nodes[left] = placed.left
+        if right not in nodes:
+            nodes[right] = placed.right
+        ends = (scope.node(left), scope.node(right))
+        scope.drafts[name] = Draft(name, scope, span, turns, ends, span, value=placed)
 
     # ------------------------------------------------------------ shape
 

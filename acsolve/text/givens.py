@@ -12,10 +12,11 @@ from acsolve.errors import Label
 from acsolve.source import Span
 from acsolve.text.book import Book
 from acsolve.text.formula import Formulas, Made, UnreadableError
+from acsolve.text.literals import Fault, meaning
 from acsolve.text.measure import DEGREE, HERTZ, PER_KELVIN, PLAIN, Measure, Solver, sign, words
 from acsolve.text.references import need_of
 from acsolve.text.scope import Scope, Turns
-from acsolve.text.tree import Amount, Formula, Literal, ToleranceText, ValueText
+from acsolve.text.tree import Amount, Formula, Literal, Placed, ToleranceText, ValueText
 from acsolve.text.words import article
 
 _HUNDREDTH = Fraction(1, 100)
@@ -96,6 +97,18 @@ class Givens:
             )
             return None
         return Value(expression=made.expression, tolerance=tolerance, at_hertz=at, span=text.span)
+
+    def literal(self, placed: Placed, need: Measure | None, scope: Scope) -> Value | None:
+        """A literal of the unit that is needed; None where it is not as plain as that."""
+        found = meaning(*placed.literal())
+        if isinstance(found, Fault) or found.radian or found.kelvin:
+            return None
+        if found.measure is not None and found.measure is not need:
+            return None
+        word = found.word
+        if word is not None and (word in scope.drafts or self._book.quantity(word, scope)):
+            return None
+        return Value(expression=found.expression, span=placed.value_span())
 
     def angle(self, text: ValueText, scope: Scope, turns: Turns) -> Value | None:
         """The angle of an amplitude, in degrees; None where there is none or it is wrong."""

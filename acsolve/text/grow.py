@@ -137,13 +137,44 @@ def _quick_valued(template: Template) -> Recipe:
 
 
 def _quick_chain(template: Template) -> Recipe:
-    items = [recipe(part) for part in template.parts if isinstance(part, Template)]
+    parts = [part for part in template.parts if isinstance(part, Template)]
+    items = [recipe(part) for part in parts]
     first, last = template.first, template.last
 
     def chain(tokens: Tokens) -> tree.Chain:
         return tree.Chain(tuple([item(tokens) for item in items]), tokens.span(first, last))
 
-    return chain
+    form = _placed_form(parts, chain)
+    return chain if form is None else lambda tokens: tree.Placed(tokens, form)
+
+
+def _placed_form(
+    parts: list[Template], chain: Callable[[Tokens], tree.Chain]
+) -> tree.PlacedForm | None:
+    """How to read a chain of one part with a literal value between plain nodes, if it is one."""
+    if len(parts) != 3 or parts[1].rule != "valued":
+        return None
+    left, valued, right = parts
+    part, value = (item for item in valued.parts if isinstance(item, Template))
+    if not (_is_word(left) and _is_word(part) and _is_word(right)):
+        return None
+    literal = value.parts[0] if value.rule == "value" and len(value.parts) == 1 else None
+    if not isinstance(literal, Template) or literal.rule != "literal":
+        return None
+    number, unit = literal.first, literal.last
+    return tree.PlacedForm(
+        left=left.first,
+        part=part.first,
+        number=number,
+        unit=unit if unit > number else None,
+        right=right.first,
+        grow=chain,
+    )
+
+
+def _is_word(template: Template) -> bool:
+    """Whether a place is one word: a name without indices, or `gnd`."""
+    return template.first == template.last and template.rule in ("path", "ground_place")
 
 
 def _slow(template: Template) -> Recipe:

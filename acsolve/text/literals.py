@@ -52,9 +52,9 @@ class Meaning:
     expression: Expression = field(init=False)
 
     def __post_init__(self) -> None:
-        number: Expression = ex.number(self.number)
+        number: Expression = ex.Number(self.number)
         if self.radian:
-            number = ex.divide(ex.number(self.number * 180), ex.PI)
+            number = ex.divide(ex.Number(self.number * 180), ex.PI)
         object.__setattr__(self, "expression", number)
 
 
@@ -91,12 +91,12 @@ _PREFIXABLE: dict[str, Measure] = {
     "rad": DEGREE,
     **_RATIOS,
 }
-_FIXED: dict[str, tuple[Fraction, Measure]] = {
-    "dB": (Fraction(1), DECIBEL),
-    "deg": (Fraction(1), DEGREE),
-    "%": (Fraction(1, 100), PLAIN),
-    "ppm": (Fraction(1, 10**6), PLAIN),
-    "ppm/K": (Fraction(1, 10**6), PER_KELVIN),
+_FIXED: dict[str, tuple[int, Measure]] = {
+    "dB": (0, DECIBEL),
+    "deg": (0, DEGREE),
+    "%": (-2, PLAIN),
+    "ppm": (-6, PLAIN),
+    "ppm/K": (-6, PER_KELVIN),
 }
 _CODE_LETTERS: dict[str, tuple[int, Measure | None]] = {
     "R": (0, OHM),
@@ -111,20 +111,22 @@ _CODE = re.compile(r"([0-9]+)([A-Za-z])([0-9]+)([A-Za-zΩ]*)")
 _ALL_UNITS = [prefix + base for base in _PREFIXABLE for prefix in ("", *PREFIXES)] + [*_FIXED]
 
 
-def unit_meaning(word: str) -> tuple[Fraction, Measure] | None:
-    """Scale and measure of a unit with or without prefix, None where it is none."""
+@lru_cache(maxsize=1_000)
+def unit_meaning(word: str) -> tuple[int, Measure] | None:
+    """Power of ten and measure of a unit with or without prefix, None where it is none."""
     word = word.replace("µ", "u")
     if word in _FIXED:
         return _FIXED[word]
     if word in _PREFIXABLE:
-        return Fraction(1), _PREFIXABLE[word]
+        return 0, _PREFIXABLE[word]
     if word[:1] in PREFIXES and word[1:] in _PREFIXABLE:
-        return _ten(PREFIXES[word[0]]), _PREFIXABLE[word[1:]]
+        return PREFIXES[word[0]], _PREFIXABLE[word[1:]]
     return None
 
 
-def _ten(power: int) -> Fraction:
-    return Fraction(10**power) if power >= 0 else Fraction(1, 10**-power)
+def _decimal(digits: int, power: int) -> Fraction:
+    """digits · 10^power."""
+    return Fraction(digits * 10**power) if power >= 0 else Fraction(digits, 10**-power)
 
 
 @lru_cache(maxsize=50_000)
@@ -138,31 +140,35 @@ def meaning(text: str, unit_word: str | None, glued: bool) -> Meaning | Fault:
         )
     if glued:
         return _attached(text.replace("µ", "u"), unit_word)
-    number = _number(text)
-    if isinstance(number, Fault) or unit_word is None:
-        return number if isinstance(number, Fault) else Meaning(number, None)
-    found = unit_meaning(unit_word)
+    found = None if unit_word is None else unit_meaning(unit_word)
+    number = _number(text, found[0] if found else 0)
+    if isinstance(number, Fault):
+        return number
+    if unit_word is None:
+        return Meaning(number, None)
     if found is None:
         return _unknown_unit(text, unit_word, blank=True)
-    return _with_unit(number, unit_word, found)
+    return _with_unit(number, unit_word, found[1])
 
 
-def _with_unit(number: Fraction, word: str, found: tuple[Fraction, Measure]) -> Meaning:
-    return Meaning(number * found[0], found[1], word, radian=word.endswith("rad"))
+def _with_unit(number: Fraction, word: str, measure: Measure) -> Meaning:
+    return Meaning(number, measure, word, radian=word.endswith("rad"))
 
 
-def _number(text: str) -> Fraction | Fault:
-    """A plain number with an optional power of ten."""
+def _number(text: str, scale: int) -> Fraction | Fault:
+    """A plain number with an optional power of ten, times 10^scale."""
     match = _NUMBER.fullmatch(text)
     assert match is not None, "the scanner lets only numbers through"
     whole, decimals, power = match.groups(default="")
-    if power and abs(int(power)) > limits.EXPONENT:
+    if not power:
+        return _decimal(int(whole + decimals), scale - len(decimals))
+    if abs(int(power)) > limits.EXPONENT:
         return Fault(
             "limit.exponent",
             f"the power of ten {int(power)} is beyond {limits.EXPONENT}",
             "No value of a circuit is that large or small.",
         )
-    return int(whole + decimals) * _ten((int(power) if power else 0) - len(decimals))
+    return _decimal(int(whole + decimals), int(power) + scale - len(decimals))
 
 
 def _attached(text: str, unit_word: str | None) -> Meaning | Fault:
@@ -172,28 +178,39 @@ def _attached(text: str, unit_word: str | None) -> Meaning | Fault:
         return _code(code, unit_word)
     match = _NUMBER.match(text)
     assert match is not None, "the scanner starts such a token with a number"
-    number, word = _number(match[0]), text[match.end() :]
+    word = text[match.end() :]
+    power, measure, known = _letters(word)
+    number = _number(match[0], power)
     if isinstance(number, Fault):
         return number
     if unit_word is not None:
         return _prefix_before_unit(match[0], word, unit_word)
-    found = unit_meaning(word)
+    if not known:
+        return _unknown_unit(match[0], word, blank=False)
     if word == "K":
-        return Meaning(number * 1000, None, word, kelvin=True)
+        return Meaning(number, None, word, kelvin=True)
+    return Meaning(number, measure, word, radian=word.endswith("rad"))
+
+
+def _letters(word: str) -> tuple[int, Measure | None, bool]:
+    """Power of ten and measure of letters attached to a number, and whether they are known."""
+    if word == "K":
+        return 3, None, True
+    found = unit_meaning(word)
     if found is not None:
-        return _with_unit(number, word, found)
+        return *found, True
     if word == "R":
-        return Meaning(number, OHM, word)
+        return 0, OHM, True
     if word in PREFIXES:
-        return Meaning(number * _ten(PREFIXES[word]), None, word)
-    return _unknown_unit(match[0], word, blank=False)
+        return PREFIXES[word], None, True
+    return 0, None, False
 
 
 def _code(code: re.Match[str], unit_word: str | None) -> Meaning | Fault:
     """A value code with the letter at the decimal mark."""
     whole, letter, decimals, attached = code.groups()
     power, measure = _CODE_LETTERS[letter]
-    number = int(whole + decimals) * _ten(power - len(decimals))
+    number = _decimal(int(whole + decimals), power - len(decimals))
     word = attached or unit_word
     if not word:
         return Meaning(number, measure)

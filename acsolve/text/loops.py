@@ -19,6 +19,7 @@ from acsolve.text.tree import (
     Let,
     Literal,
     Nested,
+    Placed,
     Reference,
     Repeat,
     RepeatHead,
@@ -148,6 +149,8 @@ def _size(statement: Nested, sizes: Mapping[str, _Size], known: Numbers) -> _Siz
 
 def _parts(statement: Nested) -> int:
     """Parts that a statement places; those that several statements mention count once."""
+    if isinstance(statement, Placed):
+        return 1
     if not isinstance(statement, Chain):
         return 0
     count, stack = 0, list(statement.items[1::2])

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 
 from acsolve.circuit.expression import Number
-from acsolve.circuit.kind import Attribute, Kind
+from acsolve.circuit.kind import KINDS, Attribute, Kind
 from acsolve.circuit.netlist import Part
 from acsolve.circuit.value import Value
 from acsolve.errors import Label
@@ -13,9 +13,17 @@ from acsolve.text.blocks import refuse_comma, terminal_node
 from acsolve.text.book import Book, is_absent
 from acsolve.text.formula import UnreadableError
 from acsolve.text.givens import Givens, PartPlace
+from acsolve.text.references import need_of
 from acsolve.text.scope import Draft, Given
-from acsolve.text.tree import Argument, Quoted
+from acsolve.text.tree import Argument, Placed, Quoted
 from acsolve.text.words import listed, meant
+
+#: Kinds whose principal value comes first and is the only one they must have.
+_PLAIN = frozenset(
+    kind.name
+    for kind in KINDS.values()
+    if kind.letter and kind.attributes[0].name == kind.principal
+)
 
 
 class Parts:
@@ -37,6 +45,8 @@ class Parts:
     def _part(self, draft: Draft) -> Part | None:
         kind = draft.definition
         assert kind is not None, "only drafts of built-in kinds are kept as parts"
+        if isinstance(draft.value, Placed) and (part := self._placed(draft, draft.value, kind)):
+            return part
         given = self._principal(draft)
         if given is not None and is_absent(given.text):
             self._book.left_out.add(draft.name)
@@ -52,6 +62,21 @@ class Parts:
         return Part(
             name=draft.name, kind=kind.name, nodes=nodes, values=values, file=file, span=draft.span
         )
+
+    def _placed(self, draft: Draft, placed: Placed, kind: Kind) -> Part | None:
+        """A part whose own literal value is all that is said of it; None where there is more."""
+        scope, principal = draft.scope, kind.principal
+        if draft.kind or draft.local in scope.values or scope.arguments or self._book.overrides:
+            return None
+        if principal is None or draft.ends is None or kind.name not in _PLAIN:
+            return None
+        value = self._givens.literal(placed, need_of(kind, kind.attributes[0]), scope)
+        if value is None:
+            return None
+        return Part(
+            name=draft.name, kind=kind.name, nodes=draft.ends, values={principal: value},
+            span=draft.span,
+        )  # fmt: skip
 
     def _file(self, draft: Draft, kind: Kind, arguments: tuple[Argument, ...]) -> str | None:
         """The text that a kind needs, as the name of a file."""
@@ -178,8 +203,8 @@ class Parts:
         """The value of a part: from outside, as an argument, or from the part's own scope."""
         book, scope, local = self._book, draft.scope, draft.local
         own = [scope.values[local]] if local in scope.values else []
-        if draft.value is not None:
-            own.append(Given(draft.value, scope, draft.turns, draft.value.span))
+        if (value := draft.own_value) is not None:
+            own.append(Given(value, scope, draft.turns, value.span))
         if draft.kind is not None and draft.kind.arguments:
             principal = draft.definition.principal if draft.definition else None
             own += [

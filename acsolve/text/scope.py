@@ -11,11 +11,14 @@ from typing import NamedTuple
 
 from acsolve.circuit.kind import Kind
 from acsolve.source import Span
-from acsolve.text.tree import Block, KindText, Place, ValueText
+from acsolve.text.tree import Block, KindText, Place, Placed, ValueText
 
 Turns = Mapping[str, int]  # index names of the repetitions around a statement
 
 NO_TURNS: Turns = {}
+
+#: Words of expressions, which name neither parts nor quantities.
+RESERVED = frozenset(("s", "pi", "sqrt", "exp", "ln", "log10"))
 
 
 class Given(NamedTuple):
@@ -39,7 +42,7 @@ class Draft:
     ends_span: Span | None = None
     kind: KindText | None = None
     kind_turns: Turns = field(default_factory=dict)
-    value: ValueText | None = None  # given in place
+    value: ValueText | Placed | None = None  # given in place
     definition: Kind | None = None  # once known, for built-in kinds
     absent: bool = False
 
@@ -47,6 +50,11 @@ class Draft:
     def name(self) -> str:
         """The full name."""
         return self.scope.prefix + self.local
+
+    @property
+    def own_value(self) -> ValueText | None:
+        """The value given in place, taken apart."""
+        return self.value.value() if isinstance(self.value, Placed) else self.value
 
 
 @dataclass(slots=True, eq=False)

@@ -2,9 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from acsolve.source import Span
+
+if TYPE_CHECKING:
+    from acsolve.text.scan import Tokens
 
 
 @dataclass(frozen=True, slots=True)
@@ -213,6 +218,86 @@ class Chain:
     span: Span
 
 
+class Placed:
+    """A chain of one part with a value in place between two plain nodes.
+
+    Large files hold little else, so it keeps its tokens and is taken apart only where a
+    statement about it needs more than its names.
+    """
+
+    __slots__ = ("_form", "_tokens")
+
+    def __init__(self, tokens: Tokens, form: PlacedForm) -> None:
+        self._tokens = tokens
+        self._form = form
+
+    def names(self) -> tuple[str, str, str]:
+        """Left node, part, right node."""
+        tokens, form = self._tokens, self._form
+        text, base = tokens.script.text, tokens.base
+        starts, ends = tokens.starts, tokens.ends
+        left, part, right = form.left, form.part, form.right
+        return (
+            text[base + starts[left] : base + ends[left]],
+            text[base + starts[part] : base + ends[part]],
+            text[base + starts[right] : base + ends[right]],
+        )
+
+    @property
+    def left(self) -> Span:
+        """The place of the left node."""
+        return self._tokens.span(self._form.left, self._form.left)
+
+    @property
+    def part(self) -> Span:
+        """The place of the part's name."""
+        return self._tokens.span(self._form.part, self._form.part)
+
+    @property
+    def right(self) -> Span:
+        """The place of the right node."""
+        return self._tokens.span(self._form.right, self._form.right)
+
+    def literal(self) -> tuple[str, str | None, bool]:
+        """The value: its number, its unit, and whether letters are attached to the number."""
+        tokens, form = self._tokens, self._form
+        unit = None if form.unit is None else tokens.text(form.unit)
+        return tokens.text(form.number), unit, tokens.kinds[form.number] == "GLUED"
+
+    def value_span(self) -> Span:
+        """The place of the value."""
+        form = self._form
+        return self._tokens.span(form.number, form.number if form.unit is None else form.unit)
+
+    def whole(self) -> Chain:
+        """The chain taken apart."""
+        return self._form.grow(self._tokens)
+
+    def value(self) -> ValueText:
+        """The value taken apart."""
+        fitted = self.whole().items[1]
+        assert isinstance(fitted, Fitted), "the form has a part with its value there"
+        assert fitted.value is not None, "the form has a part with its value there"
+        return fitted.value
+
+    @property
+    def span(self) -> Span:
+        """The whole chain."""
+        return self._tokens.span(self._form.left, self._form.right)
+
+
+@dataclass(frozen=True, slots=True)
+class PlacedForm:
+    """Where the words of such a chain stand, by token number, and how it is taken apart."""
+
+    left: int
+    part: int
+    number: int
+    unit: int | None
+    right: int
+    grow: Callable[[Tokens], Chain]
+
+
 @dataclass(frozen=True, slots=True)
 class Assign:
     """Names and the value given to them."""
@@ -394,7 +479,7 @@ class Broken:
 
 
 Plain = (
-    Chain | Assign | Declare | Let | Couple | Join | LeaveOut | Port | Title | Caution
+    Chain | Placed | Assign | Declare | Let | Couple | Join | LeaveOut | Port | Title | Caution
     | Flattened | Ask | Goal
 )  # fmt: skip
 Head = BlockHead | RepeatHead | VariantHead

@@ -237,7 +237,7 @@ def _written_out(
     """The statements of a body, repetitions written out."""
     for statement in body:
         if not isinstance(statement, Repeat):
-            book.step(statement.span)
+            book.step(statement)
             yield statement, turns
             continue
         head = statement.head

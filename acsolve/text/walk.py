@@ -11,7 +11,7 @@ from acsolve.source import Span
 from acsolve.text import limits
 from acsolve.text.book import Book, Coupled
 from acsolve.text.chains import Chains
-from acsolve.text.scope import NO_TURNS, Draft, Given, Named, Scope, Turns
+from acsolve.text.scope import NO_TURNS, RESERVED, Draft, Given, Named, Scope, Turns
 from acsolve.text.spell import node_name, spelled, spelled_all, whole
 from acsolve.text.tree import (
     Assign,
@@ -24,11 +24,11 @@ from acsolve.text.tree import (
     Let,
     Nested,
     Path,
+    Placed,
     Repeat,
     ValueText,
 )
 
-RESERVED = frozenset(("s", "pi", "sqrt", "exp", "ln", "log10"))
 _PART_NAME = re.compile(r"[A-Za-z]")
 
 
@@ -40,6 +40,7 @@ class Walker:
         self._chains = Chains(book, self)
         self._handlers: dict[type, Any] = {
             Chain: self._chains.walk,
+            Placed: self._chains.walk_placed,
             Assign: self._assign,
             Declare: self._declare,
             Let: self._let,
@@ -64,7 +65,7 @@ class Walker:
         for statement in body:
             handler = self._handlers.get(type(statement))
             if handler is not None:
-                self._book.step(statement.span)
+                self._book.step(statement)
                 handler(statement, scope, turns)
 
     # ------------------------------------------------------------ parts
