@@ -242,9 +242,10 @@ class _Elimination:
 
     def _relative_size(self, slot: int, here: list[float] | None, there: dict[int, int]) -> float:
         """Least size over the samples against its row or column; 1 alone there, 0 for zero."""
+        values, made_of = self._samples(slot)
         sizes = [
             size if (size := abs(value)) > _CANCELLED * made else 0.0
-            for value, made in zip(*self._samples(slot), strict=True)
+            for value, made in zip(values, made_of)  # noqa: B905 - of one length, and often
         ]
         if not all(sizes):
             return _LAST_RESORT * any(sizes)

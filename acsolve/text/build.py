@@ -38,7 +38,11 @@ def build(source: Source, found: list[tree.Statement], problems: Problems) -> Ne
     netlist = Netlist(source=source)
     with suppress(RefusedError):
         body = nested(found, problems)
-        netlist = _Builder(source, body, problems).netlist()
+        builder = _Builder(source, body, problems)
+        try:
+            netlist = builder.netlist()
+        finally:
+            builder.close()
     return netlist
 
 
@@ -86,6 +90,11 @@ class _Builder:
         netlist = replace(netlist, quantities=quantities.finished())
         self._last_checks(netlist)
         return replace(netlist, cascades=cascades(netlist, book.rows))
+
+    def close(self) -> None:
+        """Let go of all drafts at once, without waiting for the collector."""
+        for scope in (self._book.file, *self._book.scopes):
+            scope.clear()
 
     # ------------------------------------------------------------ stages
 

@@ -96,6 +96,11 @@ class Scope:
             return local
         return self.pins.get(local) or self.prefix + local
 
+    def clear(self) -> None:
+        """Forget what refers back to this scope."""
+        for table in (self.drafts, self.quantities, self.values, self.arguments):
+            table.clear()
+
     @property
     def file(self) -> Scope:
         """The outermost scope."""

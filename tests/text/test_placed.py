@@ -42,17 +42,20 @@ def _tree(line: str) -> object:
     ],
 )
 def test_only_the_plainest_chain_is_kept_whole(line: str, short: bool) -> None:
+    """Tolerances, signs, indices, expressions and longer chains are taken apart at once."""
     assert isinstance(_tree(line), Placed if short else Chain)
 
 
 @given(_LITERALS, st.sampled_from(["", "x"]))
 def test_the_same_part_as_when_its_value_stands_apart(literal: str, end: str) -> None:
+    """Value in place or in a line of its own: one circuit."""
     near = acsolve.parse(f"in -- R1 = {literal} -- out{end}\nout{end} -- C1 = 1 nF -- gnd")
     apart = acsolve.parse(f"in -- R1 -- out{end}\nout{end} -- C1 -- gnd\nR1 = {literal}\nC1 = 1 nF")
     assert near.netlist.parts == apart.netlist.parts
 
 
 def test_spans_are_those_of_name_and_value() -> None:
+    """Messages can point at the name and at the value."""
     part = acsolve.parse("in -- R1 = 4.7 kohm -- out\nout -- C1 -- gnd").netlist.parts[0]
     assert part.span is not None
     assert part.span.text == "R1"
@@ -75,6 +78,7 @@ def test_spans_are_those_of_name_and_value() -> None:
     ],
 )
 def test_mistakes_are_told_as_in_any_chain(text: str, code: str, place: str) -> None:
+    """Code and place of each problem."""
     with pytest.raises(AcsolveError) as caught:
         acsolve.parse(text)
     found = [item for item in caught.value.diagnostics if item.code == code]
@@ -84,6 +88,7 @@ def test_mistakes_are_told_as_in_any_chain(text: str, code: str, place: str) -> 
 
 
 def test_a_kind_or_a_value_said_elsewhere_counts() -> None:
+    """What other lines say of the part is heard."""
     circuit = acsolve.parse("a -- L1 = 5 ohm -- gnd\nL1 : resistor(series_inductance = 2 nH)")
     part = circuit.netlist.parts[0]
     assert part.kind == "resistor"
@@ -93,6 +98,7 @@ def test_a_kind_or_a_value_said_elsewhere_counts() -> None:
 
 
 def test_inside_a_block_arguments_win() -> None:
+    """Each copy takes the values it is given."""
     text = """
         block section(a, b)
             a -- R = 100 ohm -- b
