@@ -15,17 +15,21 @@ as the limit of lossy parts does, which is the convention of `acsolve.analyses.p
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, replace
+from functools import partial
 from math import isfinite
-from typing import Any
+from typing import Any, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
+from acsolve.analyses.ladder_row import Passed, Row
 from acsolve.analyses.question import Ask
+from acsolve.circuit.cascade import CASCADE, condensed
 from acsolve.circuit.expression import ONE, ZERO, Expression, add, negate
-from acsolve.circuit.netlist import Netlist, Part
+from acsolve.circuit.netlist import Netlist, Pair, Part
+from acsolve.equations.chain import Chain, copies
 from acsolve.equations.evaluate import Evaluator, polynomial_in_s
 from acsolve.equations.numeric import float_values
 from acsolve.equations.stamp import STAMPS
@@ -45,16 +49,20 @@ class Ladder:
     """A tree of positive real admittances, its nodes numbered from the driven one outwards.
 
     `parent`, `links` (to the parent) and `shunts` (to ground) by node, the way from the
-    observed node up in `way`; `negative` where the observed pair is the other way round,
-    `relaxing` where there is no inductance, so that every pole and zero is real.
+    observed node up in `way`; a node in `rows` has a row of equal copies in place of its link,
+    and `written_out` makes the same ladder without rows; `negative` where the observed pair is
+    the other way round, `relaxing` where there is no inductance, so that every pole and zero is
+    real.
     """
 
     parent: tuple[int, ...]
     links: tuple[tuple[Ratio, ...], ...]
     shunts: tuple[tuple[Ratio, ...], ...]
+    rows: Mapping[int, Row]
     way: frozenset[int]
     negative: bool
     relaxing: bool
+    written_out: Callable[[], Ladder | None] | None = None
 
     def phase(self, hertz: Array) -> Array:
         """Continuous phase in radians at frequencies above 0 Hz, good to a small angle.
@@ -67,23 +75,32 @@ class Ladder:
             if not len(missing):
                 break
             phase[missing] = self._sum(hertz[missing] * (1 + aside))
-        return phase + np.pi * self.negative
+        phase += np.pi * self.negative
+        missing = np.flatnonzero(~np.isfinite(phase))
+        if len(missing) and self.written_out is not None and (other := self.written_out()):
+            phase[missing] = other.phase(hertz[missing])
+        return phase
 
     def _sum(self, hertz: Array) -> Array:
-        read = _Admittances(2j * np.pi * hertz)
+        return self.passed(2j * np.pi * hertz).turn
+
+    def passed(self, s: Array, load: Array | None = None) -> Passed:
+        """Its turn and the admittance into the driven node, with a load at the observed one."""
+        read = _Admittances(s)
         down: dict[int, Array] = {}
-        total = np.zeros(len(hertz))
+        if load is not None:
+            down[max(self.way)] = load
+        total = np.zeros(len(s))
         with np.errstate(all="ignore"):  # infinite or 0/0 on top of a resonance: not a number
             for node in range(len(self.parent) - 1, 0, -1):
                 looking = read(self.shunts[node]) + down.pop(node, 0)
-                link = read(self.links[node])
-                both = link + looking
+                row = self.rows.get(node)
+                turn, into = row.passed(s, looking) if row else read.link(self.links[node], looking)
                 if node in self.way:
-                    total += read.angle(self.links[node]) - np.angle(both)
-                    total[~(both.real > -_LEFT * np.abs(both))] = np.nan
+                    total += turn
                 up = self.parent[node]
-                down[up] = down.get(up, 0) + link * (looking / both)
-        return total
+                down[up] = down.get(up, 0) + into
+            return Passed(total, read(self.shunts[0]) + down.pop(0, 0))
 
 
 class _Admittances:
@@ -104,6 +121,14 @@ class _Admittances:
                 self.known[ratios] = found
         return found
 
+    def link(self, ratios: tuple[Ratio, ...], looking: Array) -> Passed:
+        """The turn from one end of a link to the other, under an admittance; and both in series."""
+        link = self(ratios)
+        both = link + looking
+        turn = self.angle(ratios) - np.angle(both)
+        turn[~(both.real > -_LEFT * np.abs(both))] = np.nan
+        return Passed(turn, link * (looking / both))
+
     def angle(self, ratios: tuple[Ratio, ...]) -> Array:
         found = self.angles.get(ratios)
         if found is None:
@@ -122,18 +147,55 @@ def ladder_of(netlist: Netlist, ask: Ask) -> Ladder | None:
         return None
     if ask.source is None:
         return None
-    parts = list(acting(netlist, ask.source))
-    if not all(part.kind in _POSITIVE_REAL for part in parts):
-        return None
     driven, observed = _over_ground(ask.source), _over_ground(ask.target)
+    if driven is None or observed is None:
+        return None
+    short = condensed(netlist, {*ask.source, *ask.target})
+    written_out = partial(_ladder, netlist, ask.source, driven, observed)
+    if short is not netlist:
+        found = _ladder(short, ask.source, driven, observed)
+        if found is not None:
+            return replace(found, written_out=written_out)
+    return written_out()
+
+
+def _ladder(
+    netlist: Netlist, drive: Pair, driven: tuple[str, bool], observed: tuple[str, bool]
+) -> Ladder | None:
+    acting_parts = list(acting(netlist, drive))
+    parts = [part for part in acting_parts if part.kind != CASCADE]
+    inside = [part for section in netlist.sections.values() for part in section.parts]
+    if not all(part.kind in _POSITIVE_REAL for part in (*parts, *inside)):
+        return None
     joints = _joints(parts, float_values(netlist))
-    if driven is None or observed is None or joints is None:
+    if joints is None:
+        return None
+    tree = _tree(
+        joints, driven[0], _row_ends(part for part in acting_parts if part.kind == CASCADE)
+    )
+    if tree is None or observed[0] not in tree.place or observed[0] == driven[0]:
+        return None
+    rows = {node: _row(netlist, name, turned=turned) for node, (name, turned) in tree.rows.items()}
+    known = {node: row for node, row in rows.items() if row is not None}
+    if len(known) < len(rows):
         return None
     relaxing = all(
         part.kind in ("resistor", "capacitor") and "series_inductance" not in part.values
-        for part in parts
+        for part in (*parts, *inside)
     )
-    return _rooted(joints, driven, observed, relaxing=relaxing)
+    return _rooted(
+        tree, joints, known, observed[0], negative=driven[1] != observed[1], relaxing=relaxing
+    )
+
+
+def _row(netlist: Netlist, name: str, *, turned: bool) -> Row | None:
+    """A row of copies; None where a copy is no ladder from end to end."""
+    copy = copies(netlist)[name]
+    near, far = (copy.far, copy.near) if turned else (copy.near, copy.far)
+    one = _ladder(copy.netlist, (near, _GROUND), (near, False), (far, False))
+    if one is None:
+        return None
+    return Row(one.passed, Chain(copy).beside_one, copy.count, turned)
 
 
 def _over_ground(pair: tuple[str, str]) -> tuple[str, bool] | None:
@@ -143,11 +205,12 @@ def _over_ground(pair: tuple[str, str]) -> tuple[str, bool] | None:
     return (pair[0], False) if pair[1] == _GROUND else (pair[1], True)
 
 
-def _joints(
-    parts: Sequence[Part], evaluate: Evaluator
-) -> dict[str, dict[str, tuple[Ratio, ...]]] | None:
+Joints = dict[str, dict[str, tuple[Ratio, ...]]]
+
+
+def _joints(parts: Sequence[Part], evaluate: Evaluator) -> Joints | None:
     """Node -> neighbour -> admittances between; None where one is not positive real."""
-    joints: dict[str, dict[str, tuple[Ratio, ...]]] = defaultdict(dict)
+    joints: Joints = defaultdict(dict)
     known: dict[tuple[str, float], tuple[Ratio, ...] | None] = {}
     for part in parts:
         first, second = part.nodes
@@ -167,39 +230,78 @@ def _joints(
     return joints
 
 
-def _rooted(
-    joints: dict[str, dict[str, tuple[Ratio, ...]]],
-    driven: tuple[str, bool],
-    observed: tuple[str, bool],
-    *,
-    relaxing: bool,
-) -> Ladder | None:
+class _Tree(NamedTuple):
+    """Nodes in the order of a breadth-first walk, their parents, and the rows on the way."""
+
+    place: dict[str, int]
+    parent: list[int]
+    rows: dict[int, tuple[str, bool]]  # child -> name of the row, and whether it is turned round
+
+
+Rows = dict[str, dict[str, tuple[str, bool]]]
+
+
+def _row_ends(parts: Iterable[Part]) -> Rows | None:
+    """Node -> node at the other end of a row -> its name, and whether it is seen from its far end.
+
+    None where two rows lie side by side.
+    """
+    found: Rows = defaultdict(dict)
+    for part in parts:
+        near, far = part.nodes[:2]
+        if far in found[near]:
+            return None
+        found[near][far], found[far][near] = (part.name, False), (part.name, True)
+    return found
+
+
+def _tree(joints: Joints, driven: str, rows: Rows | None) -> _Tree | None:
     """The tree seen from the driven node, breadth first; None where nodes form a loop."""
-    order, place, parent = [driven[0]], {driven[0]: 0}, [0]
+    if rows is None:
+        return None
+    order, place, parent = [driven], {driven: 0}, [0]
+    found: dict[int, tuple[str, bool]] = {}
     for node in order:  # grows while it is read
-        for other in joints.get(node, ()):
+        beside, along = joints.get(node, {}), rows.get(node, {})
+        if beside.keys() & along.keys():
+            return None
+        for other in (*beside, *along):
             if other == _GROUND or order[parent[place[node]]] == other:
                 continue
             if other in place:
                 return None
             place[other] = len(order)
+            if other in along:
+                found[place[other]] = along[other]
             order.append(other)
             parent.append(place[node])
-    if observed[0] not in place or observed[0] == driven[0]:
-        return None
-    way, at = set(), place[observed[0]]
+    return _Tree(place, parent, found)
+
+
+def _rooted(
+    tree: _Tree,
+    joints: Joints,
+    rows: Mapping[int, Row],
+    observed: str,
+    *,
+    negative: bool,
+    relaxing: bool,
+) -> Ladder:
+    way, at = set(), tree.place[observed]
     while at:
         way.add(at)
-        at = parent[at]
+        at = tree.parent[at]
+    order = list(tree.place)
     return Ladder(
-        parent=tuple(parent),
+        parent=tuple(tree.parent),
         links=tuple(
-            joints[node][order[up]] if node != driven[0] else ()
-            for node, up in zip(order, parent, strict=True)
+            joints[node].get(order[up], ()) if up != at else ()
+            for at, (node, up) in enumerate(zip(order, tree.parent, strict=True))
         ),
         shunts=tuple(joints.get(node, {}).get(_GROUND, ()) for node in order),
+        rows=rows,
         way=frozenset(way),
-        negative=driven[1] != observed[1],
+        negative=negative,
         relaxing=relaxing,
     )
 

@@ -141,14 +141,20 @@ class Chain:
             self.last = (s, self._work_out(np.asarray(s)))
         return self.last[1]
 
-    def _work_out(self, s: Array) -> Hybrid:
+    def beside_one(self, s: Array) -> Matrix:
+        """M - 1 of one copy at s = j·2π·f, each element of shape (points,)."""
+        return _base(self._solved(s))[0].beside_one
+
+    def _solved(self, s: Array) -> list[Solution]:
         hertz = s.imag / (2 * pi)
-        solvers = self.prepared(hertz)
+        return [solver.solve(hertz) for solver in self.prepared(hertz)]
+
+    def _work_out(self, s: Array) -> Hybrid:
         with np.errstate(all="ignore"):  # a point without an answer is found by its not a number
-            solutions = [solver.solve(hertz) for solver in solvers]
+            solutions = self._solved(s)
             base, error = _base(solutions)
             turned = self._determinant(solutions, base)
-            plain = np.where(_is_near(base.beside_one), 0, self.copy.count)
+            plain = np.where(_is_near(base.beside_one), 0, self.copy.count * _spread(base))
             return _hybrid(s, power(base, self.copy.count), turned, error, plain)
 
     def prepared(self, hertz: Array) -> tuple[Solver, ...]:
@@ -251,6 +257,17 @@ def power(base: Base, count: int) -> tuple[Matrix, Matrix, Array]:
 _NEAR = 0.25
 
 
+def _spread(base: Base) -> Array:
+    """How much a relative error of M weighs in the logarithm of its eigenvalue, to first order.
+
+    With cosh(g) = (A + D)/2 it is the error of that over sinh(g): large at a band's edge.
+    """
+    a, _, _, d = map(np.abs, base.matrix)
+    first, _, _, last = base.beside_one
+    shift = (first + last) / 2
+    return np.asarray(np.maximum((a + d) / 2 / np.abs(np.sqrt(shift * (shift + 2))), 1.0))
+
+
 def _is_near(beside_one: Matrix) -> NDArray[np.bool_]:
     return np.asarray(_size(beside_one) < _NEAR)
 
@@ -302,8 +319,7 @@ def _hybrid(
     """The hybrid elements of the whole row from its chain matrix.
 
     What is off in one copy is off in all: N times its share of the logarithm, or of the whole
-    where M itself was raised (`plain` times). An estimate is three standard deviations, and the
-    check of the whole network multiplies by three again.
+    where M itself was raised (`plain` times). The check of the whole network multiplies by three.
     """
     (a, b, c, _), (a1, b1, c1, _), exponent = chain
     determinant, turning = turned
@@ -320,11 +336,15 @@ def _hybrid(
         "g22": Scaled(-(b1 + g22 * a1) / a, none),
     }
     nepers = np.abs(np.log(np.abs(a)) + exponent * np.log(2.0))
-    rough = (error / 3 + 3 * _EPSILON) * (_FEW + np.abs(s * rate) + nepers + plain)
+    share = np.abs(s * rate) + np.where(plain > 0, plain, nepers)
+    own = np.where(plain > 0, _OWN_PLAIN, _OWN_NEAR)
+    rough = (own * error + 3 * _EPSILON) * (_FEW + share)
     return Hybrid(values, slopes, rough)
 
 
 _FEW = 4.0  # operations of the last step
+_OWN_PLAIN = 0.1  # share of one copy's estimate that three of its deviations come to (empirical)
+_OWN_NEAR = 1 / 3  # the same for M - 1
 
 
 def chains(netlist: Netlist) -> Mapping[str, Chain]:
