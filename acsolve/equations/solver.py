@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
 from math import pi
@@ -30,6 +30,7 @@ _RANGE = 2.0**800  # answers (or their inverses) beyond this are solved with pow
 _WORTH_A_PLAN = 16  # failing points that pay for a plan of their own (empirical)
 _BYTES = 1 << 28  # working set of one block of points: larger blocks gain nothing (empirical)
 _BLOCK = (32, 4096)  # points in a block, least and most
+_FEW_POINTS, _MOST_BYTES = 256, 1 << 30  # fewer points than these are worth so much memory
 _IN_HAND = 64  # vectors of a streamed elimination besides those it is asked to hold
 _ACCEPTABLE = 1e-5  # the same, where balls would cost too much
 _BALL_BUDGET = 3_000_000  # entries times points that may be solved in balls: some ten seconds
@@ -57,23 +58,26 @@ class Solver:
 
         """
         hertz = np.asarray(hertz, dtype=float)
-        arrays = empty(len(self.observed), len(hertz))
-        fronts = self.route.fronts
-        length = _block_length(self.plan, fronts)
+        arrays, spare = (empty(len(self.observed), len(hertz)) for _ in range(2))
         _steady_memory()
-        for start in range(0, len(hertz), length):
-            here = np.arange(start, min(start + length, len(hertz)))
-            self._attempt(self.plan, hertz, here, arrays, Status.OK, fronts)
+        fronts = self.route.fronts
+        for here, answer in self._attempts(self.plan, hertz, np.arange(len(hertz)), fronts):
+            _keep(arrays, here, answer, Status.OK)
+            _keep(spare, here, answer, Status.INEXACT)
         failing = _failing(arrays)
+        order = self.plan.order
         for _ in range(2):
             if len(failing) < _WORTH_A_PLAN:
                 break
             plan = _plan(self.numbers, _spread(hertz[failing]))
-            if not plan.undetermined:
-                self._attempt(plan, hertz, failing, arrays, Status.RE_SOLVED)
+            if plan.undetermined or plan.order == order:
+                break
+            order = plan.order
+            for here, answer in self._attempts(plan, hertz, failing):
+                _keep(arrays, here, answer, Status.RE_SOLVED)
             failing = _failing(arrays)
         if len(failing) * self.plan.slots > _BALL_BUDGET:
-            self._attempt(self.plan, hertz, failing, arrays, Status.INEXACT)
+            _adopt(arrays, spare)
             failing = _failing(arrays)[: max(_BALL_BUDGET // self.plan.slots, 1)]
         self._point_by_point(hertz, failing, arrays)
         return finished(arrays)
@@ -109,7 +113,8 @@ class Solver:
     def near_zero(self) -> list[Local | None]:
         """H near 0 Hz: its order and leading coefficient, for each functional."""
         arrays = empty(len(self.observed), 1)
-        self._attempt(self.plan, np.zeros(1), np.arange(1), arrays, Status.OK)
+        for here, answer in self._attempts(self.plan, np.zeros(1), np.arange(1)):
+            _keep(arrays, here, answer, Status.OK)
         if np.all(arrays["status"] == Status.OK) and np.all(arrays["mantissa"] != 0):
             return [
                 Local(0.0, complex(m), int(e), complex(slope))
@@ -122,25 +127,21 @@ class Solver:
             ]
         return self.precise.beside(Fraction(0))
 
-    def _attempt(
-        self,
-        plan: Plan,
-        hertz: Array,
-        here: Array,
-        arrays: dict[str, Array],
-        status: Status,
-        fronts: Fronts | None = None,
-    ) -> None:
-        """Solve the points `here`, the ones out of a double's range with powers of two."""
-        s = 2j * pi * hertz[here]
-        plain = replay(self.numbers, plan, self.observed, s, fronts=fronts)
-        _keep(arrays, here, plain, status)
-        size = np.abs(plain.mantissa)
-        inside = (size > 1 / _RANGE) & (size < _RANGE) | (plain.error == 0)
-        beyond = np.flatnonzero(~inside.all(axis=0))
-        if len(beyond):
-            there = replay_scaled(self.numbers, plan, self.observed, s[beyond])
-            _keep(arrays, here[beyond], there, status)
+    def _attempts(
+        self, plan: Plan, hertz: Array, wanted: Array, fronts: Fronts | None = None
+    ) -> Iterator[tuple[Array, Replayed]]:
+        """Solve some points, block by block; those out of a double's range with powers of two."""
+        length = _block_length(plan, fronts)
+        for start in range(0, len(wanted), length):
+            here = wanted[start : start + length]
+            s = 2j * pi * hertz[here]
+            plain = replay(self.numbers, plan, self.observed, s, fronts=fronts)
+            yield here, plain
+            size = np.abs(plain.mantissa)
+            inside = (size > 1 / _RANGE) & (size < _RANGE) | (plain.error == 0)
+            beyond = np.flatnonzero(~inside.all(axis=0))
+            if len(beyond):
+                yield here[beyond], replay_scaled(self.numbers, plan, self.observed, s[beyond])
 
     def _point_by_point(self, hertz: Array, failing: Array, arrays: dict[str, Array]) -> None:
         zeros = 0
@@ -247,10 +248,16 @@ def _steady_memory() -> None:
 
 
 def _block_length(plan: Plan, fronts: Fronts | None) -> int:
-    """Points that are solved together: many, but with a working set that caches like."""
+    """Points that are solved together: many, but with a working set that caches like.
+
+    Where that would leave a few only, the work of each step outweighs that of its numbers, and
+    more memory is taken.
+    """
     least, most = _BLOCK
     dense = 0 if fronts is None else fronts.stored
-    return int(np.clip(_BYTES // (16 * (plan.slots + dense + 3 * plan.size)), least, most))
+    point = 16 * (plan.slots + dense + 3 * plan.size)
+    few = np.clip(_MOST_BYTES // point, least, _FEW_POINTS)
+    return int(np.clip(_BYTES // point, few, most))
 
 
 def _failing(arrays: dict[str, Array]) -> Array:
@@ -270,6 +277,13 @@ def _keep(arrays: dict[str, Array], here: Array, answer: Replayed, status: Statu
     for name in ("mantissa", "exponent", "slope", "error"):
         arrays[name][rows, places] = getattr(answer, name)[rows, columns]
     arrays["status"][rows, places] = np.where(zero, Status.ZERO, status)
+
+
+def _adopt(arrays: dict[str, Array], spare: dict[str, Array]) -> None:
+    """Take over what is known less well, where nothing better was found."""
+    taken = (arrays["status"] == Status.UNDEFINED) & (spare["status"] != Status.UNDEFINED)
+    for name, array in arrays.items():
+        array[taken] = spare[name][taken]
 
 
 def _keep_zeros(arrays: dict[str, Array], places: Array) -> None:
