@@ -346,6 +346,21 @@ def _entry(
     return coefficients
 
 
+def entry_of(expression: Expression, evaluate: Evaluator) -> Entry | None:
+    """One entry over floats, None where it is zero at every s.
+
+    Raises
+    ------
+    EquationError
+        [equations.evaluation] a value is not finite; [equations.not-rational] it is an element
+        of a two-port that is not known.
+    """
+    found = _entry(expression, _Reader(evaluate), exact=False)
+    if not isinstance(found, tuple):
+        return found
+    return PolynomialEntry(found) if found else None
+
+
 def known_by_numbers(block: str) -> EquationError:
     """The error where an answer needs more of a part than numbers at frequencies."""
     return EquationError(

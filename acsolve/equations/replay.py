@@ -32,11 +32,16 @@ from acsolve.algebra.lu import (
 from acsolve.algebra.plan import Plan
 from acsolve.algebra.scaled import Exponent, Scaled, aligned, power_of_two
 from acsolve.algebra.stream import streamed
+from acsolve.equations.balance import Balance
 from acsolve.equations.element_row import element_places, scaled_row
 from acsolve.equations.numeric import ElementEntry, Numbers
 from acsolve.equations.system import Functional
 
 _ROUND_OFF = 4 * float(np.finfo(float).eps)  # of an entry and of one product, in all
+
+
+#: None of the rows is read part by part.
+NO_BALANCES: Mapping[int, Balance] = {}
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -56,20 +61,29 @@ def replay(
     s: NDArray[np.complex128],
     *,
     fronts: Fronts | None = None,
+    balances: Mapping[int, Balance] = NO_BALANCES,
 ) -> Replayed:
-    """Solve at every s in doubles: along the plan, or its heavy part in blocks."""
+    """Solve at every s in doubles: along the plan, or its heavy part in blocks.
+
+    The rows in `balances` are checked part by part.
+    """
     # Singular points make infinities and what follows from them; the caller looks for these.
     with np.errstate(all="ignore"):
         entries = numbers.at(s)
         x, values, all_y = _solved(numbers, plan, observed, entries, fronts=fronts, points=len(s))
         sums = [_Sums(value, y) for value, y in zip(values, all_y, strict=True)]
         elements = element_places(numbers)
-        _Rows(numbers, s, entries, numbers.slopes(s), x, 1.0, elements).visit(sums)
+        _Rows(numbers, s, entries, numbers.slopes(s), x, 1.0, elements, balances).visit(sums)
         return _stacked([item.answer() for item in sums], len(s))
 
 
 def replay_scaled(
-    numbers: Numbers, plan: Plan, observed: Sequence[Functional], s: NDArray[np.complex128]
+    numbers: Numbers,
+    plan: Plan,
+    observed: Sequence[Functional],
+    s: NDArray[np.complex128],
+    *,
+    balances: Mapping[int, Balance] = NO_BALANCES,
 ) -> Replayed:
     """Solve with powers of two carried along, slower, for answers out of a double's range."""
     one = Scaled(np.ones(len(s), dtype=complex), np.zeros(len(s), dtype=np.int64))
@@ -84,7 +98,8 @@ def replay_scaled(
         ]
         del factors
         sums = [_Sums(value, y) for value, y in zip(values, all_y, strict=True)]
-        _Rows(numbers, s, entries, slopes, x, one, element_places(numbers)).visit(sums)
+        elements = element_places(numbers)
+        _Rows(numbers, s, entries, slopes, x, one, elements, balances).visit(sums)
         return _stacked([item.answer() for item in sums], len(s))
 
 
@@ -166,6 +181,8 @@ class _Sums:
         self.correction: Element = 0.0
         self.rate: Element = 0.0
         self.squares: Element = 0.0
+        self.rough: Element = 0.0
+        self.moved: Element = 0.0
         self.shifts: dict[tuple[int, int], Element] = {}
 
     def add(
@@ -175,8 +192,13 @@ class _Sums:
         scale: Element,
         slope: Element | None,
         exponent: Exponent | None,
+        rough: Element | None,
     ) -> None:
-        """Take in one row: A·x - b, its round-off scale and (dA/ds)·x, on one exponent."""
+        """Take in one row: A·x - b, its round-off scale and (dA/ds)·x, on one exponent.
+
+        `rough` is the round-off scale of the row as the elimination had it, where the residual
+        is that of its parts.
+        """
         weight = None if self.value is None else self.y[row]
         if weight is None:
             return
@@ -184,7 +206,13 @@ class _Sums:
             weight = weight.mantissa * self._shift(weight.exponent, exponent)
         term = weight * residual
         self.correction = self.correction + term
-        bound = abs(term) + abs(weight) * scale
+        moved, size = abs(term), abs(weight)
+        if rough is None:
+            bound = moved + size * scale
+        else:
+            bound, before = size * scale, size * rough + moved
+            self.rough = self.rough + before * before
+            self.moved = self.moved + moved
         self.squares = self.squares + bound * bound
         if slope is not None:
             self.rate = self.rate + weight * slope
@@ -201,11 +229,21 @@ class _Sums:
         """(mantissa, exponent, H'/H, relative error), or None where nothing reaches it."""
         if self.value is None:
             return None
-        error = 3 * np.sqrt(_ROUND_OFF**2 + self.squares) + self.misfit
+        error = 3 * np.sqrt(_ROUND_OFF**2 + self.squares) + self._second_order()
         value = self.value * (1.0 - self.correction)
         if isinstance(value, Scaled):
             return value.mantissa, value.exponent, -self.rate, error
         return value, 0, -self.rate, error
+
+    def _second_order(self) -> Element:
+        """What the correction itself may be off by: as much as y is, of all it moved.
+
+        Where rows are not read part by part y tells of x too, and counts as it stands.
+        """
+        if isinstance(self.rough, float):
+            return self.misfit
+        doubt = 3 * np.sqrt(self.rough) + self.misfit
+        return doubt * (self.moved + doubt)
 
 
 def _inverse(value: Element) -> Element:
@@ -223,6 +261,7 @@ class _Rows:
     x: Vector
     one: Element  # the right-hand side of the last row
     elements: Mapping[int, ElementEntry]  # by place
+    balances: Mapping[int, Balance]
 
     def visit(self, sums: Sequence[_Sums]) -> None:
         """Give every row to the sums."""
@@ -247,13 +286,48 @@ class _Rows:
 
     def _visited(
         self, row: int, places: Sequence[int], known: Vector
+    ) -> tuple[Element, Element, Element | None, Exponent | None, Element | None]:
+        """Residual, round-off scale and slope of one row, the exponent they share, and `rough`."""
+        exponent: Exponent | None = None
+        if isinstance(self.one, Scaled):
+            if any(place in self.elements for place in places):
+                return *self._with_elements(row, places, known), None
+            known, exponent = aligned(known)
+        balance = self.balances.get(row)
+        if balance is None or balance.own not in places:
+            return *self._row(row, places, known), exponent, None
+        residual, scale, slope, rough = self._balance(balance, places, known)
+        return residual, scale, slope, exponent, rough
+
+    def _balance(
+        self, balance: Balance, places: Sequence[int], known: Vector
+    ) -> tuple[Element, Element, Element | None, Element]:
+        """The row part by part; at last the round-off scale of its own entry."""
+        own = known[places.index(balance.own)]
+        slope: Element | None = None
+        residual: Element = 0.0
+        scale: Element = 0.0
+        for place, item in zip(places, known, strict=True):
+            rate = self.slopes[place]
+            if rate is not None:
+                slope = rate * item if slope is None else slope + rate * item
+            if place == balance.own:
+                continue
+            term = self.entries[place] * (item - own if place in balance.across else item)
+            residual = residual + term
+            scale = scale + abs(term)
+        for place in balance.across.difference(places):  # a voltage that is always zero
+            term = -self.entries[place] * own
+            residual, scale = residual + term, scale + abs(term)
+        if balance.leak is not None:
+            term = balance.leak.at(self.s) * own
+            residual, scale = residual + term, scale + abs(term)
+        rough = _ROUND_OFF * abs(self.entries[balance.own] * own)
+        return residual, _ROUND_OFF * scale, slope, rough
+
+    def _with_elements(
+        self, row: int, places: Sequence[int], known: Vector
     ) -> tuple[Element, Element, Element | None, Exponent | None]:
-        """Residual, round-off scale and slope of one row, and the exponent they share."""
-        if not isinstance(self.one, Scaled):
-            return *self._row(row, places, known), None
-        if not any(place in self.elements for place in places):
-            unknowns, exponent = aligned(known)
-            return *self._row(row, places, unknowns), exponent
         assert row < self.numbers.size - 1, "what is driven is no element of a two-port"
         entries, slopes = (
             [items[place] for place in places] for items in (self.entries, self.slopes)

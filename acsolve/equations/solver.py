@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
+from functools import cache, partial
 from math import pi
 from typing import Any
 
@@ -15,6 +16,7 @@ from acsolve.algebra.fronts import Fronts
 from acsolve.algebra.lu import needed_steps
 from acsolve.algebra.plan import Plan, plan_elimination
 from acsolve.algebra.route import Route, choose_route
+from acsolve.equations.balance import Balance, balances
 from acsolve.equations.evaluate import Evaluator
 from acsolve.equations.numeric import Numbers, numbers
 from acsolve.equations.precise import Local, Precise
@@ -46,6 +48,7 @@ class Solver:
     observed: tuple[Functional, ...]
     precise: Precise
     route: Route
+    balances: Callable[[], Mapping[int, Balance]]  # rows to be checked part by part
 
     def solve(self, hertz: Array) -> Solution:
         """Answers at frequencies in hertz, shape (points,), each checked.
@@ -131,17 +134,20 @@ class Solver:
         self, plan: Plan, hertz: Array, wanted: Array, fronts: Fronts | None = None
     ) -> Iterator[tuple[Array, Replayed]]:
         """Solve some points, block by block; those out of a double's range with powers of two."""
-        length = _block_length(plan, fronts)
+        length, balances = _block_length(plan, fronts), self.balances()
         for start in range(0, len(wanted), length):
             here = wanted[start : start + length]
             s = 2j * pi * hertz[here]
-            plain = replay(self.numbers, plan, self.observed, s, fronts=fronts)
+            plain = replay(self.numbers, plan, self.observed, s, fronts=fronts, balances=balances)
             yield here, plain
             size = np.abs(plain.mantissa)
             inside = (size > 1 / _RANGE) & (size < _RANGE) | (plain.error == 0)
             beyond = np.flatnonzero(~inside.all(axis=0))
             if len(beyond):
-                yield here[beyond], replay_scaled(self.numbers, plan, self.observed, s[beyond])
+                yield (
+                    here[beyond],
+                    replay_scaled(self.numbers, plan, self.observed, s[beyond], balances=balances),
+                )
 
     def _point_by_point(self, hertz: Array, failing: Array, arrays: dict[str, Array]) -> None:
         zeros = 0
@@ -201,7 +207,8 @@ def prepare(
         lambda: numbers(system, driven, balls(), places=places),
         tuple(observed),
     )
-    return Solver(entries, plan, tuple(observed), precise, route)
+    by_parts = cache(partial(balances, system, entries, values))
+    return Solver(entries, plan, tuple(observed), precise, route, by_parts)
 
 
 _GENERIC = np.array([0.0137, 13.7, 13.7e3, 13.7e6])  # hertz, where nothing better is known

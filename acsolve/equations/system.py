@@ -70,13 +70,14 @@ class Law:
 class System:
     """B(s)·x = 0 with one equation fewer than unknowns; see the module's text.
 
-    `positions` maps an unknown's text (`V(out)`, `I(L1)`) to its column, `balances` a
-    node to its law.
+    `positions` maps an unknown's text (`V(out)`, `I(L1)`) to its column, `diagonals` the law of
+    a node's current balance to the column of its voltage.
     """
 
     unknowns: tuple[Unknown, ...]
     laws: tuple[Law, ...]
     positions: Mapping[str, int]
+    diagonals: Mapping[int, int]
     groups: Groups
     drive: Pair | None
 
@@ -319,6 +320,7 @@ def _finish(board: _Board, drive: Pair | None) -> System:
         unknowns=tuple(board.unknowns),
         laws=laws,
         positions=board.positions,
+        diagonals={row: board.voltages[node] for node, row in board.balances.items()},
         groups=board.groups,
         drive=drive,
     )
