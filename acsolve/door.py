@@ -527,8 +527,8 @@ class Circuit:
         Raises
         ------
         AcsolveError
-            an `ask` line does not fit the circuit. A question that has no answer is told in
-            the note, with its reason.
+            an `ask` line does not fit the circuit; [option.value] a day that does not exist.
+            A question that has no answer is told in the note, and in its `problems`.
 
         Examples
         --------
@@ -536,7 +536,7 @@ class Circuit:
         >>> circuit = acsolve.parse("in -- R1 -- out -- C1 -- gnd")
         >>> note = circuit.note()
         >>> note, note.html()[:15]
-        (Note('Untitled circuit': 11 sections), '<!DOCTYPE html>')
+        (Note('Untitled circuit': 12 sections), '<!DOCTYPE html>')
         """
         from acsolve import __version__
         from acsolve.report.note.note import make_note

@@ -289,7 +289,7 @@ class Path:
             form,
             level=wanted,
             reference=counted,
-            formula=self._formula(form, _checked_degree(degree)),
+            formula=self._formula(form, max(_checked_degree(degree), _WRITTEN_ORDER)),
             band=edges,
             degree=degree,
         )
@@ -402,7 +402,8 @@ class Path:
         ------
         AnalysisError
             [question.unknown-name], [question.no-reference], [question.no-value],
-            [equations.not-rational], [sweep.band]; [option.value] the answer does not depend
+            [equations.not-rational], [sweep.band]; [equations.budget] the peak is the reference
+            and the order above 8; [option.value] the answer does not depend
             on the value, or the degree is none.
 
         Examples
@@ -575,6 +576,7 @@ class Path:
 
 
 _LARGEST_FORMULA = 2_000  # terms; the closed form of a larger network is no longer read
+_WRITTEN_ORDER = 6  # up to here the corners of a response are looked for in closed form
 
 
 def _checked_degree(degree: Any) -> int:

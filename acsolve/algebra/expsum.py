@@ -47,13 +47,18 @@ class ExponentialSum:
         self._known: dict[int, Expansion] = {}
         self._guard = 0  # bits that are lost in the products of many poles
 
+    def __reduce__(self) -> tuple[Any, ...]:
+        """Pickled as the ratio alone: expansions are worked out again where they are needed."""
+        return ExponentialSum, (self.ratio,)
+
     def expansion(self) -> Expansion:
         """Partial fractions at the precision in force or better."""
         bits = next((item for item in _PRECISIONS if item >= working_bits() + 16), _PRECISIONS[-1])
         while bits not in self._known:
             with precision(bits + self._guard):
                 found = expand(self.ratio)
-            if self._guard >= _MOST_GUARD or _sharp(found, bits):
+                sharp = _sharp(found, bits)  # radii would be rounded up at less precision
+            if self._guard >= _MOST_GUARD or sharp:
                 self._known[bits] = found
             else:
                 self._guard = 2 * self._guard or bits

@@ -13,7 +13,8 @@ from acsolve.algebra.crossing import Crossings
 from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.grid import HertzBand
 from acsolve.analyses.magnitude import Exact, Magnitude, ReferenceName, magnitude
-from acsolve.analyses.passband import FrequencyBand, bands
+from acsolve.analyses.passband import BandForms, FrequencyBand, bands
+from acsolve.analyses.roll_off import RollOff, roll_off
 from acsolve.codes import Code
 from acsolve.errors import AnalysisError, Diagnostic
 from acsolve.shown import Shown
@@ -115,7 +116,10 @@ class CutoffAnswer(Shown):
     `complete` is True where it is proven that none is missing. `remarks` say in words
     what a reader must know (no crossing, say, or when a closed form holds). `searched` is
     the band in hertz that all of it speaks of; None where that is every frequency. `form` is
-    None where the network is too large for one. `bands` lie between neighbouring cutoffs.
+    None where the network is too large for one. `bands` lie between neighbouring cutoffs;
+    `band_forms` are width, centre and Q of a lone one in closed form, where there is one.
+    `roll_off` tells corners and slopes of the asymptotes, of all frequencies; None where
+    they are not known.
     """
 
     form: ClosedForm | None
@@ -128,6 +132,8 @@ class CutoffAnswer(Shown):
     searched: tuple[float, float] | None = None
     remarks: tuple[str, ...] = ()
     bands: tuple[FrequencyBand, ...] = ()
+    band_forms: BandForms | None = None
+    roll_off: RollOff | None = None
 
 
 def cutoffs(
@@ -148,8 +154,8 @@ def cutoffs(
     reference : `dc`, `infinity`, `peak` or a stated gain; by default chosen by the shape:
         dc where H(0) is finite and not zero and H tends to 0, infinity in the mirror case,
         the peak where both ends are zero, the larger end where neither is.
-    formula : the same question with its parts as symbols, to give numeric cutoffs their
-        closed form.
+    formula : the same question with its parts as symbols, to give numeric cutoffs and
+        corners their closed form.
     degree : closed forms are written up to this degree in ω², four at most.
     band : only there. A rational form is answered for every frequency without one, any other
         over a band from its own time scales.
@@ -180,13 +186,23 @@ def cutoffs(
     if form.symbols:
         from acsolve.analyses.cutoff_formula import symbolic_cutoffs
 
-        return symbolic_cutoffs(form, level=level, reference=reference, degree=degree)
-    found = _numeric(form, level=level, reference=reference)
-    if formula is not None and formula.symbols and formula.rational:
+        found = symbolic_cutoffs(form, level=level, reference=reference, degree=degree)
+        return replace(found, roll_off=roll_off(form))
+    found = replace(
+        _numeric(form, level=level, reference=reference), roll_off=roll_off(form, formula)
+    )
+    if formula is not None and _solvable(formula, degree):
         from acsolve.analyses.cutoff_formula import with_formulas
 
         found = with_formulas(found, formula, level=level, reference=reference, degree=degree)
     return found if band is None else _within(found, band)
+
+
+def _solvable(formula: ClosedForm, degree: int) -> bool:
+    """Whether the cutoffs of a form over symbols can have a closed form at all."""
+    if not formula.rational or not formula.symbols:
+        return False
+    return all(len(part) <= degree + 1 for part in formula.coefficients())
 
 
 def _not_rational(
@@ -244,15 +260,14 @@ def _numeric(
     if basis.exact is None or level.exact is None:
         method = "root isolation by Descartes' rule of signs over enclosed coefficients"
     remarks = () if crossings.found or not crossings.complete else _why_none(size, basis, level)
-    listed = tuple(
-        _cutoff(item.value, item.rises) for item in crossings.found if item.rises is not None
-    )
+    crossed = [item for item in crossings.found if item.rises is not None]
+    listed = tuple(_cutoff(item.value, item.rises) for item in crossed)
     return CutoffAnswer(
         form=form,
         reference=basis.shown,
         level_db=level.db,
         cutoffs=listed,
-        bands=bands(listed, size),
+        bands=bands(listed, size, [item.value for item in crossed]),
         touches=tuple(_touch(item.value) for item in crossings.found if item.rises is None),
         complete=crossings.complete,
         method=method if crossings.complete else method + ", undecided at 4096 bits",
@@ -298,6 +313,18 @@ def _reference(size: Magnitude, asked: ReferenceName | Fraction | None) -> _Basi
     gain = sqrt(_float(size.ball(squared)))
     shown = Reference(at=name, gain=gain, hertz=0.0 if name == "dc" else None)
     return _Basis(shown, lambda: size.ball(squared), squared)
+
+
+def reference_of(size: Magnitude, asked: ReferenceName | Fraction | None) -> Reference:
+    """The reference of a form with numbers, its gain and where that is.
+
+    Raises
+    ------
+    AnalysisError
+        [question.no-reference].
+    """
+    with precision(_BITS):
+        return _reference(size, asked).shown
 
 
 def _by_shape(size: Magnitude, low: Exact | None, high: Exact | None) -> ReferenceName:

@@ -2,22 +2,24 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from itertools import zip_longest
+from itertools import pairwise, zip_longest
 from typing import Any
 
 from acsolve.algebra.ring import Polynomial
+from acsolve.analyses.band_formula import band_forms, edges_hold, edges_of, half_width
 from acsolve.analyses.closed_form import ClosedForm, evaluate_polynomial, generator_numbers
 from acsolve.analyses.cutoff import Cutoff, CutoffAnswer, CutoffLevel, Direction, Reference
 from acsolve.analyses.level_ring import sign_for_positive, with_level
 from acsolve.analyses.magnitude import ReferenceName, squared_magnitude
 from acsolve.analyses.radicals import radicals, values
-from acsolve.analyses.shape import natural_frequency, rooted
+from acsolve.analyses.shape import natural_frequency
 from acsolve.codes import Code
 from acsolve.equations.evaluate import Evaluator, FloatArithmetic
 from acsolve.equations.grouping import Writer
-from acsolve.equations.phrase import product, root, total
+from acsolve.equations.phrase import total
 from acsolve.errors import AnalysisError, Diagnostic
 
 USUAL_DEGREE = 2
@@ -72,6 +74,7 @@ def symbolic_cutoffs(
     if formulas is None:
         raise _no_formula(degree)
     conditions = dict.fromkeys(item.condition for item in formulas if item.condition)
+    _, equation = _equation(form, level, reference)
     return CutoffAnswer(
         form=form,
         reference=shown,
@@ -89,6 +92,7 @@ def symbolic_cutoffs(
         complete=True,
         method="closed form of the squared-magnitude equation in ω²",
         remarks=tuple(conditions),
+        band_forms=None if equation is None else band_forms(equation),
     )
 
 
@@ -125,7 +129,8 @@ def with_formulas(
     evaluate = formula.evaluator(FloatArithmetic())
     numbers = [(_number(item, equation.form, evaluate), item.text) for item in formulas]
     named = tuple(replace(item, closed_form=_matching(item, numbers)) for item in answer.cutoffs)
-    return replace(answer, cutoffs=named)
+    lone = len(answer.bands) == 1 and len(answer.cutoffs) == 2
+    return replace(answer, cutoffs=named, band_forms=band_forms(equation) if lone else None)
 
 
 def _matching(cutoff: Cutoff, numbers: list[tuple[float | None, str]]) -> str | None:
@@ -240,11 +245,24 @@ def _solve(equation: Equation) -> list[Formula]:
         return _first_degree(equation, write)
     if len(poly) == 3:
         return _second_degree(equation, write)
-    condition = "the roots hold where they are real and positive"
+    condition = _radicals_hold(signs)
     return [
         Formula(f"sqrt({item.text})", poly, item.branch, condition, None)
         for item in radicals(write, poly)
     ]
+
+
+def _radicals_hold(signs: Sequence[int]) -> str:
+    """When roots of third and fourth degree hold: by Descartes' rule of signs, as far as it goes.
+
+    It says nothing where the parts decide on a coefficient's sign, 0 in `signs`.
+    """
+    if 0 not in signs and sum(a != b for a, b in pairwise(signs)) == 1:
+        return (
+            f"of the {len(signs) - 1} roots one is real and positive whatever the positive "
+            "parts: that one holds, at this one crossing"
+        )
+    return "the roots hold where they are real and positive"
 
 
 def _away(starts_above: bool | None) -> Direction | None:
@@ -291,24 +309,14 @@ def _apart(equation: Equation, write: Writer) -> list[Formula] | None:
     With a = α², c = γ² and αγ > 0 the sum of both ω has the square (2αγ - b)/α², their
     difference (-2αγ - b)/α²: the edges of a band.
     """
-    from flint.utils.flint_exceptions import DomainError
-
+    edges = edges_of(equation)
+    if edges is None:
+        return None
     form, (c, b, a) = equation.form, equation.coefficients
-    try:
-        alpha, gamma = a.sqrt(), c.sqrt()
-    except DomainError:
-        return None
-    signs = sign_for_positive(form, alpha), sign_for_positive(form, gamma)
-    if 0 in signs:
-        return None
-    alpha, gamma = alpha * signs[0], gamma * signs[1]
-    narrow, wide = -2 * alpha * gamma - b, 2 * alpha * gamma - b
-    if sign_for_positive(form, narrow) < 0:
+    if sign_for_positive(form, edges.narrow) < 0:
         return []
-    condition = None
-    if sign_for_positive(form, narrow) == 0 and _square(narrow) is None:
-        condition = f"the edges hold where {write.grouped(narrow)} >= 0"
-    half = [_half(write, item, 2 * alpha) for item in (wide, narrow)]
+    condition = edges_hold(equation, edges, write)
+    half = [half_width(write, item, 2 * edges.alpha) for item in (edges.wide, edges.narrow)]
     first = _away(equation.starts_above)
     second: Direction | None = {"falling": "rising", "rising": "falling"}.get(first or "")  # type: ignore[assignment]
     return [
@@ -317,28 +325,17 @@ def _apart(equation: Equation, write: Writer) -> list[Formula] | None:
     ]
 
 
-def _square(polynomial: Polynomial) -> Polynomial | None:
-    from flint.utils.flint_exceptions import DomainError
-
-    try:
-        return polynomial.sqrt()
-    except DomainError:
-        return None
-
-
-def _half(write: Writer, inside: Polynomial, below: Polynomial) -> Any:
-    """sqrt(inside)/below as a phrase."""
-    outer, inner = rooted(inside)
-    pieces = write.pieces(outer, below)
-    return product([*pieces.top, root(write.grouped(inner))], pieces.bottom)
-
-
 def _number(item: Formula, form: ClosedForm, evaluate: Evaluator) -> float | None:
-    """The root as a number, None where it is not real and positive."""
+    """The root as a number, None where it is not real and positive, or beyond doubles."""
     arithmetic = FloatArithmetic()
     points = generator_numbers(_all_of(form, item.coefficients), evaluate, arithmetic)
-    numbers = [float(evaluate_polynomial(value, points, arithmetic)) for value in item.coefficients]
-    x = values(numbers)[item.branch]
+    try:
+        numbers = [
+            float(evaluate_polynomial(value, points, arithmetic)) for value in item.coefficients
+        ]
+        x = values(numbers)[item.branch]
+    except OverflowError:
+        return None
     if x is None or abs(x.imag) > _AGREES * abs(x) or x.real <= 0:
         return None
     return float(x.real**0.5)

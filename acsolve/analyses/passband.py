@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from fractions import Fraction
 from itertools import pairwise
 from math import pi, sqrt
 from typing import TYPE_CHECKING, Literal
@@ -21,17 +22,19 @@ class FrequencyBand:
     centre : the geometric mean of the edges; `q` is centre over bandwidth.
     extremum : where the gain is largest in a pass band, smallest in a stop band; None where
         it is not known.
+    bandwidth : the width where it is known better than as a difference of two doubles.
     """
 
     kind: Literal["pass", "stop"]
     low: float
     high: float
     extremum: float | None = None
+    bandwidth: float | None = None
 
     @property
     def width(self) -> float:
         """The bandwidth."""
-        return self.high - self.low
+        return self.high - self.low if self.bandwidth is None else self.bandwidth
 
     @property
     def centre(self) -> float:
@@ -44,15 +47,34 @@ class FrequencyBand:
         return self.centre / self.width if self.width else None
 
 
-def bands(cutoffs: Sequence[Cutoff], size: Magnitude | None = None) -> tuple[FrequencyBand, ...]:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BandForms:
+    """A lone band in closed form, as texts SymPy reads: angular frequencies, and Q.
+
+    `condition` says when they hold, None where they always do.
+    """
+
+    width: str
+    centre: str
+    q: str
+    condition: str | None = None
+
+
+def bands(
+    cutoffs: Sequence[Cutoff], size: Magnitude | None = None, exact: Sequence[Fraction] = ()
+) -> tuple[FrequencyBand, ...]:
     """The bands of some cutoffs in rising order; `size` locates their extrema exactly.
+
+    `exact` are the same cutoffs as ω², for the width of narrow bands.
 
     The pass band below a first falling cutoff and that above a last rising one are none:
     they have one edge.
     """
+    known = [_width(*edges) for edges in pairwise(exact)]
+    widths: Sequence[float | None] = known or [None] * len(cutoffs)
     pairs = [
-        (first.hertz, second.hertz, first.direction == "rising")
-        for first, second in pairwise(cutoffs)
+        (first.hertz, second.hertz, first.direction == "rising", width)
+        for (first, second), width in zip(pairwise(cutoffs), widths, strict=False)
         if first.hertz is not None
         and second.hertz is not None
         and first.direction != second.direction
@@ -64,9 +86,21 @@ def bands(cutoffs: Sequence[Cutoff], size: Magnitude | None = None) -> tuple[Fre
             low=low,
             high=high,
             extremum=_extremum(places, low, high, largest=rises),
+            bandwidth=width,
         )
-        for low, high, rises in pairs
+        for low, high, rises, width in pairs
     )
+
+
+def _width(low: Fraction, high: Fraction) -> float:
+    """sqrt(high) - sqrt(low) in hertz; it errs by what the edges do, 2**-60 of them."""
+    from flint import arb, fmpq
+
+    from acsolve.algebra.ball import precision
+
+    with precision(256):
+        first, second = (arb(fmpq(x.numerator, x.denominator)) for x in (low, high))
+        return float(((second - first) / (first.sqrt() + second.sqrt()) / (2 * arb.pi())).mid())
 
 
 def _stationary(size: Magnitude) -> Sequence[tuple[float, float]]:

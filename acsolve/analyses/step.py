@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any
 
@@ -47,7 +47,7 @@ class Mode:
     weights: tuple[complex, ...]
 
 
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False, repr=False)
 class StepAnswer(Shown):
     """A response in time with its figures; arrays are read-only.
 
@@ -86,7 +86,15 @@ class StepAnswer(Shown):
     checked: Checked | None
     remarks: tuple[str, ...] = ()
     steady: SteadySine | None = None
-    curve: ExponentialSum | None = field(default=None, repr=False)
+    curve: ExponentialSum | None = None
+
+    def __repr__(self) -> str:
+        """What it is of and its figures; curve and modes are left out."""
+        shown = {"final_value": self.final_value, "settling_s": self.settling_s}
+        shown |= {"rise_s": self.rise_s, "delay_s": self.delay_s, "overshoot": self.overshoot}
+        told = [f"{name}={value:.6g}" for name, value in shown.items() if value is not None]
+        points = 0 if self.seconds is None else len(self.seconds)
+        return f"StepAnswer({', '.join([self.drive.kind, *told, f'points={points}'])})"
 
     @property
     def rise_s(self) -> float | None:

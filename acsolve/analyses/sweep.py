@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from acsolve.analyses.beside import STEP, beside_roots, is_suspect
 from acsolve.analyses.ladder_phase import Ladder, ladder_of
 from acsolve.analyses.modes import landmarks
 from acsolve.analyses.phase import at, at_zero_hertz, below, continuous, nearest, track
@@ -64,6 +65,9 @@ class Sweep(Shown):
     error : estimated relative error of `value`.
     settled : whether the number of turns in `phase_deg` is confirmed everywhere.
     placed : how the points were placed, where they were not named; None where they were.
+    beside : 1 where a zero, -1 where a pole lies within the rounding of the frequency, else 0:
+        value, phase and delays, right as they are, tell of that rounding only. None where it
+        was not looked at.
 
     Phase and delays are not a number at a zero or pole; delays also where they are infinite.
     """
@@ -78,6 +82,29 @@ class Sweep(Shown):
     error: Array
     settled: bool
     placed: Placement | None = None
+    beside: NDArray[np.int8] | None = None
+
+    def as_meant(self) -> Sweep:
+        """The same with what `beside` says: 0 or infinite there, and no phase or delay.
+
+        For tables at 1/(2·pi·sqrt(L·C)) and the like, where a reader means the zero itself.
+        """
+        if self.beside is None or not self.beside.any():
+            return self
+        zero, pole = self.beside > 0, self.beside < 0
+
+        def changed(column: Array, at_zero: complex, at_pole: complex) -> Array:
+            return frozen(np.where(zero, at_zero, np.where(pole, at_pole, column)))
+
+        nan = np.nan
+        return replace(
+            self,
+            value=changed(self.value, 0, complex(np.inf, 0)),
+            gain_db=changed(self.gain_db, -np.inf, np.inf),
+            phase_deg=changed(self.phase_deg, nan, nan),
+            phase_delay_s=changed(self.phase_delay_s, nan, nan),
+            group_delay_s=changed(self.group_delay_s, nan, nan),
+        )
 
     def unusual(self) -> dict[str, int]:
         """How many points were not answered at the first try, by status."""
@@ -121,8 +148,19 @@ def sweep(netlist: Netlist, ask: Ask, hertz: ArrayLike) -> Sweep:
     refuse_nowhere(solution)
     phase, settled = _phase(netlist, ask, solver, solution, ordered)
     columns = columns_of(ordered, solution, phase)
+    columns["beside"] = _beside(solver, solution, ordered)
     arrays = {name: frozen(column[back].reshape(shape)) for name, column in columns.items()}
     return Sweep(settled=settled, placed=None, **arrays)
+
+
+def _beside(solver: Solver, solution: Solution, hertz: Array) -> Array:
+    """`Sweep.beside`; only where the slope raises a suspicion a point near by is solved."""
+    found = np.zeros(len(hertz), dtype=np.int8)
+    near = np.flatnonzero(is_suspect(solution.slope[0], 2 * np.pi * hertz))
+    if len(near):
+        moved = solver.solve(hertz[near] * (1 + STEP)).value()[0]
+        found[near] = beside_roots(solution.value()[0, near], moved)
+    return found
 
 
 def response(

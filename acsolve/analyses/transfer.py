@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from decimal import Decimal
 
 from acsolve.algebra.cofactor import OverBudgetError
 from acsolve.algebra.ring import Polynomial, cancel
@@ -135,7 +136,7 @@ def _refuse_early(
     if budget is not None and _each_its_own_symbol(netlist, exact):
         count = exact.coefficient_sum(driven) + exact.coefficient_sum(observed)
         if count > budget:
-            raise over_budget(f"{count:,}" if count < 10**9 else f"{count:.3g}", budget)
+            raise over_budget(_roughly(count), budget)
 
 
 _PASSIVE = frozenset(
@@ -150,6 +151,14 @@ def _each_its_own_symbol(netlist: Netlist, exact: ExactSystem) -> bool:
     valued = [part for part in netlist.parts if "value" in part.values]
     free = set(exact.basis.free_names)
     return all(len(part.values) == 1 and part.name in free for part in valued)
+
+
+def _roughly(count: int) -> str:
+    """A number of terms as words; of one beyond reading its size: `about 4 * 10^12`."""
+    if count < 10**9:
+        return f"{count:,}"
+    mantissa, exponent = f"{Decimal(count):.0e}".lower().split("e")
+    return f"about {mantissa} * 10^{int(exponent)}"
 
 
 def over_budget(size: str, budget: int) -> EquationError:

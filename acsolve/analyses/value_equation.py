@@ -11,6 +11,8 @@ from acsolve.analyses.closed_form import ClosedForm
 from acsolve.analyses.cutoff import HALF_POWER, CutoffLevel, no_reference
 from acsolve.analyses.level_ring import with_level
 from acsolve.analyses.magnitude import Magnitude, ReferenceName, magnitude
+from acsolve.circuit.expression import Name
+from acsolve.equations.exact import Basis
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -27,20 +29,47 @@ class WantedCutoff:
     degree: int = 2
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PartValue:
+    """One value, in SI units, that answers.
+
+    `closed_form` gives it over the other parts and the wanted angular frequency, for SymPy;
+    `condition` says when that is real and positive, None where it always is. `value` is None
+    over symbols. `gain_error` is how far the gain that the numeric engine finds with this
+    value is from the wanted one, relative.
+    """
+
+    value: float | None
+    closed_form: str | None
+    condition: str | None = None
+    gain_error: float | None = None
+
+
+def place_of(basis: Basis, name: str) -> int | None:
+    """The place of a name among the generators."""
+    places = (at for at, item in enumerate(basis.generators) if item.leaf == Name(name))
+    return next(places, None)
+
+
 def condition_for(
     form: ClosedForm, name: str, level: CutoffLevel, reference: ReferenceName | Fraction | None
-) -> tuple[ReferenceName, tuple[ClosedForm, Polynomial]]:
-    """The reference, and level·reference²·|D|² - |N|² over the form's basis, s being x = ω²."""
+) -> tuple[ReferenceName, tuple[ClosedForm, Polynomial] | None]:
+    """The reference, and level·reference²·|D|² - |N|² over the form's basis, s being x = ω².
+
+    None where the reference is a peak whose gain has no closed form (see `value_peak`).
+    """
     form, above, below = with_level(form, level)
     size = magnitude(form)
     at, pair = _reference(size, name, reference)
+    if pair is None:
+        return at, None
     difference = size.bottom * pair[0] * above - size.top * pair[1] * below
     return at, (form, form.basis.ring.reduced(difference))
 
 
 def _reference(
     size: Magnitude, name: str, asked: ReferenceName | Fraction | None
-) -> tuple[ReferenceName, tuple[Polynomial, Polynomial]]:
+) -> tuple[ReferenceName, tuple[Polynomial, Polynomial] | None]:
     constant = size.form.basis.ring.constant
     if isinstance(asked, Fraction):
         if asked == 0:
@@ -49,10 +78,7 @@ def _reference(
     low, high = size.at_zero(), size.at_infinity()
     chosen = asked or _by_shape(name, low, high)
     if chosen == "peak":
-        pair = band_pass_peak(size.form)
-        if pair is None:
-            raise no_reference(f"the gain at the peak is no closed form of {name}")
-        return "peak", pair
+        return "peak", band_pass_peak(size.form)
     end = low if chosen == "dc" else high
     if end is None or end[0] == 0:
         where = "0 Hz" if chosen == "dc" else "infinite frequency"

@@ -48,6 +48,7 @@ def answer_forms(kind: Literal["transfer", "impedance"], options: Options) -> in
                 roots=_roots(item, found, options),
                 readings=options.readings,
                 approximations=_approximations(item, options),
+                equivalent=_equivalent(item, options),
             )
         ]
 
@@ -71,6 +72,21 @@ def _approximations(item: Asked, options: Options) -> tuple[Any, ...]:
     if options.share is not None:
         found.append(item.path.simplify(options.band or "", within=options.share))
     return tuple(found)
+
+
+def _equivalent(item: Asked, options: Options) -> Any:
+    """Thévenin and Norton equivalents where --equivalent asks for them, numbers where --at does."""
+    from acsolve.report.entry import EquivalentSet
+
+    if not options.equivalent:
+        return None
+    circuit, pair = item.path.circuit, item.path.ask.target
+    forms = circuit.equivalent(pair, symbolic=options.symbolic, keep=options.kept)
+    if options.at is None:
+        return EquivalentSet(forms=forms)
+    hertz = circuit.frequencies(options.at)
+    sweep = circuit.equivalent(pair, hertz=hertz)
+    return EquivalentSet(forms=forms, hertz=tuple(hertz.ravel().tolist()), sweep=sweep)
 
 
 def symbolic_twin(item: Asked, found: Any) -> Any:

@@ -31,6 +31,7 @@ class Options:
     symbolic: bool = False
     keep: str | None = None
     nested: bool = False
+    equivalent: bool = False
     budget: str | None = None
     form: str | None = None
     assume: tuple[str, ...] = ()
@@ -169,6 +170,9 @@ _TABLE = {
     "keep": _option("--keep", "R1,C1", "only these stay symbols"),
     "nested": _option("--nested", None, "as named steps, short for large networks"),
     "budget": _option("--budget", "TERMS", "most terms to multiply out, four million"),
+    "equivalent": _option(
+        "--equivalent", None, "Thévenin and Norton besides, of the file's own sources"
+    ),
     "form": _option("--form", "NAMES", ", ".join(READINGS)),
     "assume": _option(
         "--assume", "'R2 >> R1'", "leading order only; may be repeated", multiple=True

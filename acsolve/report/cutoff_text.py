@@ -3,17 +3,19 @@
 from __future__ import annotations
 
 import re
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from acsolve.report.entry import Entry, unit_sign
 from acsolve.report.json import cutoff_names
-from acsolve.report.number import angular, decibels, engineering, plain
+from acsolve.report.number import HALF_POWER_DB, angular, decibels, engineering, plain
 from acsolve.report.table import labelled
 from acsolve.report.transfer_text import checked_rows
 
 if TYPE_CHECKING:
     from acsolve.analyses.cutoff import Cutoff, CutoffAnswer
     from acsolve.analyses.passband import FrequencyBand
+    from acsolve.analyses.roll_off import RollOff
 
 _PLACES = {
     "dc": "at 0 Hz",
@@ -21,8 +23,9 @@ _PLACES = {
     "peak": "at the peak",
     "stated": "as stated",
 }
-_HALF_POWER = -3.0102999566398120
 _LONGEST_FORMULA = 400
+_CORNERS_SHOWN = 6
+_LONGEST_CORNER = 64  # characters of a closed form beside its number
 
 
 def cutoff_lines(entry: Entry) -> list[str]:
@@ -40,6 +43,7 @@ def cutoff_lines(entry: Entry) -> list[str]:
         rows.append(("touches", f"{where}, meets the level without crossing it"))
     for band in found.bands:
         rows += _band_rows(band)
+    rows += [*_band_form_rows(entry, found), *_corner_rows(entry, found)]
     rows.append(("complete", _proof(found)))
     rows += [("remark", readable(entry, remark)) for remark in found.remarks]
     return labelled([*rows, *(checked_rows(found.form) if found.form is not None else ())])
@@ -56,7 +60,7 @@ def _reference(found: CutoffAnswer, unit: str) -> str:
 
 
 def _level(found: CutoffAnswer, unit: str) -> str:
-    half = abs(found.level_db - _HALF_POWER) < 1e-12
+    half = abs(found.level_db - HALF_POWER_DB) < 1e-12
     words = f"half power, {decibels(found.level_db)}" if half else decibels(found.level_db)
     gain = found.reference.gain
     if gain is None:
@@ -85,6 +89,58 @@ def _band_rows(item: FrequencyBand) -> list[tuple[str, str]]:
     if item.extremum is not None:
         word = "peak" if item.kind == "pass" else "deepest"
         rows.append(("", f"{word} at {engineering(item.extremum, 'Hz')}"))
+    return rows
+
+
+def _band_form_rows(entry: Entry, found: CutoffAnswer) -> list[tuple[str, str]]:
+    """Width, centre and quality factor of a lone band in closed form."""
+    forms = found.band_forms
+    if forms is None:
+        return []
+    width, centre, q = (readable(entry, text) for text in (forms.width, forms.centre, forms.q))
+    if max(map(len, (width, centre, q))) > _LONGEST_FORMULA:
+        return []
+    label = "" if found.bands else "band"
+    return [
+        (label, f"width w = {width}, centre w = {centre}, in rad/s"),
+        ("", f"Q = {q}"),
+    ]
+
+
+def _corner_rows(entry: Entry, found: CutoffAnswer) -> list[tuple[str, str]]:
+    """Corners of the asymptotes with the slopes on either side."""
+    tail = found.roll_off
+    if tail is None:
+        return []
+    low, high = tail.ends_db
+    if tail.slopes_db is None:
+        ends = f"{low} dB/decade towards 0 Hz, {high} dB/decade towards infinite frequency"
+        return [*_corner_form_rows(entry, tail), ("slopes", ends)]
+    if not tail.corners:
+        return [("slope", f"{low} dB/decade throughout")] if low else []
+    if len(tail.corners) > _CORNERS_SHOWN:
+        first, last = (engineering(tail.corners[k].hertz or 0.0, "Hz") for k in (0, -1))
+        words = f"{len(tail.corners)} from {first} to {last}, slope {low} to {high} dB/decade"
+        return [("corners", words), ("", "--json gives all of them")]
+    rows = []
+    for corner, slopes in zip(tail.corners, pairwise(tail.slopes_db), strict=True):
+        place = engineering(corner.hertz or 0.0, "Hz")
+        rows.append(("corner", f"{place}, slope {slopes[0]} to {slopes[1]} dB/decade"))
+        if corner.closed_form is not None and len(corner.closed_form) <= _LONGEST_CORNER:
+            number = angular(corner.rad_per_s or 0.0)
+            rows.append(("", f"w = {readable(entry, corner.closed_form)} = {number}"))
+    return rows
+
+
+def _corner_form_rows(entry: Entry, tail: RollOff) -> list[tuple[str, str]]:
+    rows = []
+    for corner in tail.corners:
+        text = readable(entry, corner.closed_form or "")
+        if len(text) > _LONGEST_FORMULA:
+            text = "a long closed form, see --json"
+        rows.append(("corner", f"w = {text}, slope {corner.change_db:+d} dB/decade above"))
+        if corner.condition is not None and len(corner.condition) <= _LONGEST_FORMULA:
+            rows.append(("", f"where {readable(entry, corner.condition)}"))
     return rows
 
 

@@ -12,6 +12,7 @@ if TYPE_CHECKING:
     from acsolve.analyses.check import CheckAnswer
     from acsolve.analyses.cutoff import CutoffAnswer
     from acsolve.analyses.equations import Equations
+    from acsolve.analyses.equivalent import Equivalent
     from acsolve.analyses.family import Setting
     from acsolve.analyses.pole_record import PoleAnswer
     from acsolve.analyses.port_answer import PortAnswer
@@ -55,13 +56,23 @@ class Heading:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class EquivalentSet:
+    """The equivalents of a pair in closed form and, where it was asked, at frequencies."""
+
+    forms: Equivalent
+    hertz: tuple[float, ...] = ()
+    sweep: Equivalent | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Entry:
     """One answer. Exactly the field that its kind names is filled.
 
     `formula` is the same question with every part a symbol, where that is small: it gives
     the numbers of a standard form their formulas. `roots` tell of its poles, zeros and
     stability. `readings` name the shapes the form is
-    written in besides, `approximations` go with it, `verified` with a sweep.
+    written in besides, `approximations` go with it, `verified` with a sweep. `equivalent`
+    goes with an impedance.
     `over` says which member of a family a sweep is.
     """
 
@@ -73,6 +84,7 @@ class Entry:
     roots: PoleAnswer | None = None
     readings: tuple[str, ...] = ()
     approximations: tuple[Approximation, ...] = ()
+    equivalent: EquivalentSet | None = None
     cutoff: CutoffAnswer | None = None
     part_value: ValueAnswer | None = None
     sweep: Sweep | None = None

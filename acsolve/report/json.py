@@ -16,7 +16,6 @@ if TYPE_CHECKING:
     from acsolve.analyses.closed_form import Checked, ClosedForm
     from acsolve.analyses.cutoff import CutoffAnswer
     from acsolve.analyses.nested import NestedForm
-    from acsolve.analyses.passband import FrequencyBand
     from acsolve.analyses.proof import Verification
     from acsolve.analyses.sweep import Placement
     from acsolve.analyses.transfer import TransferAnswer
@@ -123,7 +122,14 @@ def _closed_form(entry: Entry) -> dict[str, Any]:
         **_described(entry),
         **_readings(entry),
         **_approximations(entry),
+        **_equivalent(entry),
     }
+
+
+def _equivalent(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.equivalent_text import equivalent_body
+
+    return {} if entry.equivalent is None else equivalent_body(entry.equivalent)
 
 
 def _described(entry: Entry) -> dict[str, Any]:
@@ -253,52 +259,6 @@ def closed_form_check(checked: Checked) -> dict[str, Any]:
     }
 
 
-def _cutoff(entry: Entry) -> dict[str, Any]:
-    found: CutoffAnswer = _filled(entry.cutoff)
-    return {
-        "reference": {
-            "at": found.reference.at,
-            "gain": number(found.reference.gain),
-            "hertz": number(found.reference.hertz),
-        },
-        "level_db": number(found.level_db),
-        "cutoffs": [
-            {
-                "hertz": number(item.hertz),
-                "rad_per_s": number(item.rad_per_s),
-                "closed_form": item.closed_form,
-                "direction": item.direction,
-                "condition": item.condition,
-            }
-            for item in found.cutoffs
-        ],
-        "bands": [_band(item) for item in found.bands],
-        "touches": [
-            {"hertz": number(item.hertz), "rad_per_s": number(item.rad_per_s)}
-            for item in found.touches
-        ],
-        "complete": found.complete,
-        "method": found.method,
-        "searched_hertz": None if found.searched is None else list(found.searched),
-        "remarks": list(found.remarks),
-        "checked": None if found.form is None else _checked(found.form),
-        "symbols": replaced_names(cutoff_names(entry)),
-    }
-
-
-def _band(item: FrequencyBand) -> dict[str, Any]:
-    """A band between two cutoffs; its centre is the geometric mean of the edges."""
-    return {
-        "kind": item.kind,
-        "low_hertz": number(item.low),
-        "high_hertz": number(item.high),
-        "bandwidth_hertz": number(item.width),
-        "centre_hertz": number(item.centre),
-        "extremum_hertz": number(item.extremum),
-        "q": number(item.q),
-    }
-
-
 def cutoff_names(entry: Entry) -> dict[str, str]:
     """Name -> safe name, for the names that the closed forms of the cutoffs hold."""
     from acsolve.equations.naming import safe_names
@@ -306,7 +266,12 @@ def cutoff_names(entry: Entry) -> dict[str, str]:
     found: CutoffAnswer = _filled(entry.cutoff)
     if found.form is None:
         return {}
-    held = {word for item in found.cutoffs for word in _WORD.findall(item.closed_form or "")}
+    corners = () if found.roll_off is None else found.roll_off.corners
+    texts = [item.closed_form or "" for item in found.cutoffs]
+    texts += [item.closed_form or "" for item in corners]
+    if found.band_forms is not None:
+        texts += [found.band_forms.width, found.band_forms.centre, found.band_forms.q]
+    held = {word for text in texts for word in _WORD.findall(text)}
     names = found.form.symbols or tuple(found.form.values)
     return {name: safe for name, safe in safe_names(names).items() if safe in held}
 
@@ -420,6 +385,12 @@ def _equations(entry: Entry) -> dict[str, Any]:
         "references": list(found.references),
         "symbols": replaced_names(names),
     }
+
+
+def _cutoff(entry: Entry) -> dict[str, Any]:
+    from acsolve.report.cutoff_json import cutoff_body
+
+    return cutoff_body(entry)
 
 
 def _step(entry: Entry) -> dict[str, Any]:

@@ -11,7 +11,8 @@ from acsolve.report.number import decibels, engineering, plain
 from acsolve.report.table import labelled
 
 if TYPE_CHECKING:
-    from acsolve.analyses.value_for import PartValue, ValueAnswer
+    from acsolve.analyses.value_equation import PartValue
+    from acsolve.analyses.value_for import ValueAnswer
 
 _PLACES = {
     "dc": "the gain at 0 Hz",

@@ -72,7 +72,16 @@ def transfer_lines(entry: Entry) -> list[str]:
         "",
         *labelled(rows),
         *approximation_lines(entry),
+        *_equivalent_lines(entry),
     ]
+
+
+def _equivalent_lines(entry: Entry) -> list[str]:
+    from acsolve.report.equivalent_text import equivalent_lines
+
+    if entry.equivalent is None:
+        return []
+    return equivalent_lines(entry.equivalent, entry.heading.columns)
 
 
 def limit_words(limit: Limit, unit: str) -> str:

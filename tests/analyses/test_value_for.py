@@ -127,7 +127,6 @@ def test_impossible_is_said():
         ("R1", {"cutoff": "1 kHz, 2 kHz"}, "sweep.band"),
         ("R1", {"degree": 5}, "option.value"),
         ("R1", {"reference": "infinity"}, "question.no-reference"),
-        ("R1", {"reference": "peak"}, "question.no-reference"),
     ],
 )
 def test_what_cannot_be_answered_is_refused(name, more, code):

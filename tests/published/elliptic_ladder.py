@@ -1,10 +1,12 @@
-"""Elliptic low-pass ladders of odd order, computed from the theory to 60 digits.
+"""Elliptic low-pass networks computed from the theory to 60 digits, as parts of our format.
 
-Zeros of attenuation and of reflection from Jacobi's sn (W. Cauer, 1931; R. W. Daniels,
-Approximation Methods for Electronic Filter Design, 1974, chapter 5), the ladder by Darlington's
-impedance and the removal of one attenuation pole after the other (S. Darlington, J. Math.
-Phys. 18 (1939)): a shunt capacitor shifts a zero of the impedance to the pole that is wanted,
-a parallel resonator in series takes it out.
+Darlington's impedance (S. Darlington, J. Math. Phys. 18 (1939)) between a source of 1 ohm and a
+load, and one notch after the other taken out of it. Where a zero of transmission lies at
+infinity, a shunt capacitor shifts a zero of the impedance to the notch and a parallel resonator
+in series takes it out. Where none does (plain prototypes of even order), it is a section of
+O. Brune, J. Math. Phys. 10 (1931): a coil X/ω in series, positive or not, makes the impedance
+zero at the notch, a shunt series resonator takes that out, and a second coil follows; the three
+coils are two perfectly coupled ones, here one coil across an ideal transformer.
 """
 
 from __future__ import annotations
@@ -12,128 +14,126 @@ from __future__ import annotations
 from dataclasses import dataclass
 from fractions import Fraction
 
-import mpmath
+from acsolve.circuit.netlist import Part
+from tests.strategies import C, L, R, part
 
-MP = mpmath.mp.clone()
-MP.dps = 80
+from .elliptic_theory import MP, Characteristic, added, divided, product, trimmed
 
 
 @dataclass(frozen=True)
 class EllipticLadder:
-    """Shunt capacitors, and between them resonators (L, C) in series; source and load 1 ohm."""
+    """Shunt capacitors, and between them resonators (L, C) in series; the source has 1 ohm.
+
+    `last` is a coil before the load where the order is even.
+    """
 
     shunts: tuple[Fraction, ...]
     resonators: tuple[tuple[Fraction, Fraction], ...]
-    zeros: tuple[float, ...]
-    stop_db: float
+    last: Fraction | None
+    load: Fraction
+
+    def parts(self) -> list[Part]:
+        """From node `in` to node `out`."""
+        nodes = [f"n{k}" for k in range(len(self.shunts))]
+        if self.last is None:
+            nodes[-1] = "out"
+        found = [R("R0", "in", nodes[0], 1), R("RL", "out", "gnd", self.load)]
+        found += [C(f"C{k}", nodes[k], "gnd", item) for k, item in enumerate(self.shunts)]
+        for k, (coil, capacitor) in enumerate(self.resonators):
+            found.append(L(f"L{k}", nodes[k], nodes[k + 1], coil))
+            found.append(C(f"D{k}", nodes[k], nodes[k + 1], capacitor))
+        return found if self.last is None else [*found, L("L", nodes[-1], "out", self.last)]
+
+    def elements(self) -> list[float]:
+        """In the order of the tables: shunt, then coil and capacitor in series, and so on."""
+        found = []
+        for shunt, resonator in zip(self.shunts, self.resonators, strict=False):
+            found += [float(shunt), *map(float, resonator)]
+        found += [float(item) for item in self.shunts[len(self.resonators) :]]
+        return found if self.last is None else [*found, float(self.last)]
 
 
-def elliptic_ladder(order: int, ripple_db: float, modulus: float) -> EllipticLadder:
-    """The ladder with its band edge at 1 rad/s and its stop band from 1/modulus on."""
-    k = MP.mpf(modulus)
-    quarter = MP.ellipk(k**2)
-    steps = [2 * j * quarter / order for j in range(1, (order + 1) // 2)]
-    reflected = [MP.ellipfun("sn", step, m=k**2).real for step in steps]
-    notches = [1 / (k * value) for value in reflected]
-    odd = _product(reflected, shift=True)  # s·prod(s² + r²)
-    top = _product(notches)  # prod(s² + n²)
-    at_edge = abs(MP.polyval(odd[::-1], 1j) / MP.polyval(top[::-1], 1j))
-    ripple = MP.sqrt(MP.mpf(10) ** (MP.mpf(ripple_db) / 10) - 1)
-    factor = ripple / at_edge
-    reflection = [factor * value for value in odd]
-    stop = abs(MP.polyval(reflection[::-1], 1j / k) / MP.polyval(top[::-1], 1j / k))
-    hurwitz = _left_half(top, reflection)
-    above = _added(hurwitz, reflection)
-    below = _added(hurwitz, [-value for value in reflection])
-    while abs(below[-1]) < MP.mpf(10) ** -60:
-        below.pop()
-    shunts, resonators = _removed(above, below, notches)
+def elliptic_ladder(theory: Characteristic, *, turned: bool = False) -> EllipticLadder:
+    """The ladder of an odd order, or of an even one whose highest notch is at infinity.
+
+    `turned` takes the notches out in the other order.
+    """
+    top, bottom = _immittance(theory)
+    shunts, resonators = [], []
+    for notch in _ordered(theory.notches, turned=turned):
+        place = MP.mpc(0, notch)
+        shunt = (_at(top, place) / _at(bottom, place) / place).real
+        shunts.append(_fraction(shunt))
+        rest = added(top, [MP.mpf(0), *bottom], -shunt)
+        # Z = bottom/rest has a pole at the notch: Z = s·a/(s² + n²) + what is left
+        quotient = divided(rest, product([notch**2]))
+        a = (_at(bottom, place) / (place * _at(quotient, place))).real
+        resonators.append((_fraction(a / notch**2), _fraction(1 / a)))
+        left = added(bottom, [MP.mpf(0), *quotient], -a)
+        top, bottom = quotient, divided(left, product([notch**2]))
+    top, bottom = trimmed(top), trimmed(bottom)
+    shunt = top[-1] / bottom[-1]
+    shunts.append(_fraction(shunt))
+    rest = trimmed(added(top, [MP.mpf(0), *bottom], -shunt))
+    if len(bottom) == 1:
+        return EllipticLadder(
+            tuple(shunts), tuple(resonators), None, _fraction(bottom[0] / rest[0])
+        )
     return EllipticLadder(
-        shunts, resonators, tuple(map(float, notches)), float(10 * MP.log10(1 + stop**2))
+        tuple(shunts),
+        tuple(resonators),
+        _fraction(bottom[1] / rest[0]),
+        _fraction(bottom[0] / rest[0]),
     )
 
 
-def _product(values, *, shift: bool = False) -> list:
-    """prod(s² + v²), times s with `shift`, by rising power."""
-    whole = [MP.mpf(1)]
-    for value in values:
-        whole = _multiplied(whole, [value**2, MP.mpf(0), MP.mpf(1)])
-    return [MP.mpf(0), *whole] if shift else whole
+def brune_parts(theory: Characteristic) -> list[Part]:
+    """A plain prototype of even order as a row of Brune sections, from `in` to `out`."""
+    bottom, top = _immittance(theory)  # Z = top/bottom
+    nodes = [*(f"n{k}" for k in range(len(theory.notches))), "out"]
+    found = [R("R0", "in", nodes[0], 1)]
+    for k, notch in enumerate(theory.notches):
+        place = MP.mpc(0, notch)
+        first = (_at(top, place) / _at(bottom, place) / place).real
+        rest = added(top, [MP.mpf(0), *bottom], -first)
+        # Y = bottom/rest has a pole at the notch: Y = s·a/(s² + n²) + what is left
+        quotient = divided(rest, product([notch**2]))
+        a = (_at(bottom, place) / (place * _at(quotient, place))).real
+        shunt = 1 / a
+        left = added(bottom, [MP.mpf(0), *quotient], -a)
+        following = -first * shunt / (first + shunt)  # perfectly coupled
+        bottom = trimmed(divided(left, product([notch**2])))
+        top = trimmed(added(quotient, [MP.mpf(0), *bottom], -following))
+        found += _section(k, nodes[k], nodes[k + 1], first + shunt, shunt)
+        found.append(C(f"C{k}", f"m{k}", "gnd", _fraction(a / notch**2)))
+    return [*found, R("RL", "out", "gnd", _fraction(top[0] / bottom[0]))]
 
 
-def _multiplied(first, second) -> list:
-    total = [MP.mpf(0)] * (len(first) + len(second) - 1)
-    for i, a in enumerate(first):
-        for j, b in enumerate(second):
-            total[i + j] += a * b
-    return total
-
-
-def _added(first, second) -> list:
-    size = max(len(first), len(second))
+def _section(place: int, near: str, far: str, coil, shared) -> list[Part]:
+    """Two perfectly coupled coils that meet at a node m: what they share is `shared`."""
+    middle, ratio = f"m{place}", _fraction(coil / shared)
     return [
-        (first[k] if k < len(first) else MP.mpf(0)) + (second[k] if k < len(second) else MP.mpf(0))
-        for k in range(size)
+        L(f"L{place}", near, middle, _fraction(coil)),
+        part(f"T{place}", "transformer", near, middle, far, middle, ratio=ratio),
     ]
 
 
-def _mirrored(values) -> list:
-    return [value * (-1) ** power for power, value in enumerate(values)]
+def _immittance(theory: Characteristic) -> tuple[list, list]:
+    """(E + F)/(E - F), an admittance with a pole at infinity where the ladder has one."""
+    above = trimmed(added(theory.hurwitz, theory.reflection))
+    below = trimmed(added(theory.hurwitz, theory.reflection, -1))
+    return above, below
 
 
-def _left_half(top, reflection) -> list:
-    """The polynomial E with E(s)·E(-s) = N(s)·N(-s) + F(s)·F(-s), roots on the left."""
-    whole = _added(_multiplied(top, _mirrored(top)), _multiplied(reflection, _mirrored(reflection)))
-    roots = MP.polyroots(whole[::-1], maxsteps=500, extraprec=800)
-    left = [root for root in roots if root.real < 0]
-    found = [MP.mpc(1)]
-    for root in left:
-        found = _multiplied(found, [-root, MP.mpc(1)])
-    scale = MP.sqrt(abs(whole[-1]))
-    return [scale * value.real for value in found]
+def _at(values, place):
+    return MP.polyval(values[::-1], place)
 
 
-def _removed(above, below, notches) -> tuple[tuple, tuple]:
-    """Elements of the impedance above/below, its pole at infinity in an odd branch."""
-    admittance = (above, below)  # the dual of Darlington's impedance: a shunt comes first
-    shunts, resonators = [], []
-    for notch in _ordered(notches):
-        place = MP.mpc(0, notch)
-        top, bottom = admittance
-        value = MP.polyval(top[::-1], place) / MP.polyval(bottom[::-1], place)
-        shunt = (value / place).real
-        shunts.append(_fraction(shunt))
-        rest = _added(top, [-shunt * item for item in [MP.mpf(0), *bottom]])
-        # Z = bottom/rest has a pole at the notch: Z = s·a/(s² + n²) + what is left
-        quotient = _divided(rest, [notch**2, MP.mpf(0), MP.mpf(1)])
-        a = (MP.polyval(bottom[::-1], place) / (place * MP.polyval(quotient[::-1], place))).real
-        resonators.append((_fraction(a / notch**2), _fraction(1 / a)))
-        left = _divided(
-            _added(bottom, [-a * item for item in [MP.mpf(0), *quotient]]),
-            [notch**2, MP.mpf(0), MP.mpf(1)],
-        )
-        admittance = (quotient, left)
-    top, bottom = admittance
-    last = top[-1] / bottom[-1] if len(top) > len(bottom) else top[1] / bottom[0]
-    shunts.append(_fraction(last))
-    return tuple(shunts), tuple(resonators)
-
-
-def _ordered(notches) -> list:
+def _ordered(notches, *, turned: bool) -> list:
     """An order in which the elements come out positive: the lowest in the middle."""
     ordered = sorted(notches)
-    return ordered[1::2] + ordered[0::2][::-1]
-
-
-def _divided(values, divisor) -> list:
-    """The quotient; the remainder is rounding."""
-    rest, found = list(values), []
-    for power in range(len(values) - len(divisor), -1, -1):
-        factor = rest[power + len(divisor) - 1] / divisor[-1]
-        found.append(factor)
-        for k, item in enumerate(divisor):
-            rest[power + k] -= factor * item
-    return found[::-1]
+    found = ordered[1::2] + ordered[0::2][::-1]
+    return found[::-1] if turned else found
 
 
 def _fraction(value) -> Fraction:

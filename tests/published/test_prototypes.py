@@ -17,7 +17,6 @@ from acsolve.analyses.pole_record import pole_answer
 from tests.analyses.test_transfer_laws import form_of, gnd
 from tests.strategies import C, L, R, network
 
-from .elliptic_ladder import elliptic_ladder
 from .prototype_tables import BESSEL, BUTTERWORTH, CHEBYSHEV_3_DB, CHEBYSHEV_HALF_DB
 
 MP = mpmath.mp.clone()
@@ -179,34 +178,6 @@ def test_bessel_elements_from_the_continued_fraction(order):
         value / wanted[0] for value in wanted
     ]
     assert distance(form, signal.besselap(order, norm="delay")[1]) < 1e-12
-
-
-@pytest.mark.parametrize("order", [3, 5, 7, 9])
-@pytest.mark.parametrize(("ripple", "modulus"), [(0.1, 0.5), (0.5, 0.7), (1.0, 0.9)])
-def test_elliptic_ladders(order, ripple, modulus):
-    """Ladders computed from Jacobi's functions: poles and zeros of the elliptic prototype."""
-    made = elliptic_ladder(order, ripple, modulus)
-    parts = [R("R0", "in", "n0", 1)]
-    for k, (coil, capacitor) in enumerate(made.resonators):
-        parts += [
-            C(f"C{k}", f"n{k}", "gnd", made.shunts[k]),
-            L(f"L{k}", f"n{k}", f"n{k + 1}", coil),
-            C(f"D{k}", f"n{k}", f"n{k + 1}", capacitor),
-        ]
-    end = len(made.resonators)
-    parts += [C(f"C{end}", f"n{end}", "gnd", made.shunts[end]), R("RL", f"n{end}", "gnd", 1)]
-    assert all(value > 0 for value in made.shunts)
-    form = form_of(network(*parts), gnd("in"), gnd(f"n{end}"))
-    assert form is not None
-    zeros, poles, _ = signal.ellipap(order, ripple, made.stop_db)
-    assert distance(form, poles) < 1e-12
-    found = pole_answer(form)
-    assert found.zeros is not None
-    assert found.stability is not None
-    assert found.stability.verdict == "stable"
-    ours = sorted(item.value.imag for item in found.zeros.roots)
-    assert all(item.value.real == 0 for item in found.zeros.roots)
-    assert ours == pytest.approx(sorted(np.imag(zeros)), rel=1e-12)
 
 
 def test_the_tables_fall_and_rise_as_they_must():
