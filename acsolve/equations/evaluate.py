@@ -208,6 +208,9 @@ class Evaluator:
         self._values = values
         self._arithmetic = arithmetic
         self._known: dict[str, Scalar] = dict(overrides or {})
+        self._turned = {  # sources, whose values are phasors
+            name.removesuffix(_ANGLE) for name in values if name.endswith(_ANGLE)
+        }
 
     def __call__(self, expression: Expression, s: Scalar | None = None) -> Scalar:
         """The number an expression stands for at complex frequency s (rad/s).
@@ -258,8 +261,7 @@ class Evaluator:
         if known is not None:
             return known
         expression = self._expression(name)
-        if isinstance(expression, Number) and angle_name(name) not in self._values:
-            # as nearly every value is
+        if type(expression) is Number and name not in self._turned:  # as nearly every value is
             found = self._known[name] = self._arithmetic.number(expression.value)
             return found
         for item in in_order(name, self._expression, self._known):
@@ -274,7 +276,7 @@ class Evaluator:
 
     def _number(self, name: str) -> Scalar:
         number = self(self._expression(name))
-        if angle_name(name) in self._values:  # a source: its phasor
+        if name in self._turned:
             return number * self._arithmetic.rotation(self.name(angle_name(name)))
         return number
 
@@ -318,7 +320,10 @@ def in_order(
 
 def angle_name(source: str) -> str:
     """The name under which a source's angle, in degrees, is referred to."""
-    return f"{source}.angle"
+    return source + _ANGLE
+
+
+_ANGLE = ".angle"
 
 
 def no_value(names: tuple[str, ...]) -> EquationError:

@@ -22,12 +22,11 @@ from acsolve.circuit.expression import (
     MINUS_ONE,
     ONE,
     Expression,
-    Frequency,
     Name,
-    Number,
     PortElement,
     Product,
     Quotient,
+    S,
     Sum,
 )
 from acsolve.circuit.netlist import Netlist, Part, bindings
@@ -298,16 +297,15 @@ class _Reader:
             found = self.known[key] = self._read(expression)
         return found  # type: ignore[return-value]
 
-    def _read(self, expression: Expression) -> tuple[Scalar, ...] | None:
-        match expression:  # the first three are nearly all there is
-            case Product(left, right) if left is MINUS_ONE:
-                inner = self(right)
-                return None if inner is None else tuple([-item for item in inner])
-            case Product(Frequency(), Name(name)):
-                return 0.0, self.evaluate.name(name)
-            case Quotient(Number() as top, Name(name)):
-                above = self.one if top is ONE else self.evaluate(top)
-                return (above / self.evaluate.name(name),)
+    def _read(self, expression: Any) -> tuple[Scalar, ...] | None:
+        kind = type(expression)  # these three are nearly all there is
+        if kind is Product and expression.left is MINUS_ONE:
+            inner = self(expression.right)
+            return None if inner is None else tuple([-item for item in inner])
+        if kind is Product and expression.left is S and type(expression.right) is Name:
+            return 0.0, self.evaluate.name(expression.right.name)
+        if kind is Quotient and expression.left is ONE and type(expression.right) is Name:
+            return (self.one / self.evaluate.name(expression.right.name),)
         return polynomial_in_s(expression, self.evaluate)
 
 

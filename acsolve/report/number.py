@@ -6,6 +6,7 @@ from decimal import Decimal
 from math import floor, inf, isfinite, isnan, log10, pi
 
 DIGITS = 6
+HALF_POWER_DB = -3.0102999566398120
 
 #: Power of ten -> SI prefix of the text format, so that output can be typed back in.
 _PREFIXES = {
@@ -21,22 +22,31 @@ _PREFIXES = {
     12: "T",
 }
 _SMALLEST, _LARGEST = min(_PREFIXES), max(_PREFIXES)
+_ROUND = 1e-12  # relative difference below which a number is the rounded one
 _SMALLEST_NORMAL = 1e-300  # below it 10**exponent itself loses digits
 
 
-def plain(value: float | Decimal, digits: int = DIGITS) -> str:
-    """A number without a unit: `0.805153`, `1.2e-5`, `infinite`; a decimal is of any size."""
+def goes_on(value: float, digits: int) -> bool:
+    """Whether a number has more digits than these: zeros at its end are then digits, too."""
+    return isfinite(value) and abs(float(f"{value:.{digits - 1}e}") - value) > _ROUND * abs(value)
+
+
+def plain(value: float | Decimal, digits: int = DIGITS, *, even: bool = False) -> str:
+    """A number without a unit: `0.805153`, `1.2e-5`, `infinite`; a decimal is of any size.
+
+    With `even`, zeros fill up the digits.
+    """
     if isinstance(value, Decimal):
         mantissa, exponent = f"{value:.{digits - 1}e}".lower().split("e")
         return f"{mantissa.rstrip('0').rstrip('.')}e{int(exponent)}"
     odd = _odd(value)
     if odd is not None:
         return odd
-    text = f"{value:.{digits}g}"
+    text = f"{value:#.{digits}g}" if even else f"{value:.{digits}g}"
     if "e" not in text:
-        return "0" if text == "-0" else text
+        return "0" if text == "-0" else text.removesuffix(".")
     mantissa, exponent = text.split("e")
-    return f"{mantissa}e{int(exponent)}"
+    return f"{mantissa.removesuffix('.')}e{int(exponent)}"
 
 
 def engineering(value: float, unit: str, digits: int = DIGITS, *, even: bool = False) -> str:
@@ -46,7 +56,7 @@ def engineering(value: float, unit: str, digits: int = DIGITS, *, even: bool = F
     With `even`, zeros fill up the digits, so that a column of numbers lines up.
     """
     if not unit:
-        return plain(value, digits)
+        return plain(value, digits, even=even)
     odd = _odd(value)
     if odd is not None:
         return odd
@@ -54,7 +64,7 @@ def engineering(value: float, unit: str, digits: int = DIGITS, *, even: bool = F
         return f"0 {unit}"
     mantissa, power = _scaled(value, digits)
     if power not in _PREFIXES:
-        return f"{plain(value, digits)} {unit}"
+        return f"{plain(value, digits, even=even)} {unit}"
     if even:
         whole = len(mantissa.lstrip("-").split(".")[0])
         mantissa = f"{float(mantissa):.{max(0, digits - whole)}f}"

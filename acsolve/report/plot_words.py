@@ -56,7 +56,11 @@ def settle(axes: Axes) -> None:
     """Lay the figure out once and for all, so that places in pixels are known."""
     figure = axes.get_figure(root=True)
     assert figure is not None, "axes that are laid out belong to a figure"
-    figure.draw_without_rendering()
+    engine = figure.get_layout_engine()
+    if engine is not None:  # drawing everything for the sake of the layout costs twice as much
+        engine.execute(figure)
+    for each in figure.axes:
+        each.apply_aspect()
     figure.set_layout_engine("none")
 
 

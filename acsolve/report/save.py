@@ -63,6 +63,11 @@ def _unfit(name: str, kind: Kind) -> Diagnostic | None:
             message=f"{name} has {what}, and {_with_article(kind)} is saved as {_listed(known)}",
             hint=f"Name a file such as answer.{known[0]}.",
         )
+    return _unwritable(name)
+
+
+def _unwritable(name: str) -> Diagnostic | None:
+    """Why nothing can be written there; None where it can."""
     target = Path(os.path.realpath(name))
     if target.exists() and not target.is_file():
         return _failed(name, "it is not a plain file", "Name another file.")
@@ -107,6 +112,10 @@ def write_all(contents: Iterable[tuple[str, bytes]]) -> None:
         [save.failed] the disk is full, or the folder went away; no file is left half-written.
     """
     waiting: list[tuple[Path, Path]] = []
+    contents = list(contents)
+    problems = [found for name, _ in contents if (found := _unwritable(name)) is not None]
+    if problems:
+        raise AnalysisError(problems)
     try:
         for name, content in contents:
             target = Path(os.path.realpath(name))

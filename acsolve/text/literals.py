@@ -157,11 +157,13 @@ def _with_unit(number: Fraction, word: str, measure: Measure) -> Meaning:
 
 def _number(text: str, scale: int) -> Fraction | Fault:
     """A plain number with an optional power of ten, times 10^scale."""
+    whole, _, decimals = text.partition(".")
+    digits = whole + decimals
+    if digits.isdigit():  # no power of ten
+        return _decimal(int(digits), scale - len(decimals))
     match = _NUMBER.fullmatch(text)
     assert match is not None, "the scanner lets only numbers through"
     whole, decimals, power = match.groups(default="")
-    if not power:
-        return _decimal(int(whole + decimals), scale - len(decimals))
     if abs(int(power)) > limits.EXPONENT:
         return Fault(
             "limit.exponent",

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import json
 import re
-import subprocess
 from hashlib import sha256
 from shutil import which
 from xml.etree import ElementTree as ET
@@ -13,7 +12,7 @@ import pytest
 
 import acsolve
 from tests.report.browser import PROGRAM, measured
-from tests.report.note_reader import CIRCUITS, NAMES, Page, latex_problems, note
+from tests.report.note_reader import CIRCUITS, NAMES, Page, latex_problems, note, typeset
 
 HOSTILE = "<script>alert(1)</script> & \\input{x} 50% $x$ a_b #1 ^~{} ünï 測定 |c| `d` [e](f)"
 
@@ -101,6 +100,7 @@ def test_all_headings_in_a_reviewers_order():
     assert titles == [
         "Purpose",
         "Schematic",
+        "Key results",
         "Parts",
         "Assumptions",
         "Voltage ratio from (in, gnd) to (out, gnd)",
@@ -123,6 +123,14 @@ def _hostile() -> acsolve.Circuit:
         f"caution {json.dumps(HOSTILE, ensure_ascii=False)}\n"
         "in -- R1 = 1 kohm -- out -- C1 = 1 uF -- gnd\nask transfer from in to out\n"
     )
+
+
+_PART, _NODE = "R" + "long_name_" * 6, "node_" + "a" * 55
+LONG_NAMES = acsolve.parse(
+    f"{_NODE}_in -- {_PART} = 1 kohm -- {_NODE} -- C{'c' * 59} = 1 uF -- gnd\n"
+    f"{_NODE} -- L{'d' * 59} = 1 mH -- gnd\n"
+    f"ask transfer from {_NODE}_in to {_NODE}\nask cutoff from {_NODE}_in to {_NODE}\n"
+)
 
 
 def test_hostile_words_stay_words():
@@ -185,39 +193,37 @@ def test_a_question_without_an_answer_is_told():
 
 
 @pytest.mark.skipif(which("pdflatex") is None, reason="no TeX is installed")
-@pytest.mark.parametrize("name", [*NAMES, "hostile"])
+@pytest.mark.parametrize("name", [*NAMES, "hostile", "long names"])
 def test_latex_compiles(name, tmp_path):
     """The LaTeX compiles as it stands, and no line sticks out of the page by much."""
-    text = (_hostile().note(date=HOSTILE) if name == "hostile" else note(name)).latex()
-    (tmp_path / "note.tex").write_text(text, encoding="utf-8")
-    done = subprocess.run(  # noqa: S603
-        [
-            which("pdflatex"),
-            "-interaction=batchmode",
-            "-halt-on-error",
-            "-no-shell-escape",
-            "note.tex",
-        ],
-        cwd=tmp_path,
-        capture_output=True,
-        timeout=60,
-        check=False,
-    )
-    log = (tmp_path / "note.log").read_text(encoding="utf-8", errors="replace")
-    assert done.returncode == 0, log[-2000:]
-    sizes = [float(size) for size in re.findall(r"Overfull \\hbox \(([\d.]+)pt", log)]
-    assert max(sizes, default=0.0) < 15
+    hard = {"hostile": _hostile, "long names": lambda: LONG_NAMES}
+    made = hard[name]().note(date=HOSTILE) if name in hard else note(name)
+    assert typeset(made.latex(), tmp_path) < 15
+
+
+def _as_printed(page: str) -> str:
+    """The page with its rules for paper in force; a frame as wide as the paper's text shows it."""
+    assert page.count("@media print {") == 1
+    return page.replace("@media print {", "@media all {")
+
+
+_NARROW = 400
+_PAPER = {"A4": 673, "Letter": 695}  # pixels of the text's width: 210 and 215.9 mm, less 32 mm
 
 
 @pytest.mark.skipif(PROGRAM is None, reason="no Chromium is installed")
 def test_a_browser_shows_every_formula_within_the_page(tmp_path):
-    """In Chromium: no console message, no request, no flat formula, nothing too wide."""
+    """On a narrow screen and on paper: no console message, no request, nothing flat or too wide."""
     pages = {name: note(name).html() for name in NAMES}
     pages["hostile"] = _hostile().note().html()
-    found, console = measured(pages, (400, 794), tmp_path)
-    assert console == []
-    assert len(found) == 2 * len(pages)
-    for place, item in found.items():
+    pages["long names"] = LONG_NAMES.note().html()
+    found, console = measured(pages, (_NARROW,), tmp_path)
+    printed = {name: _as_printed(page) for name, page in pages.items()}
+    on_paper, more = measured(printed, tuple(_PAPER.values()), tmp_path)
+    assert console + more == []
+    assert len(found) == len(pages)
+    assert len(on_paper) == 2 * len(pages)
+    for place, item in (*found.items(), *on_paper.items()):
         assert item["maths"] > 3, place
         assert item["flat"] == 0, place
         assert item["requests"] == 0, place

@@ -22,6 +22,8 @@ from acsolve.report.note.formula.tree import (
     Power,
     Product,
     Ratio,
+    Row,
+    Sign,
     Symbol,
     Total,
     split_name,
@@ -230,3 +232,32 @@ def test_numbers_in_words():
     assert ratio(1.5e-7) == "1.5·10⁻⁷"
     assert decibels(-3.0103) == "−3.01\u00a0dB"
     assert decibels(float("-inf")) == "−∞\u00a0dB"
+
+
+def test_quotients_of_quotients_share_one_line():
+    """a/b/c stands as a over b·c, and one over a value times another as a fraction."""
+    a, b, c = map(Symbol, "abc")
+    assert read_formula("a/b/c") == Ratio(a, Product((b, c)))
+    assert read_formula("1/b/c*a") == Ratio(a, Product((b, c)))
+    assert read_formula("1/b*(a + c)") == Ratio(Total(((False, a), (False, c))), b)
+
+
+@pytest.mark.parametrize("sign", ["=", "+", "-", "||"])
+def test_a_sign_at_a_start_keeps_its_distance(sign):
+    """Behind a break the sign is written as one between two sides; a browser would not know."""
+    text = math_element(Row((Sign(sign), Symbol("a"))))
+    assert text.count("<mo") == 1
+    assert 'form="infix" lspace="0" rspace="0.2' in text
+
+
+def test_a_minus_that_takes_off_nothing_is_a_prefix():
+    """`= −a`: the minus belongs to what follows."""
+    text = math_element(Row((Sign("="), Sign("-"), Symbol("a"))))
+    assert '<mo form="prefix">−</mo>' in text
+
+
+def test_names_wider_than_a_screen_are_made_small():
+    """There is no operator to break at; anything narrower keeps its size."""
+    assert "font-size" not in math_element(Symbol("R1"))
+    (text,) = [x for x in math_element(Symbol("x" * 80)).split('"') if x.startswith("font-size")]
+    assert 0.25 <= float(text.removeprefix("font-size:").removesuffix("em")) < 0.5

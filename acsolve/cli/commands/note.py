@@ -3,12 +3,18 @@
 from __future__ import annotations
 
 import sys
+from typing import TYPE_CHECKING
 
+from acsolve import AnalysisError
 from acsolve.cli.asking import heading, open_circuit
+from acsolve.cli.complaint import report
 from acsolve.cli.deliver import refuse_unfit
 from acsolve.cli.options import OUTPUT, VALUES, Options, make_command, refused
 from acsolve.cli.progress import progress
-from acsolve.cli.status import ANSWERED
+from acsolve.cli.status import ANSWERED, NO_ANSWER, is_of_the_call
+
+if TYPE_CHECKING:
+    from acsolve.report.note.note import Note
 
 
 def work(options: Options) -> int:
@@ -25,8 +31,12 @@ def work(options: Options) -> int:
     heading(circuit, options)  # shows its warnings
     with progress("writing the note"):
         found = circuit.note(changes=options.let, date=options.date)
+        if any(map(is_of_the_call, found.problems)):
+            raise AnalysisError(found.problems)
         contents = [(name, found.content(ending(name))) for name in options.save]
     write_all(contents)
+    if found.problems:
+        return _unanswered(found, options)
     if options.as_json:
         sys.stdout.write(found.json())
     elif options.save:
@@ -34,6 +44,18 @@ def work(options: Options) -> int:
     else:
         _write(found.html())
     return ANSWERED
+
+
+def _unanswered(note: Note, options: Options) -> int:
+    """The note says what has no answer, and why; so does standard error."""
+    if options.save:
+        where = sys.stderr if options.as_json else sys.stdout
+        where.write(f"saved {', '.join(options.save)}; not every question has an answer\n")
+    elif not options.as_json:
+        _write(note.html())
+        sys.stdout.flush()
+    report(note.problems, arguments=options.arguments, as_json=options.as_json)
+    return NO_ANSWER
 
 
 def _write(page: str) -> None:

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-from acsolve.report.entry import question_text
+from acsolve.report.entry import pair_text, question_text
 from acsolve.report.note.facts import Chapter, Facts
-from acsolve.report.note.model import Block, Document, Section, say
+from acsolve.report.note.model import Block, Document, Remark, Section, say
 from acsolve.report.note.sections import (
     assumptions,
     closing,
@@ -16,6 +16,8 @@ from acsolve.report.note.sections import (
     parts,
     response,
     result,
+    roots,
+    summary,
     times,
     two_port,
 )
@@ -26,7 +28,7 @@ CHAPTER: tuple[Callable[[Chapter], Section | None], ...] = (
     result.result,
     two_port.two_port,
     result.limits,
-    result.roots,
+    roots.roots,
     loading.loading,
     response.response,
     times.step,
@@ -35,6 +37,7 @@ CHAPTER: tuple[Callable[[Chapter], Section | None], ...] = (
 _BEFORE: tuple[Callable[[Facts], Section | None], ...] = (
     opening.purpose,
     opening.schematic,
+    summary.results,
     parts.parts,
     assumptions.assumptions,
 )
@@ -58,8 +61,16 @@ def build(facts: Facts) -> Document:
 
 def _chapter(chapter: Chapter) -> list[Section]:
     words = question_text(chapter.ask)
+    if chapter.ask.quantity == "two-port":
+        source = chapter.ask.source
+        assert source is not None, "a two-port has two pairs"
+        words = (
+            f"two-port parameters between {pair_text(source)} and {pair_text(chapter.ask.target)}"
+        )
     inner = [found for make in CHAPTER if (found := make(chapter)) is not None]
-    blocks: tuple[Block, ...] = ()
-    if not inner:
+    blocks: tuple[Block, ...] = tuple(
+        Remark(kind="note", words=(f"No answer: {item.message}.",)) for item in chapter.problems
+    )
+    if not inner and not blocks:
         blocks = (say("There is no answer; the reasons stand with the checks."),)
     return [Section(title=f"{words[0].upper()}{words[1:]}", blocks=blocks), *inner]

@@ -22,6 +22,7 @@ from acsolve.report.note.model import (
 from acsolve.report.note.pages import environment, numbered
 
 _LARGE = 5  # columns from which rows are stacked on a narrow screen
+_WHOLE = 16  # rows of a table that no page break parts from its caption
 _HEADS = {"caution": "Caution", "safety": "Safety", "note": "Note"}
 
 
@@ -73,12 +74,15 @@ def _block(block: Block) -> dict[str, Any]:
                 "words": _words(block.words),
             }
         case Formula():
-            return {"kind": "formula", "lines": [_line(line) for line in block.lines]}
+            notes = [_words(words) for words in block.notes] or [None] * len(block.lines)
+            written = [_line(line) for line in block.lines]
+            return {"kind": "formula", "lines": list(zip(written, notes, strict=True))}
         case Table():
             heads = [_plain(words) for words in block.head]
             return {
                 "kind": "table",
                 "class": "stacked" if len(block.head) >= _LARGE else "",
+                "whole": len(block.rows) <= _WHOLE,
                 "caption": block.caption,
                 "head": list(zip(block.sides, map(_words, block.head), strict=True)),
                 "rows": [

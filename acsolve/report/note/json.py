@@ -32,7 +32,8 @@ def note_json(facts: Facts) -> str:
                 for chapter in facts.chapters
                 for what, reason in chapter.refused
             ],
-            "not_answered": list(facts.unanswered),
+            "not_answered": [item.kind for item in facts.unanswered],
+            "not_answered_questions": [item.words for item in facts.unanswered],
             "file": facts.name,
             "sha256": None if facts.text is None else input_hash(facts.text),
             "version": facts.version,
@@ -60,8 +61,7 @@ def _entries(chapter: Chapter, heading: Heading) -> list[Entry]:
     found += [
         Entry(kind="cutoff", heading=heading, ask=ask, cutoff=item) for item in chapter.cutoffs
     ]
-    if chapter.step is not None:
-        found.append(Entry(kind="step", heading=heading, ask=ask, step=chapter.step))
+    found += [Entry(kind="step", heading=heading, ask=ask, step=item) for item in chapter.in_time]
     if chapter.table is not None:
         found.append(Entry(kind="sweep", heading=heading, ask=ask, sweep=chapter.table))
     return found
@@ -91,17 +91,22 @@ def _parts(facts: Facts) -> list[dict[str, Any]]:
 
 def _loading(chapter: Chapter) -> list[dict[str, Any]]:
     found, table = chapter.loading, chapter.table
-    if found is None or table is None or chapter.ask.source is None:
+    if found is None or table is None:
         return []
     sides = {"z_in": found.source_side, "z_out": found.load_side}
     return [
         {
-            "from": list(chapter.ask.source),
+            "from": None if chapter.ask.source is None else list(chapter.ask.source),
             "to": list(chapter.ask.target),
+            "quantity": chapter.ask.quantity,
             "hertz": numbers(table.hertz.tolist()),
             **{
                 key: None if side is None else [complex_number(complex(value)) for value in side]
                 for key, side in sides.items()
             },
+            "ends": [
+                {"part": item.name, "role": item.role, "gain_db": numbers(item.gain_db.tolist())}
+                for item in found.ends
+            ],
         }
     ]

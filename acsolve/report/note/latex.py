@@ -22,6 +22,7 @@ from acsolve.report.note.pages import environment, numbered
 from acsolve.report.note.tex_escape import escape_code, escape_tex
 
 _LINE = 440.0  # points of a line that columns may share
+_LONG = 16.0  # digits of a formula in words that may be wider than its column
 _GAP = 12.0
 _HEADS = {"caution": "Caution", "safety": "Safety", "note": "Note"}
 _COMMANDS = {2: "section", 3: "subsection"}
@@ -47,9 +48,14 @@ def latex_page(document: Document) -> str:
 
 def _words(words: Words) -> str:
     return "".join(
-        f"${tex(item.node).strip()}$" if isinstance(item, Math) else escape_tex(item)
-        for item in words
+        _inline(item.node) if isinstance(item, Math) else escape_tex(item) for item in words
     )
+
+
+def _inline(node: Node) -> str:
+    """A formula in running words; a name as long as a line is made to fit."""
+    text = tex(node).strip()
+    return rf"\notepiece{{{text}}}" if width(node) > _LONG else f"${text}$"
 
 
 def _block(block: Block) -> str:
@@ -59,7 +65,8 @@ def _block(block: Block) -> str:
         case Remark():
             return rf"\noteremark{{{_HEADS[block.kind]}}}{{{_words(block.words)}}}"
         case Formula():
-            return "\n".join(_formula(line) for line in block.lines)
+            notes = block.notes or ((),) * len(block.lines)
+            return "\n".join(map(_formula, block.lines, notes))
         case Table():
             return _table(block)
         case Picture():
@@ -71,9 +78,10 @@ def _block(block: Block) -> str:
             return f"\\begin{{notecode}}\n{escape_code(block.text)}\n\\end{{notecode}}"
 
 
-def _formula(line: Chunks) -> str:
-    chunks = " ".join(rf"$\displaystyle {tex(chunk).strip()}$" for chunk in line)
-    return rf"\noteformula{{{chunks}}}"
+def _formula(line: Chunks, note: Words) -> str:
+    chunks = " ".join(rf"\notepiece{{{tex(chunk).strip()}}}" for chunk in line)
+    meaning = rf" \quad {{\small {_words(note)}}}" if note else ""
+    return rf"\noteformula{{{chunks}{meaning}}}"
 
 
 def _table(block: Table) -> str:

@@ -69,7 +69,11 @@ def _block(block: Block) -> dict[str, Any]:
         case Remark():
             return {"kind": "text", "text": f"> **{_HEADS[block.kind]}.** {_words(block.words)}"}
         case Formula():
-            return {"kind": "text", "text": "\n\n".join(_formula(line) for line in block.lines)}
+            notes = block.notes or ((),) * len(block.lines)
+            pairs = zip(block.lines, notes, strict=True)
+            written = [(_formula(line), _words(note)) for line, note in pairs]
+            texts = [text for pair in written for text in pair if text]
+            return {"kind": "text", "text": "\n\n".join(texts)}
         case Table():
             return {"kind": "text", "text": _table(block)}
         case Picture():

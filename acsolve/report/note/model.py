@@ -17,6 +17,7 @@ class Math:
     node: Node
 
 
+Side: TypeAlias = Literal["left", "right"]
 Inline: TypeAlias = str | Math
 Words: TypeAlias = tuple[Inline, ...]
 
@@ -30,9 +31,13 @@ class Paragraph:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Formula:
-    """Lines of a displayed formula; each may break between its chunks."""
+    """Lines of a displayed formula; each may break between its chunks.
+
+    `notes`, where there are some, has words for each line: what its left side means.
+    """
 
     lines: tuple[Chunks, ...]
+    notes: tuple[Words, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -41,7 +46,7 @@ class Table:
 
     head: tuple[Words, ...]
     rows: tuple[tuple[Words, ...], ...]
-    sides: tuple[Literal["left", "right"], ...]
+    sides: tuple[Side, ...]
     caption: str
 
 
@@ -99,3 +104,9 @@ def say(*words: Inline) -> Paragraph:
 def cell(*words: Inline) -> Words:
     """The words of a cell."""
     return words
+
+
+def right_aligned(columns: int) -> tuple[Side, ...]:
+    """The sides of a table of numbers."""
+    side: Side = "right"
+    return (side,) * columns

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import datetime as dt
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -23,6 +25,20 @@ class Note:
 
     def __repr__(self) -> str:
         return f"Note({self.document.title!r}: {len(self.document.sections)} sections)"
+
+    @property
+    def problems(self) -> tuple[Diagnostic, ...]:
+        """Why questions of the file have no answer; nothing where all are answered."""
+        if not self.facts.chapters:
+            return (
+                Diagnostic(
+                    code="question.no-pair",
+                    message="the circuit has no two nodes to ask about",
+                    hint="Put parts between nodes, such as in -- R1 -- out.",
+                ),
+            )
+        found = (item for chapter in self.facts.chapters for item in chapter.problems)
+        return tuple(dict.fromkeys(found))
 
     def html(self) -> str:
         """One page with MathML and inline SVG; no script, nothing fetched."""
@@ -93,9 +109,32 @@ class Note:
 def make_note(
     circuit: Any, version: str, *, changes: Sequence[str] = (), date: str | None = None
 ) -> Note:
-    """The note of an `acsolve.Circuit`; the rest as `gather` takes it."""
+    """The note of an `acsolve.Circuit`; the rest as `gather` takes it.
+
+    Raises
+    ------
+    AnalysisError
+        [option.value] the date is written as one, and there is no such day.
+    """
+    _check_date(date)
     from acsolve.report.note.build import build
     from acsolve.report.note.gather import gather
 
     facts = gather(circuit, version, changes=changes, date=date)
     return Note(facts, build(facts))
+
+
+def _check_date(date: str | None) -> None:
+    """Refuse a day that the calendar lacks; any other words are shown as they stand."""
+    if date is None or not re.fullmatch(r"\d{4}-\d{2}-\d{2}", date):
+        return
+    try:
+        dt.date.fromisoformat(date)
+    except ValueError as error:
+        raise AnalysisError(
+            Diagnostic(
+                code="option.value",
+                message=f"there is no day {date}",
+                hint="Write year, month and day, such as 2031-04-30, or words of your own.",
+            )
+        ) from error

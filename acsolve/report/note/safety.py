@@ -3,14 +3,17 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Iterator
 from math import sqrt
 
-from acsolve.circuit.netlist import Part
+from acsolve.circuit.netlist import GROUND, Netlist, Part
 from acsolve.report.note.facts import Facts
 from acsolve.report.note.values import number_of
+from acsolve.report.note.wording import listed
 
 AC_RMS, DC = 30.0, 60.0  # volts; touch is held to be without danger below these in dry places
 _MAINS = re.compile(r"(?<![a-z])(mains|line_?voltage|live)(?![a-z])", re.IGNORECASE)
+_MOST = 12  # parts that are named
 _USUAL = (
     "Capacitors keep their charge after switching off: discharge them through a resistor and "
     "measure before touching.",
@@ -26,10 +29,7 @@ _LAW = (
 def dangers(facts: Facts) -> tuple[str, ...]:
     """The remarks that voltages, cautions and names of mains-connected parts call for."""
     high = [text for part in facts.netlist.parts if (text := _high(part, facts)) is not None]
-    named = [part.name for part in facts.netlist.parts if _is_mains(part)]
-    found = high[:6]
-    if named:
-        found.append(f"Named as connected to the mains: {', '.join(named[:8])}.")
+    found = [*high[:6], *_mains(facts.netlist)]
     if not found and not facts.cautions:
         return ()
     return (*found, *_USUAL, _LAW)
@@ -52,6 +52,39 @@ def _high(part: Part, facts: Facts) -> str | None:
     return None
 
 
-def _is_mains(part: Part) -> bool:
-    """Whether the name of a part, or of a node it stands at, says so."""
-    return any(_MAINS.search(text) for text in (part.name, *part.nodes))
+def _mains(netlist: Netlist) -> Iterator[str]:
+    """Which names say mains, and every part that hangs on them by conductors and parts."""
+    named = [part for part in netlist.parts if _MAINS.search(part.name)]
+    nodes = [node for node in netlist.nodes() if _MAINS.search(node)]
+    if not named and not nodes:
+        return
+    reached = {*nodes, *(node for part in named for node in part.nodes)} - {GROUND}
+    parts = list(named)
+    while True:
+        more = [part for part in netlist.parts if part not in parts and _touches(part, reached)]
+        if not more:
+            break
+        parts += more
+        for part in more:
+            for side in _sides(part):
+                if not reached.isdisjoint(side):
+                    reached |= set(side) - {GROUND}
+    kept = [part.name for part in netlist.parts if part in parts]
+    words = listed([f"“{text}”" for text in dict.fromkeys([*nodes, *(p.name for p in named)])])
+    more_than = f" and {len(kept) - _MOST} more" if len(kept) > _MOST else ""
+    yield (
+        f"By its name {words} may be connected to the mains. On it hang, other than by ground: "
+        f"{', '.join(kept[:_MOST])}{more_than}. Names may not tell everything: the list can be "
+        "incomplete."
+    )
+
+
+def _touches(part: Part, reached: set[str]) -> bool:
+    return not reached.isdisjoint(part.nodes)
+
+
+def _sides(part: Part) -> tuple[tuple[str, ...], ...]:
+    """The terminals of a part in groups that conduct; a transformer's windings do not."""
+    if part.kind == "transformer":
+        return part.nodes[:2], part.nodes[2:]
+    return (part.nodes,)

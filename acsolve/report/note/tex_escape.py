@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 _SPECIAL = {
     "\\": r"\textbackslash{}",
     "{": r"\{",
@@ -48,6 +50,7 @@ _SIGNS = {
     "’": "'",
     "\u00a0": "~",
     "\u202f": r"\,",
+    "\u2009": r"\,",
     "τ": r"\ensuremath{\tau}",
     "ω": r"\ensuremath{\omega}",
     "π": r"\ensuremath{\pi}",
@@ -65,12 +68,26 @@ _SIGNS |= {
     sign: rf"\ensuremath{{_{{{plain}}}}}"
     for sign, plain in zip("₀₁₂₃₄₅₆₇₈₉", "0123456789", strict=True)
 }
+_LONGEST_WORD, _PIECE = 30, 10  # signs of a word that TeX cannot hyphenate, and where it may break
+_BREAK = r"\notebreak{}"
 _LETTERS = "ÀÁÂÃÄÅÆÇÈÉÊËÌÍÎÏÑÒÓÔÕÖØÙÚÛÜÝßàáâãäåæçèéêëìíîïñòóôõöøùúûüýÿ"
 
 
 def escape_tex(text: str) -> str:
     """A text as LaTeX shows it; a sign that plain fonts lack is named by its code point."""
-    return "".join(_one(sign) for sign in text)
+    breaks = _breaks(text)
+    return "".join(
+        _one(sign) + (_BREAK if place in breaks else "") for place, sign in enumerate(text)
+    )
+
+
+def _breaks(text: str) -> set[int]:
+    """Places in words of many signs after which a line may end."""
+    found: set[int] = set()
+    for word in re.finditer(r"\S+", text):
+        if len(word[0]) > _LONGEST_WORD:
+            found |= set(range(word.start() + _PIECE - 1, word.end() - 1, _PIECE))
+    return found
 
 
 def _one(sign: str) -> str:

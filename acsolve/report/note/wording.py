@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Sequence
+from math import isinf
 from typing import TYPE_CHECKING, Any
 
 from acsolve.report.entry import letter
@@ -11,7 +12,7 @@ from acsolve.report.note.formula.read import UnreadableError, read_formula
 from acsolve.report.note.formula.split import Chunks, equation
 from acsolve.report.note.formula.tree import Node, Product, Row, Sign, Symbol, Words
 from acsolve.report.note.model import Math
-from acsolve.report.number import engineering, plain
+from acsolve.report.number import engineering, goes_on, plain
 
 if TYPE_CHECKING:
     from acsolve.analyses.question import Ask
@@ -23,8 +24,9 @@ _UNITS = {"ohm": "Ω", "rtHz": "√Hz", "deg": "°"}
 
 
 def quantity(value: float, unit: str, digits: int = DIGITS) -> str:
-    """A number with its unit: `1.026 kHz`, `4.7 µF`, `600 Ω`."""
-    number, _, sign = engineering(value, unit, digits).partition(" ")
+    """A number with its unit: `1.026 kHz`, `4.7 µF`, `600 Ω`; `5.100 kHz` for 5.09996 kHz."""
+    even = goes_on(value, digits)
+    number, _, sign = engineering(value, unit, digits, even=even).partition(" ")
     if not sign:
         return readable_number(number)
     prefix = "µ" if sign.startswith("u") and sign != unit else sign[:1] if sign != unit else ""
@@ -32,6 +34,15 @@ def quantity(value: float, unit: str, digits: int = DIGITS) -> str:
     for before, after in _UNITS.items():
         shown = shown.replace(before, after)
     return f"{readable_number(number)}{SPACE}{prefix}{shown}"
+
+
+def frequencies(hertz: Sequence[float], digits: int = 5) -> list[str]:
+    """Rising frequencies with so many digits, and as many more as tell neighbours apart."""
+    for more in range(digits, 13):
+        found = [quantity(value, "Hz", more) for value in hertz]
+        if len(set(found)) == len(found):
+            return found
+    return found
 
 
 def readable_number(text: str) -> str:
@@ -49,8 +60,8 @@ def count(number: int, word: str) -> str:
 
 
 def ratio(value: float, digits: int = DIGITS) -> str:
-    """A plain number."""
-    return readable_number(plain(value, digits))
+    """A plain number, with zeros at its end where it goes on beyond them."""
+    return readable_number(plain(value, digits, even=goes_on(value, digits)))
 
 
 def decibels(value: float, digits: int = 2) -> str:
@@ -61,6 +72,13 @@ def decibels(value: float, digits: int = 2) -> str:
         return "−∞" + SPACE + "dB" if value < 0 else "∞" + SPACE + "dB"
     text = f"{value:.{digits}f}"
     return f"{'0.00' if float(text) == 0 and digits == 2 else text}{SPACE}dB".replace("-", "−")
+
+
+def size_words(gain_db: float, unit: str) -> str:
+    """A gain in dB, or where it has a unit its magnitude."""
+    if isinf(gain_db):
+        return "infinite" if gain_db > 0 else "zero"
+    return quantity(10 ** (gain_db / 20), unit) if unit and gain_db < 6000 else decibels(gain_db)
 
 
 def name(text: str) -> Math:
@@ -102,7 +120,7 @@ def reading_label(text: str, ask: Ask) -> Node:
     if bracket and head == "gain":
         return Row((Sign("|"), of_frequency, Sign("|")))
     if bracket and head == "phase":
-        return Row((Words("arg"), of_frequency))
+        return Row((Words("arg\u2009"), of_frequency))
     if text == "H":
         return response_symbol(ask)
     if "," in text or " " in text:
@@ -114,6 +132,11 @@ def with_names(text: str, names: dict[str, str]) -> str:
     """A text for SymPy with the file's own names: safe name -> name."""
     spelled = re.sub(r"[A-Za-z_]\w*", lambda found: names.get(found[0], found[0]), text)
     return re.sub(r"\bI\b", "j", spelled.replace("**", "^"))
+
+
+def sentence(text: str) -> str:
+    """A remark with a capital at its start and one full stop at its end."""
+    return f"{text[:1].upper()}{text[1:].rstrip('.')}."
 
 
 def listed(words: Sequence[str]) -> str:

@@ -22,16 +22,37 @@ from acsolve.report.note.formula.tree import (
     is_high,
     needs_brackets_below_power,
     split_name,
+    width,
 )
 
 _NAMES = {"atan": "arctan", "atan2": "arctan2", "log": "ln"}
+_ROOM, _SAFE = 40.0, 32.0  # digits that a narrow screen holds: of figures, of any letters
+_SMALLEST = 0.25
+_BETWEEN = {"=": "0.28em", "≈": "0.28em", "+": "0.22em", "-": "0.22em", "||": "0.22em"}
 _SIGNS = {"-": "−", "||": "∥", "<=": "≤", ">=": "≥"}
 
 
 def math_element(node: Node, *, display: bool = False) -> str:
     """A `math` element."""
     style = ' displaystyle="true"' if display else ""
-    return f"<math{style}>{_row(node)}</math>"
+    wide = width(node)
+    if wide > _ROOM:  # a name of 60 letters has no operator to break at
+        style += f' style="font-size:{max(_SMALLEST, _SAFE / wide):.2f}em"'
+    return f"<math{style}><mrow>{_leading(node)}</mrow></math>"
+
+
+def _leading(node: Node) -> str:
+    """A piece of a broken formula; the sign that it starts with has its space on the right.
+
+    A browser takes a sign at a start for a prefix and sets it close to what follows.
+    """
+    if isinstance(node, Row) and len(node.items) > 1 and isinstance(node.items[0], Sign):
+        sign = node.items[0].text
+        if sign in _BETWEEN:
+            shown = escape(_SIGNS.get(sign, sign))
+            first = f'<mo form="infix" lspace="0" rspace="{_BETWEEN[sign]}">{shown}</mo>'
+            return first + mathml(Row(node.items[1:]))
+    return mathml(node)
 
 
 def _row(node: Node) -> str:
@@ -59,6 +80,8 @@ def mathml(node: Node) -> str:  # noqa: PLR0912 - one case for each kind of node
             return f"<msup><mrow>{inner}</mrow>{_row(exponent)}</msup>"
         case Call("sqrt", arguments):
             return f"<msqrt>{_row(arguments[0])}</msqrt>"
+        case Call("abs", arguments):
+            return f"<mrow>{_bar('prefix')}{mathml(arguments[0])}{_bar('postfix')}</mrow>"
         case Call(name, arguments):
             listed = '<mo separator="true">,</mo>'.join(mathml(item) for item in arguments)
             shown = _NAMES.get(name, name)
@@ -70,7 +93,7 @@ def mathml(node: Node) -> str:  # noqa: PLR0912 - one case for each kind of node
         case Words(text):
             return f"<mtext>{escape(text)}</mtext>"
         case Row(items):
-            return "".join(mathml(item) for item in items)
+            return "".join(map(_piece, (None, *items), items))
         case Matrix(rows):
             cells = "".join(
                 f"<mtr>{''.join(f'<mtd>{_row(cell)}</mtd>' for cell in row)}</mtr>" for row in rows
@@ -78,12 +101,21 @@ def mathml(node: Node) -> str:  # noqa: PLR0912 - one case for each kind of node
             return f'<mo stretchy="true">[</mo><mtable>{cells}</mtable><mo stretchy="true">]</mo>'
 
 
+def _piece(before: Node | None, item: Node) -> str:
+    """A piece of a row: a minus right after a sign that opens takes off nothing before it."""
+    if item == Sign("-") and (before is None or before in (Sign("="), Sign("("))):
+        return '<mo form="prefix">−</mo>'
+    return mathml(item)
+
+
 def _product(factors: tuple[Node, ...], pieces: list[str]) -> str:
     """Factors with a thin space between; a dot between two numbers."""
     text = pieces[0]
     for before, item, piece in zip(factors, factors[1:], pieces[1:], strict=False):
         both = isinstance(before, Number) and isinstance(item, Number)
-        text += ("<mo>·</mo>" if both else '<mspace width="0.12em"></mspace>') + piece
+        named = isinstance(item, Call) and item.name != "sqrt"
+        gap = f'<mspace width="{0.25 if named else 0.12}em"></mspace>'
+        text += ("<mo>·</mo>" if both else gap) + piece
     return text
 
 
@@ -125,6 +157,10 @@ def _open() -> str:
 
 def _close() -> str:
     return '<mo form="postfix" stretchy="false">)</mo>'
+
+
+def _bar(form: str) -> str:
+    return f'<mo form="{form}" stretchy="true" lspace="0" rspace="0">|</mo>'
 
 
 def _brackets(node: Node) -> str:

@@ -23,6 +23,7 @@ from acsolve.report.note.formula.tree import (
 
 _TOKEN = re.compile(
     r"\s*(?:(?P<number>\d+(?:\.\d+)?(?:e-?\d+)?)"
+    r"|(?P<coupling>k\(\w[\w.\[\]]*, \w[\w.\[\]]*\))"
     r"|(?P<name>[^\W\d]\w*(?:\[[^\[\]]*\])?(?:\.\w+(?:\[[^\[\]]*\])?)*)"
     r"|(?P<sign>\*\*|\|\||[-+*/^(),]))"
 )
@@ -98,7 +99,7 @@ class _Reader:
         found: Node = self._power(depth)
         while (sign := self._take("*", "/")) is not None:
             right = self._power(depth)
-            found = _times(found, right) if sign == "*" else Ratio(found, right)
+            found = _times(found, right) if sign == "*" else _over(found, right)
         return found
 
     def _power(self, depth: int) -> Node:
@@ -116,6 +117,8 @@ class _Reader:
         self._place += 1
         if kind == "number":
             return Number(text)
+        if kind == "coupling":
+            return Symbol("k_" + text[2:-1].replace("_", "").replace(", ", "\u2009"))
         if kind == "name":
             return self._named(text, depth)
         if text == "(":
@@ -133,12 +136,32 @@ class _Reader:
         while self._take(","):
             arguments.append(self.total(depth + 1))
         self._expect(")")
+        if text == "atan2" and len(arguments) == 2:
+            return _angle(*arguments)
         return Call(text, tuple(arguments))
+
+
+def _angle(imaginary: Node, real: Node) -> Node:
+    """The angle of a complex number, as it is written by hand: arg(real + j·imaginary)."""
+    if imaginary == Number("0"):
+        return Call("arg", (real,))
+    turned = _times(Symbol("j"), imaginary)
+    terms = real.terms if isinstance(real, Total) else ((False, real),)
+    if real == Number("0"):
+        terms = ()
+    return Call("arg", (Total((*terms, (False, turned))),))
 
 
 def _times(left: Node, right: Node) -> Node:
     """A product; what stands behind a quotient belongs above its line."""
     if isinstance(left, Ratio):
-        return Ratio(_times(left.top, right), left.bottom)
+        return Ratio(right if left.top == Number("1") else _times(left.top, right), left.bottom)
     factors = left.factors if isinstance(left, Product) else (left,)
     return Product((*factors, right))
+
+
+def _over(left: Node, right: Node) -> Node:
+    """A quotient; one that is divided again has both below one line."""
+    if isinstance(left, Ratio):
+        return Ratio(left.top, _times(left.bottom, right))
+    return Ratio(left, right)

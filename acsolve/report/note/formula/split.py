@@ -112,10 +112,12 @@ def _bracketed(node: Node, limit: float) -> Chunks:
 def _arguments(name: str, arguments: Sequence[Node], limit: float) -> Chunks:
     found: list[Node] = []
     for place, item in enumerate(arguments):
-        pieces = list(chunks(item, limit - 2))
+        pieces = list(chunks(item, limit - 2 - (0 if place else len(name))))
         if place == 0:
-            pieces[0] = Row((Sign(name), Sign("("), pieces[0]))
-        pieces[-1] = _joined(pieces[-1], Sign(")" if place == len(arguments) - 1 else ","))
+            opening = (Sign("|"),) if name == "abs" else (Sign(name), Sign("("))
+            pieces[0] = Row((*opening, pieces[0]))
+        closing = "|" if name == "abs" else ")"
+        pieces[-1] = _joined(pieces[-1], Sign(closing if place == len(arguments) - 1 else ","))
         found += pieces
     return tuple(found)
 

@@ -39,6 +39,7 @@ _GREEK = {
     "∞": r"\infty",
 }
 _FUNCTIONS = {"atan": r"\arctan", "exp": r"\exp", "log": r"\ln", "sin": r"\sin", "cos": r"\cos"}
+_FUNCTIONS["arg"] = r"\arg"
 _FUNCTIONS |= {"sinh": r"\sinh", "cosh": r"\cosh", "tanh": r"\tanh", "coth": r"\coth"}
 _SIGNS = {"||": r"\parallel{}", "·": r"\cdot{}", "≤": r"\le{}", "≥": r"\ge{}", ">": ">", "<": "<"}
 
@@ -63,6 +64,8 @@ def tex(node: Node) -> str:  # noqa: PLR0912 - one case for each kind of node
             return f"{{{inner}}}^{{{tex(exponent)}}}"
         case Call("sqrt", arguments):
             return rf"\sqrt{{{tex(arguments[0])}}}"
+        case Call("abs", arguments):
+            return rf"\left|{tex(arguments[0])}\right|"
         case Call(name, arguments):
             return f"{_function(name)}({', '.join(tex(item) for item in arguments)})"
         case Parallel(items):

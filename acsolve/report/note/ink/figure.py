@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import logging
 from typing import TYPE_CHECKING, Any
 
 from acsolve.report.note.ink.strokes import (
@@ -27,12 +28,14 @@ _DPI = 72.0  # a pixel of the renderer is a point
 _ROLES: dict[str, Role] = {
     **{colour: role for role, colour in COLOURS.items()},
     "#222222": "ink",
+    "#9a9a9a": "soft",
     "#000000": "ink",
 }
 
 
 def figure_ink(make: Callable[[], Figure]) -> Ink:
     """Draw a figure, made under this program's settings, into strokes and labels."""
+    logging.getLogger("matplotlib").setLevel(logging.ERROR)
     import matplotlib as mpl
 
     from acsolve.report.plot import SETTINGS

@@ -47,7 +47,9 @@ def checks(facts: Facts) -> Section:
 
 
 def _difference(value: float) -> str:
-    return "none" if value < _SMALLEST else ratio(value, 2)
+    if value and value < _SMALLEST:
+        return f"below {ratio(_SMALLEST)}"
+    return ratio(value, 2)
 
 
 def _rows(chapter: Chapter) -> list[tuple[Words, ...]]:
@@ -59,8 +61,10 @@ def _rows(chapter: Chapter) -> list[tuple[Words, ...]]:
         same = chapter.transfer is not None and chapter.transfer.form is chapter.formula
         if not same:
             found.append((f"Closed form over symbols, {words}", chapter.formula.checked))
-    if chapter.step is not None and chapter.step.checked is not None:
-        found.append((f"Modes in time, {words}", chapter.step.checked))
+    if chapter.steps is not None and chapter.steps.checked is not None:
+        found.append((f"Named steps, {words}", chapter.steps.checked))
+    if chapter.in_time and chapter.in_time[0].checked is not None:
+        found.append((f"Modes in time, {words}", chapter.in_time[0].checked))
     if chapter.two_port is not None:
         for name, matrix in chapter.two_port.forms.items():
             listed = [form.checked for row in matrix or () for form in row if form.checked]

@@ -6,13 +6,16 @@ from collections.abc import Mapping
 from typing import TYPE_CHECKING
 
 from acsolve.circuit.expression import Expression, Number, Product, Quotient, Sum, is_zero, number
+from acsolve.circuit.netlist import GROUND
 from acsolve.equations.write import Spelling, expression_text
+from acsolve.report.note.chapters import is_read
 from acsolve.report.note.facts import Chapter
 from acsolve.report.note.formula.split import Chunks, equation
 from acsolve.report.note.formula.tree import Matrix, Node, Ratio, Row, Sign, Symbol, Total, width
 from acsolve.report.note.formula.tree import Product as Times
 from acsolve.report.note.model import Block, Formula, Math, Section, say
-from acsolve.report.note.wording import count, lines, node_words, response_symbol, tree
+from acsolve.report.note.sections.steps import named_steps
+from acsolve.report.note.wording import count, lines, listed, node_words, response_symbol, tree
 
 if TYPE_CHECKING:
     from acsolve.analyses.equations import Equations
@@ -32,6 +35,7 @@ def derivation(chapter: Chapter) -> Section | None:
     form = chapter.formula
     if form is not None:
         blocks += _result(chapter)
+    blocks += named_steps(chapter)
     return Section(title="Derivation", level=3, blocks=tuple(blocks)) if blocks else None
 
 
@@ -48,6 +52,11 @@ def _equations(found: Equations, chapter: Chapter) -> list[Block]:
     intro = "Each node’s currents add up to zero, and each further unknown brings its law."
     if drive is not None:
         intro += f" A voltage E drives {node_words(drive)}; the answer is {_ratio(chapter)}."
+    zeros = [node for node in found.references if node != GROUND]
+    if zeros:
+        words = listed([f"“{node}”" for node in zeros])
+        whose = "whose own is" if len(zeros) == 1 else "whose own are"
+        intro += f" Where no part leads to ground, voltages count from {words}, {whose} zero."
     written: list[Chunks] = []
     for row in range(found.size):
         written += _by_hand(found, row)
@@ -170,7 +179,7 @@ def _result(chapter: Chapter) -> list[Block]:
     assert form is not None, "asked for where there is a closed form"
     words = "Eliminating all unknowns but the two that are asked about"
     label = response_symbol(chapter.ask)
-    written = lines(label, form.text()) if len(form.numerator) + len(form.denominator) <= 40 else []
+    written = lines(label, form.text()) if is_read(form) else []
     if written:
         return [
             say(
@@ -185,7 +194,7 @@ def _result(chapter: Chapter) -> list[Block]:
         say(
             f"{words} leaves a ratio of polynomials with "
             f"{count(len(form.numerator), 'term')} above and "
-            f"{count(len(form.denominator), 'term')} below the line. Written out they cannot be "
-            "read; the command transfer or impedance prints them."
+            f"{count(len(form.denominator), 'term')} below the line; the command transfer or "
+            "impedance prints them."
         )
     ]

@@ -6,7 +6,7 @@ from acsolve.report.note.facts import Facts
 from acsolve.report.note.ink.schematic import schematic_ink
 from acsolve.report.note.model import Block, Picture, Remark, Section, say
 from acsolve.report.note.safety import dangers
-from acsolve.report.note.wording import count, listed
+from acsolve.report.note.wording import count, listed, sentence
 
 _KINDS = {
     "transfer": "transfer function",
@@ -15,8 +15,6 @@ _KINDS = {
     "sweep": "response over frequency",
     "step": "step response",
     "two-port": "two-port parameters",
-    "noise": "noise",
-    "tolerance": "tolerance",
 }
 
 
@@ -24,31 +22,31 @@ def purpose(facts: Facts) -> Section:
     """The file's own words, its cautions, and what this note answers."""
     blocks: list[Block] = [say(text) for text in _paragraphs(facts.netlist.remarks)]
     kinds = list(dict.fromkeys(kind for item in facts.chapters for kind in item.kinds))
-    if facts.own_questions:
+    if not facts.chapters:
+        blocks.append(say("The circuit has no two nodes to ask about; this note lists its parts."))
+    elif facts.own_questions:
         asked = listed([_KINDS[kind] for kind in kinds])
         blocks.append(say(f"This note answers what the circuit file asks: {asked}."))
     else:
-        blocks.append(say("The circuit file asks nothing; this note answers the usual questions."))
+        blocks.append(
+            say(
+                "The circuit file asks nothing that this version answers; this note answers the "
+                "usual questions."
+            )
+        )
     if facts.variant is not None:
         blocks.append(say(f"It speaks of the circuit’s variant “{facts.variant}”."))
     if facts.changes:
         blocks.append(say(f"These values differ from the file: {', '.join(facts.changes)}."))
     if facts.unanswered:
-        words = listed([_KINDS[kind] for kind in facts.unanswered])
+        words = "; ".join(item.words for item in facts.unanswered)
         blocks.append(
-            Remark(
-                kind="note",
-                words=(f"The file also asks for {words}; this note does not answer that.",),
-            )
+            Remark(kind="note", words=(f"The file also asks, not answered in this note: {words}.",))
         )
     blocks += [Remark(kind="caution", words=(text,)) for text in facts.cautions]
     blocks += [Remark(kind="safety", words=(text,)) for text in dangers(facts)]
-    blocks += [Remark(kind="note", words=(_sentence(text),)) for text in facts.warnings]
+    blocks += [Remark(kind="note", words=(sentence(text),)) for text in facts.warnings]
     return Section(title="Purpose", blocks=tuple(blocks))
-
-
-def _sentence(text: str) -> str:
-    return f"{text[:1].upper()}{text[1:]}{'' if text.endswith('.') else '.'}"
 
 
 def _paragraphs(remarks: tuple[str, ...]) -> list[str]:

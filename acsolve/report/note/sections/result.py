@@ -1,8 +1,8 @@
-"""The answer in the form to read, its limits, cutoffs, poles and zeros."""
+"""The answer in the form to read, its limits and cutoffs."""
 
 from __future__ import annotations
 
-from math import inf, pi
+from math import pi
 from typing import TYPE_CHECKING, Any
 
 from acsolve.analyses.closed_form import ClosedForm
@@ -13,34 +13,34 @@ from acsolve.report.note.facts import Chapter
 from acsolve.report.note.formula.split import Chunks
 from acsolve.report.note.formula.tree import Node, Row, Sign, Symbol
 from acsolve.report.note.model import Block, Formula, Inline, Math, Section, Table, Words, cell, say
+from acsolve.report.note.places import is_besides, marks
 from acsolve.report.note.wording import (
     SPACE,
     count,
     decibels,
+    frequencies,
     lines,
     quantity,
     ratio,
-    readable_number,
     reading_label,
     response_symbol,
+    sentence,
     tree,
     with_names,
 )
-from acsolve.report.number import gain_in_db, plain
+from acsolve.report.number import HALF_POWER_DB, gain_in_db
 from acsolve.report.values import coefficients, limit_number, standard_numbers
 
 if TYPE_CHECKING:
     from acsolve.analyses.cutoff import CutoffAnswer
-    from acsolve.analyses.pole_record import RootRecord, RootTable
     from acsolve.analyses.reading import FormName
     from acsolve.analyses.shape import Limit
 
-_MOST_TERMS = 40
-_MOST_ROOTS = 24
+_MOST_TERMS = 16
 _LONGEST_READING = 600  # characters of a form that is still read
+_LONGEST_CUTOFF = 400  # of the closed form of a cutoff
 _LONGEST_DELAY = 90  # of a formula of delays, which say little when they are long
 _ORDERS = {1: "first", 2: "second"}
-_HALF_POWER = -3.0102999566398120
 
 
 def result(chapter: Chapter) -> Section | None:
@@ -59,7 +59,7 @@ def _not_rational(chapter: Chapter) -> list[Block]:
         return []
     form = found.form
     if not isinstance(form, ClosedForm):
-        return [say("Multiplied out it is too long; the command transfer gives it as named steps.")]
+        return [say("Multiplied out it is too long to read; its named steps are the closed form.")]
     if form.rational:
         return []
     written = lines(response_symbol(chapter.ask), form.text())
@@ -185,19 +185,30 @@ def limits(chapter: Chapter) -> Section | None:
                 "At 0",
                 SPACE,
                 "Hz: ",
-                *_limit(found.at_zero, unit),
+                *limit_words(found.at_zero, unit),
                 ". At infinite frequency: ",
-                *_limit(found.at_infinity, unit),
+                *limit_words(found.at_infinity, unit),
                 ".",
             )
         )
     for answer in chapter.cutoffs:
+        if is_besides(answer, chapter):
+            blocks.append(say(_BESIDES[answer.reference.at]))
         blocks += _cutoffs(answer, chapter, unit)
     title = "Limits and cutoffs" if chapter.cutoffs else "Limits"
     return Section(title=title, level=3, blocks=tuple(blocks)) if blocks else None
 
 
-def _limit(limit: Limit, unit: str) -> tuple[Inline, ...]:
+_BESIDES = {
+    "peak": "That reference lies far below the peak, and counted from it half power says little "
+    "about the pass band. Counted from the peak:",
+    "stated": "That reference lies far above a wide level part of the curve, as stray parts at "
+    "infinite frequency can bring about. Counted from the level part:",
+}
+
+
+def limit_words(limit: Limit, unit: str) -> Words:
+    """A limit as a number, a formula or a word."""
     if limit is None:
         return ("unknown",)
     if limit == "oo":
@@ -217,8 +228,11 @@ _PLACES = {
     "dc": "at 0\u00a0Hz",
     "infinity": "at infinite frequency",
     "peak": "at the peak",
-    "stated": "as stated",
+    "stated": "on the level part of the curve",
 }
+
+
+_DIRECTIONS = {"falling": "falls below the level", "rising": "rises above the level"}
 
 
 def _cutoffs(found: CutoffAnswer, chapter: Chapter, unit: str) -> list[Block]:
@@ -227,22 +241,27 @@ def _cutoffs(found: CutoffAnswer, chapter: Chapter, unit: str) -> list[Block]:
     blocks: list[Block] = [say(_reference(found, unit))]
     rows: list[tuple[Words, ...]] = []
     formulas: list[Chunks] = []
+    unread = 0
+    known = marks([found])
+    shown = dict(zip(known, frequencies(known), strict=True))
     for place, item in enumerate(found.cutoffs, start=1):
         if item.hertz is not None and item.rad_per_s is not None:
             rows.append(
                 (
-                    cell(quantity(item.hertz, "Hz", 5)),
-                    cell(f"{readable_number(plain(item.rad_per_s, 5))}{SPACE}rad/s"),
-                    cell(item.direction or ""),
+                    cell(shown[item.hertz]),
+                    cell(f"{ratio(item.rad_per_s, 5)}{SPACE}rad/s"),
+                    cell(_DIRECTIONS.get(item.direction or "", "")),
                 )
             )
         if item.closed_form is not None:
             label = Symbol("w_c" if len(found.cutoffs) == 1 else f"w_c{place}")
-            formulas += lines(label, with_names(item.closed_form, names))
+            text = with_names(item.closed_form, names)
+            unread += len(text) > _LONGEST_CUTOFF
+            formulas += lines(label, text) if len(text) <= _LONGEST_CUTOFF else []
     if rows:
         blocks.append(
             Table(
-                head=(("Cutoff",), ("Angular frequency",), ("The gain is",)),
+                head=(("Cutoff",), ("Angular frequency",), ("The response",)),
                 rows=tuple(rows),
                 sides=("right", "right", "left"),
                 caption="Cutoffs.",
@@ -250,22 +269,25 @@ def _cutoffs(found: CutoffAnswer, chapter: Chapter, unit: str) -> list[Block]:
         )
     if formulas:
         blocks += [say("In closed form:"), Formula(lines=tuple(formulas))]
+    if unread:
+        blocks.append(
+            say(
+                f"{count(unread, 'closed form')} too long to read here; the command cutoff "
+                "prints what is left out."
+            )
+        )
     blocks += [say(_band(item)) for item in found.bands]
     blocks += [
         say(f"At {quantity(item.hertz, 'Hz')} the curve meets the level without crossing it.")
         for item in found.touches
     ]
     blocks.append(say(_proof(found)))
-    blocks += [say(_remark(with_names(text, names))) for text in found.remarks]
+    blocks += [say(sentence(with_names(text, names))) for text in found.remarks]
     return blocks
 
 
-def _remark(text: str) -> str:
-    return f"{text[:1].upper()}{text[1:]}{'' if text.endswith('.') else '.'}"
-
-
 def _reference(found: CutoffAnswer, unit: str) -> str:
-    half = abs(found.level_db - _HALF_POWER) < 1e-12
+    half = abs(found.level_db - HALF_POWER_DB) < 1e-12
     level = "Half power" if half else f"The level {decibels(found.level_db)}"
     reference = found.reference
     place = _PLACES[reference.at]
@@ -276,7 +298,7 @@ def _reference(found: CutoffAnswer, unit: str) -> str:
     size = quantity(reference.gain, unit) if unit else ratio(reference.gain)
     limit = reference.gain * 10 ** (found.level_db / 20)
     there = quantity(limit, unit) if unit else ratio(limit)
-    return f"{level} counts from {size} {place}; it is a gain of {there}."
+    return f"{level} counts from {size} {place}; it lies at {there}."
 
 
 def _band(item: Any) -> str:
@@ -292,78 +314,11 @@ def _band(item: Any) -> str:
 
 
 def _proof(found: CutoffAnswer) -> str:
-    no = "no further" if found.cutoffs else "no"
+    no = "no other" if found.cutoffs else "no"
     where = ""
     if found.searched is not None:
         low, high = (quantity(edge, "Hz") for edge in found.searched)
         where = f" from {low} to {high}"
     if found.complete:
-        return f"It is proven that {no} crossing exists{where}."
-    return f"It is not proven{where} that {no} crossing exists."
-
-
-def roots(chapter: Chapter) -> Section | None:
-    """Poles and zeros, hidden modes, stability."""
-    found = chapter.poles
-    if found is None:
-        return None
-    blocks: list[Block] = []
-    for word, table in (("Poles", found.poles), ("Zeros", found.zeros)):
-        blocks += _roots(word, table)
-    if found.hidden is not None and found.hidden.roots:
-        blocks.append(say("Modes of the network that this answer does not show:"))
-        blocks += _roots("Hidden modes", found.hidden)
-    if found.stability is not None:
-        from acsolve.report.pole_text import stability_rows
-
-        words = "; ".join(text for _, text in stability_rows(found.stability, found.form))
-        blocks.append(say(f"Stability: {words}."))
-    return Section(title="Poles and zeros", level=3, blocks=tuple(blocks)) if blocks else None
-
-
-def _roots(word: str, table: RootTable | None) -> list[Block]:
-    if table is None:
-        return []
-    upper = [item for item in table.roots if item.value is not None and item.value.imag >= 0]
-    if not table.roots:
-        unsolved = [item for item in table.factors if item.degree > 0]
-        return [] if unsolved else [say(f"{word}: none.")]
-    if not upper:
-        return _symbolic(word, table)
-    rows = tuple(_root_row(item) for item in upper[:_MOST_ROOTS])
-    more = (
-        f" The {_MOST_ROOTS} nearest to zero of {len(upper)}." if len(upper) > _MOST_ROOTS else ""
-    )
-    sure = "" if table.certified else " Eigenvalues, not certified."
-    return [
-        Table(
-            head=((word,), ("Natural frequency",), ("Q",), ("Times",)),
-            rows=rows,
-            sides=("right", "right", "right", "right"),
-            caption=f"{word}, pairs as one.{more}{sure}",
-        )
-    ]
-
-
-def _symbolic(word: str, table: RootTable) -> list[Block]:
-    letter_of = {"Poles": "s_p", "Zeros": "s_z"}.get(word, "s_h")
-    written: list[Chunks] = []
-    for place, item in enumerate(table.roots, start=1):
-        if item.closed_form is not None and len(item.closed_form) <= _LONGEST_READING:
-            label = Symbol(letter_of + (str(place) if len(table.roots) > 1 else ""))
-            written += lines(label, with_names(item.closed_form, {}))
-    return [say(f"{word}:"), Formula(lines=tuple(written))] if written else []
-
-
-def _root_row(item: RootRecord) -> tuple[Words, ...]:
-    value = item.value
-    assert value is not None, "asked for where there is a number"
-    real = readable_number(plain(value.real, 5)) if value.real else "0"
-    if value.imag:
-        place = f"{real}{SPACE}±{SPACE}j{readable_number(plain(value.imag, 5))}{SPACE}rad/s"
-    else:
-        place = f"{real}{SPACE}rad/s"
-    frequency = quantity(abs(value) / (2 * pi), "Hz") if value else "0"
-    q = item.q
-    sharp = "–" if q is None else "∞" if q == inf else ratio(q)
-    return cell(place), cell(frequency), cell(sharp), cell(str(item.multiplicity))
+        return f"Proven: there is {no} crossing{where}."
+    return f"Not proven{where} is that there is {no} crossing."

@@ -1,20 +1,48 @@
-"""The step response: its formula, its figures, its curve."""
+"""The step response: its formula, its figures, a curve for each duration asked for."""
 
 from __future__ import annotations
 
-from typing import Any
+from collections.abc import Iterable
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
 
 from acsolve.report.entry import Entry, Heading
 from acsolve.report.note.facts import Chapter
 from acsolve.report.note.formula.split import Chunks
-from acsolve.report.note.formula.tree import Row, Sign, Symbol
+from acsolve.report.note.formula.tree import Node, Row, Sign, Symbol
 from acsolve.report.note.ink.figure import figure_ink
-from acsolve.report.note.model import Block, Formula, Picture, Section, Table, Words, cell, say
-from acsolve.report.note.wording import SPACE, lines, quantity, ratio, with_names
+from acsolve.report.note.model import (
+    Block,
+    Formula,
+    Inline,
+    Math,
+    Picture,
+    Section,
+    Table,
+    Words,
+    cell,
+    say,
+)
+from acsolve.report.note.wording import (
+    SPACE,
+    lines,
+    listed,
+    quantity,
+    ratio,
+    sentence,
+    tree,
+    with_names,
+)
 from acsolve.report.step_text import response_unit
 
+if TYPE_CHECKING:
+    from acsolve.analyses.step import StepAnswer
+    from acsolve.analyses.time_formula import TimeFormula
+
 _LONGEST = 200
-_NAMES = {"k": "K", "q": "Q", "k1": "K1", "q_z": "Q_z"}  # as the standard form calls them
+_NAMES = {"k": "K", "q": "Q", "k1": "K1", "q_z": "Q_z", "wr": "w_r", "wd": "w_d"}
+_UNITS = {"a": "1/s", "w0": "rad/s", "wd": "rad/s", "wr": "rad/s", "tau": "s"}
 _FIGURES = (
     ("rise_s", "Rise, 10 to 90\u00a0%"),
     ("delay_s", "Delay to 50\u00a0%"),
@@ -24,13 +52,13 @@ _FIGURES = (
 
 def step(chapter: Chapter) -> Section | None:
     """What a unit step that starts at 0 brings."""
-    found = chapter.step
-    if found is None:
+    if not chapter.in_time:
         return None
+    found = chapter.in_time[0]
     entry = Entry(kind="step", heading=Heading(), ask=chapter.ask, step=found)
     unit = response_unit(entry)
     blocks: list[Block] = [*_formula(found)]
-    rows = _figures(found, unit)
+    rows = figure_rows(found, unit)
     if rows:
         blocks.append(
             Table(
@@ -40,36 +68,96 @@ def step(chapter: Chapter) -> Section | None:
                 caption="Figures of the step response.",
             )
         )
-    if found.seconds is not None:
-        from acsolve.report.plot_time import time_figure
-
-        caption = "Step response, with its final value, the settling band and levels."
-        blocks.append(
-            Picture(
-                ink=figure_ink(lambda: time_figure([entry])), caption=caption, description=caption
-            )
-        )
-    blocks += [say(f"{text[:1].upper()}{text[1:]}.") for text in found.remarks]
+    blocks += [_curve(chapter, item) for item in chapter.in_time if item.seconds is not None]
+    blocks += [say(sentence(text)) for text in found.remarks]
     return Section(title="Step response", level=3, blocks=tuple(blocks))
 
 
-def _formula(found: Any) -> list[Block]:
+def _curve(chapter: Chapter, found: StepAnswer) -> Block:
+    from acsolve.report.plot_time import time_figure
+
+    entry = Entry(kind="step", heading=Heading(), ask=chapter.ask, step=found)
+    also = list(_drawn(found))
+    caption = f"Step response{', with ' if also else ''}{listed(also)}."
+    figure = figure_ink(lambda: time_figure([entry]))
+    return Picture(ink=figure, caption=caption, description=caption)
+
+
+def _drawn(found: StepAnswer) -> Iterable[str]:
+    """What stands in the picture beside the curve."""
+    if not found.final_value or found.seconds is None:
+        return
+    end = float(found.seconds[-1])
+    yield "its final value (dashed) and the settling band (grey)"
+    levels = zip(("10", "50", "90"), found.figures.levels_s, strict=True)
+    shown = [word for word, seconds in levels if seconds is not None and 0 < seconds <= end]
+    if shown:
+        yield f"{listed(shown)}\u00a0% of it (dots)"
+    if found.settling_s is not None and 0 < found.settling_s <= end:
+        yield "the time it has settled"
+
+
+def _formula(found: StepAnswer) -> list[Block]:
+    """y(t) with the names in it; of several cases each with its condition."""
     if found.formulas is None:
         return []
-    written: list[Chunks] = []
+    blocks: list[Block] = []
     for case in found.formulas.cases:
         texts = {key: with_names(text, _NAMES) for key, text in case.texts(safe=False).items()}
         label = Row((Symbol("y"), Sign("("), Symbol("t"), Sign(")")))
         if len(texts["step"]) > _LONGEST:
             return []
-        written += lines(label, texts["step"])
+        written: list[Chunks] = lines(label, texts["step"])
         for name in case.helpers:
-            written += lines(Symbol(name), texts[name])
-    return [say("For t > 0:"), Formula(lines=tuple(written))] if written else []
+            written += lines(Symbol(_NAMES.get(name, name)), texts[name])
+        condition = _condition(case) if found.form.symbols else None
+        head: tuple[Inline, ...] = ("For t > 0:",)
+        if condition is not None:
+            head = ("For t > 0, where ", Math(condition), ":")
+        blocks += [say(*head), Formula(lines=tuple(written))] if written else []
+    numbers = _numbers(found, found.formulas.cases[0])
+    return [*blocks, *([say("In numbers: ", *numbers, ".")] if blocks and numbers else [])]
 
 
-def _figures(found: Any, unit: str) -> tuple[tuple[Words, ...], ...]:
-    if found.form.symbols:
+def _condition(case: TimeFormula) -> Node | None:
+    """`abs(q) > 1/2` as |Q| > 1/2."""
+    text = case.condition
+    if text is None:
+        return None
+    left, sign, right = text.split()
+    first, second = tree(with_names(left, _NAMES)), tree(right)
+    return None if first is None or second is None else Row((first, Sign(sign), second))
+
+
+def _numbers(found: StepAnswer, case: TimeFormula) -> list[Inline]:
+    """The names in the formula as numbers."""
+    from acsolve.equations.evaluate import Evaluator, FloatArithmetic
+    from acsolve.report.values import standard_numbers
+
+    if found.form.symbols or found.formulas is None:
+        return []
+    raw = standard_numbers(found.form, dict.fromkeys(found.formulas.parts))
+    known: dict[str, Any] = {name: value.real for name, value in raw.items()}
+    ends = {"y_0": found.initial_value, "y_end": found.final_value}
+    known |= {name: end for name, end in ends.items() if name in found.formulas.parts}
+    if not set(found.formulas.parts) <= set(known):
+        return []  # a negative value makes one of them imaginary
+    for name, expression in case.helpers.items():
+        known[name] = Evaluator({}, FloatArithmetic(), overrides=known)(expression, None)
+    words: list[Inline] = []
+    for name, value in known.items():
+        if value is None or not np.isfinite(value):
+            continue
+        unit = _UNITS.get(name, "")
+        shown = quantity(float(value), unit) if unit == "s" else f"{ratio(float(value))} {unit}"
+        words += [", " if words else "", Math(Symbol(_NAMES.get(name, name))), " = "]
+        words += [shown.strip().replace(" ", SPACE)]
+    return words
+
+
+def figure_rows(found: StepAnswer, unit: str) -> tuple[tuple[Words, ...], ...]:
+    """The figures of a step with numbers, each with its name."""
+    if found.form.symbols or found.initial_value is None:
         return ()
     rows: list[tuple[Words, ...]] = [
         (cell("Just after 0"), cell(quantity(found.initial_value, unit)))
@@ -78,6 +166,10 @@ def _figures(found: Any, unit: str) -> tuple[tuple[Words, ...], ...]:
         return (*rows, (cell("Final value"), cell(f"none: {found.final_reason}")))
     rows.append((cell("Final value"), cell(quantity(found.final_value, unit))))
     reasons = dict(found.figures.reasons)
+    if not any(getattr(found, name) is not None for name, _ in _FIGURES):
+        reason = next(iter(reasons.values()), "")
+        rows.append((cell("Rise, delay and settling"), cell(f"none: {reason}")))
+        return (*rows, *_extreme(found, unit))
     for name, label in _FIGURES:
         value = getattr(found, name)
         shown = f"none: {reasons.get(name, '')}" if value is None else quantity(value, "s")
@@ -90,3 +182,24 @@ def _figures(found: Any, unit: str) -> tuple[tuple[Words, ...], ...]:
             over = f"{ratio(100 * found.overshoot)}{SPACE}% at {quantity(found.peak_s, 's')}"
         rows.append((cell("Overshoot"), cell(over)))
     return tuple(rows)
+
+
+_ROUNDS = 4  # of a finer grid around the largest value
+_FINER = 101
+
+
+def _extreme(found: StepAnswer, unit: str) -> Iterable[tuple[Words, ...]]:
+    """The largest value of a response that goes back to zero, and when, on ever finer grids."""
+    if found.seconds is None or found.value is None or len(found.seconds) < 3:
+        return
+    times, values = found.seconds, found.value
+    for _ in range(_ROUNDS):
+        size = np.where(np.isfinite(values), np.abs(values), 0.0)
+        top = int(size.argmax())
+        low, high = max(top - 1, 0), min(top + 1, len(times) - 1)
+        times = np.linspace(times[low], times[high], _FINER)
+        values = found.at(times)
+    top = int(np.abs(values).argmax())
+    if values[top] and np.isfinite(values[top]):
+        when = quantity(float(times[top]), "s", 3) if times[top] else "0"
+        yield cell("Largest value"), cell(f"{quantity(float(values[top]), unit)} at {when}")
