@@ -28,6 +28,7 @@ from acsolve.errors import AcsolveError
 
 _AGREES = 1e-9
 _LARGEST_FORMULA = 2_000  # terms
+_LARGEST_EQUATION = 300_000  # terms that products of squares may come to, some seconds
 _LONGEST = 4_000  # characters of a closed form
 _LONGEST_CONDITION = 80
 _WANTED = ("w", "w_c", "w_cut", "w_wanted")  # names for 2·pi·f in closed forms, first free one
@@ -94,7 +95,7 @@ def written_value(
     except AcsolveError as error:
         if error.code != "equations.budget":
             raise
-    if name not in form.symbols:
+    if name not in form.symbols or _most_terms(form) > _LARGEST_EQUATION:
         form = numeric
     omega = next(item for item in _WANTED if item not in form.values and item not in form.symbols)
     spelling = Spelling(safe_names((*form.symbols, omega)), "**")
@@ -108,6 +109,14 @@ def written_value(
     if len(equation.coefficients) <= wanted.degree + 1:
         formulas = _formulas(turned, equation.coefficients, squared, spelling)
     return WrittenValue(turned, equation.coefficients, formulas, omega, spelling)
+
+
+def _most_terms(form: ClosedForm) -> int:
+    """A bound on the terms of |D|² and |N|² times the squared gain at one end, as products."""
+    top, bottom = form.coefficients()
+    ends = [max(len(part[0]), len(part[-1])) for part in (top, bottom)]
+    sizes = [sum(map(len, part)) for part in (top, bottom)]
+    return max(sizes[1] ** 2 * ends[0] ** 2, sizes[0] ** 2 * ends[1] ** 2)
 
 
 def _over_omega(form: ClosedForm, polynomial: Polynomial, omega: str) -> ClosedForm:

@@ -153,3 +153,27 @@ def test_values_follow_one_another():
     )
     (item,) = circuit.path("in", "out").value_for("R1", cutoff="1 kHz").values
     assert item.value == pytest.approx(4 / 3 * 1e6 / (2000 * pi), rel=1e-14)
+
+
+def test_a_formula_over_many_parts_is_not_squared_out():
+    """A bridge with its cables: the symbols' equation would have millions of terms."""
+    circuit = acsolve.parse(
+        """
+        drive -- Rw1 = 6.8 ohm -- top
+        bot -- Rw2 = 6.8 ohm -- gnd
+        top -- Ra = 349 ohm -- p -- Rb = 351 ohm -- bot
+        top -- Rc = 351 ohm -- m -- Rd = 349 ohm -- bot
+        p -- Rw3 = 6.8 ohm -- sp
+        m -- Rw4 = 6.8 ohm -- sm
+        sp -- Cc = 6 nF -- sm
+        sp -- Rin = 2 Mohm -- sm
+        sp -- Cg1 = 4.7 nF -- gnd
+        sm -- Cg2 = 5.1 nF -- gnd
+        top -- Cx = 8 nF -- bot
+        """
+    )
+    path = circuit.path("drive", ("sp", "sm"))
+    (found,) = path.value_for("Cc", cutoff="100 kHz").values
+    assert found.value == pytest.approx(44.893031e-9, rel=1e-6)
+    again = circuit.with_values({"Cc": found.value}).path("drive", ("sp", "sm"))
+    assert any(item.hertz == pytest.approx(1e5, rel=1e-9) for item in again.cutoffs().cutoffs)
