@@ -97,7 +97,7 @@ def symbolic_cutoffs(
 
 
 def _no_formula(degree: int) -> AnalysisError:
-    more = " or ask for more with --degree 4" if degree < 4 else ""
+    more = ", or ask for more with --degree 4" if degree < 4 else ""
     return AnalysisError(
         Diagnostic(
             code=_NO_VALUE,

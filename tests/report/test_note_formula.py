@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 
 import acsolve
 from acsolve.analyses.reading import FORM_NAMES, reading
+from acsolve.report.drawing.name import split_name
 from acsolve.report.note.formula.mathml import math_element
 from acsolve.report.note.formula.read import UnreadableError, read_formula
 from acsolve.report.note.formula.split import WIDEST, chunks, equation
@@ -26,7 +27,6 @@ from acsolve.report.note.formula.tree import (
     Sign,
     Symbol,
     Total,
-    split_name,
     width,
 )
 from acsolve.report.note.wording import decibels, quantity, ratio

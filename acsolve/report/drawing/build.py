@@ -144,9 +144,8 @@ class _Drawn:
             self.texts.append(Text(text=name, at=(x, y - 0.35), size=NAME_SIZE, role="name"))
             self.texts.append(Text(text=value, at=(x, y + 1.35), size=VALUE_SIZE, role="value"))
         elif name or value:
-            self.texts.append(
-                Text(text=name or value, at=(x, y + 0.55), size=NAME_SIZE, role="name")
-            )
+            role: Role = "name" if name else "value"
+            self.texts.append(Text(text=name or value, at=(x, y + 0.55), size=NAME_SIZE, role=role))
 
     # ------------------------------------------------------------ boxes
 

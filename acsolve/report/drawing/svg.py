@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-import re
 from html import escape
 from math import cos, radians, sin
 
+from acsolve.report.drawing.name import split_name
 from acsolve.report.drawing.sheet import Point, Sheet, Text
 from acsolve.report.drawing.symbols import Arc, Primitive, Sign, Stroke, primitives
 
@@ -13,7 +13,6 @@ SCALE = 8  # pixels to a grid unit
 LINE = 0.16  # width of every stroke, in grid units
 DOT = 0.3
 _SUBSCRIPT = 0.72
-_DESIGNATOR = re.compile(r"([A-Za-z]+)(\d+)")
 
 
 def svg_text(sheet: Sheet) -> str:
@@ -52,8 +51,10 @@ def description(sheet: Sheet) -> str:
 
 def pieces(text: Text) -> list[tuple[str, bool]]:
     """A text in pieces; those that say so stand as subscripts."""
-    found = _DESIGNATOR.fullmatch(text.text) if text.role == "name" else None
-    return [(found[1], False), (found[2], True)] if found else [(text.text, False)]
+    if text.role != "name" or " " in text.text or "…" in text.text:
+        return [(text.text, False)]  # words about several parts, or a name cut in its middle
+    head, lowered = split_name(text.text)
+    return [(head, False), (lowered, True)] if lowered else [(head, False)]
 
 
 def _n(value: float) -> str:

@@ -7,6 +7,7 @@ from collections.abc import Callable
 from acsolve.report.entry import pair_text, question_text
 from acsolve.report.note.facts import Chapter, Facts
 from acsolve.report.note.model import Block, Document, Remark, Section, say
+from acsolve.report.note.named import numbered_names
 from acsolve.report.note.sections import (
     assumptions,
     closing,
@@ -55,7 +56,7 @@ def build(facts: Facts) -> Document:
         title=facts.title,
         subtitle=f"Design note{variant}",
         date=facts.date,
-        sections=tuple(sections),
+        sections=numbered_names(sections),
     )
 
 

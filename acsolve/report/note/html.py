@@ -49,7 +49,8 @@ def _words(words: Words) -> Any:
 
 def _plain(words: Words) -> str:
     """Words without mark-up, for labels of stacked rows."""
-    from acsolve.report.note.formula.tree import Symbol, split_name
+    from acsolve.report.drawing.name import split_name
+    from acsolve.report.note.formula.tree import Symbol
 
     found = ""
     for item in words:

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+from acsolve.report.drawing.name import split_name
 from acsolve.report.note.formula.split import Chunks
 from acsolve.report.note.formula.tex import tex
-from acsolve.report.note.formula.tree import Node, Row, Symbol, split_name, width
+from acsolve.report.note.formula.tree import Node, Row, Symbol, width
 from acsolve.report.note.ink.latex import ink_latex
 from acsolve.report.note.model import (
     Block,

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from html import escape
 
+from acsolve.report.drawing.name import split_name
 from acsolve.report.note.formula.tree import (
     Call,
     Matrix,
@@ -15,20 +16,27 @@ from acsolve.report.note.formula.tree import (
     Ratio,
     Row,
     Sign,
+    StandIn,
     Symbol,
     Total,
     Words,
     is_compound,
     is_high,
     needs_brackets_below_power,
-    split_name,
     width,
 )
 
 _NAMES = {"atan": "arctan", "atan2": "arctan2", "log": "ln"}
 _ROOM, _SAFE = 40.0, 32.0  # digits that a narrow screen holds: of figures, of any letters
 _SMALLEST = 0.25
-_BETWEEN = {"=": "0.28em", "≈": "0.28em", "+": "0.22em", "-": "0.22em", "||": "0.22em"}
+_BETWEEN = {
+    "=": "0.28em",
+    "≈": "0.28em",
+    "+": "0.22em",
+    "-": "0.22em",
+    "||": "0.22em",
+    "·": "0.22em",
+}
 _SIGNS = {"-": "−", "||": "∥", "<=": "≤", ">=": "≥"}
 
 
@@ -66,6 +74,8 @@ def mathml(node: Node) -> str:  # noqa: PLR0912 - one case for each kind of node
             return _number(text)
         case Symbol(name):
             return _symbol(name)
+        case StandIn(letter):
+            return _symbol(letter)
         case Total(terms):
             return "".join(_term(place, *term) for place, term in enumerate(terms))
         case Product(factors):

@@ -1,8 +1,12 @@
-"""Formulas in chunks between which a line may break: at their operators, never elsewhere."""
+"""Formulas in chunks between which a line may break: before + and −, never inside a quotient.
+
+Inside a product it may break where nothing else fits, and then a point is written.
+"""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Literal
 
 from acsolve.report.note.formula.tree import (
     Call,
@@ -14,6 +18,7 @@ from acsolve.report.note.formula.tree import (
     Ratio,
     Row,
     Sign,
+    StandIn,
     Symbol,
     Total,
     is_compound,
@@ -21,30 +26,54 @@ from acsolve.report.note.formula.tree import (
 )
 
 WIDEST = 34.0  # digits of a chunk: what 400 pixels and half a printed page hold
+_INNER = WIDEST - 2  # of a quotient inside a sum or product
+_SHORT = 12.0  # digits of a bracket that is kept whole
 Chunks = tuple[Node, ...]
 
 
 def equation(left: Node, right: Node, *, relation: str = "=") -> list[Chunks]:
-    """`left = right` as lines of chunks; a fraction too wide gets N and D on lines of their own."""
-    negative = False
-    match right:
-        case Total(((True, Ratio() as inner),)):
-            negative, right = True, inner
-    if isinstance(right, Ratio) and width(right) > WIDEST:
-        top_wide, bottom_wide = width(right.top) > WIDEST - 2, width(right.bottom) > WIDEST - 2
-        top: Node = Symbol("N") if top_wide else right.top
-        bottom: Node = Symbol("D") if bottom_wide else right.bottom
-        whole: Node = Ratio(top, bottom)
-        lines = [_line(left, Total(((True, whole),)) if negative else whole, relation)]
-        lines += [_line(Symbol("N"), right.top, "=")] if top_wide else []
-        lines += [_line(Symbol("D"), right.bottom, "=")] if bottom_wide else []
-        return lines
-    return [_line(left, Total(((True, right),)) if negative else right, relation)]
-
-
-def _line(left: Node, right: Node, relation: str) -> Chunks:
+    """`left = right` as lines of chunks; what is too wide in a fraction gets a line of its own."""
+    named: dict[StandIn, Node] = {}
+    left, right = _with_names(left, named, WIDEST), _with_names(right, named, WIDEST)
     first, *rest = chunks(right)
-    return (*chunks(left), _joined(Sign(relation), first), *rest)
+    lines = [(*chunks(left), _joined(Sign(relation), first), *rest)]
+    for name, meaning in named.items():
+        lines += equation(name, meaning)
+    return lines
+
+
+def _with_names(node: Node, named: dict[StandIn, Node], limit: float = _INNER) -> Node:
+    """The formula with a name for each top or bottom that is too wide, kept in `named`."""
+    if width(node) <= limit:
+        return node
+
+    def inner(items: Sequence[Node]) -> tuple[Node, ...]:
+        return tuple(_with_names(item, named) for item in items)
+
+    match node:
+        case Ratio(top, bottom):
+            return Ratio(_side("N", top, node, named), _side("D", bottom, node, named))
+        case Total(terms):
+            signs = (negative for negative, _ in terms)
+            return Total(tuple(zip(signs, inner([item for _, item in terms]), strict=True)))
+        case Product(factors):
+            return Product(inner(factors))
+        case Power(base, exponent):
+            return Power(*inner((base, exponent)))
+        case Call(name, arguments):
+            return Call(name, inner(arguments))
+        case Parallel(items):
+            return Parallel(inner(items))
+        case _:
+            return node
+
+
+def _side(letter: Literal["N", "D"], side: Node, whole: Ratio, named: dict[StandIn, Node]) -> Node:
+    if width(side) <= _INNER - 1:
+        return side
+    name = StandIn(letter, whole)
+    named[name] = side
+    return name
 
 
 def chunks(node: Node, limit: float = WIDEST) -> Chunks:
@@ -55,20 +84,14 @@ def chunks(node: Node, limit: float = WIDEST) -> Chunks:
         case Total(terms):
             return _terms(terms, limit)
         case Product(factors):
-            found: list[Node] = []
-            for factor in factors:
-                found += _factor(factor, limit)
-            return _packed(found, limit)
-        case Ratio(top, bottom):
-            below = _bracketed(bottom, limit)
-            return (*_factor(top, limit), _joined(Sign("/"), below[0]), *below[1:])
+            return _product(factors, limit)
         case Power(base, exponent):
             inner = _bracketed(base, limit)
-            return (*inner[:-1], Row((inner[-1], Row((Power(Row(()), exponent),)))))
+            return (*inner[:-1], _joined(inner[-1], Power(Row(()), exponent)))
         case Call("sqrt", arguments):
             inner = _bracketed(arguments[0], limit)
             half = Ratio(Number("1"), Number("2"))
-            return (*inner[:-1], Row((inner[-1], Power(Row(()), half))))
+            return (*inner[:-1], _joined(inner[-1], Power(Row(()), half)))
         case Call(name, arguments):
             return _arguments(name, arguments, limit)
         case Parallel(items):
@@ -96,6 +119,61 @@ def _terms(terms: Sequence[tuple[bool, Node]], limit: float) -> Chunks:
     return tuple(found)
 
 
+def _product(factors: Sequence[Node], limit: float) -> Chunks:
+    """Factors side by side as far as they fit; behind a break a point says that they go on."""
+    found: list[Node] = []
+    run: tuple[Node, ...] = ()
+    for factor in factors:
+        if width(Product((*run, factor))) <= limit:
+            run += (factor,)
+            continue
+        pieces = _inside(factor, limit)
+        fits = run and pieces and width(Product(run)) + width(pieces[0]) <= limit
+        if not fits and width(Product((factor,))) <= limit:
+            pieces = ()
+        if run:
+            _append(found, _run(run), limit)
+        run = () if pieces else (factor,)
+        if pieces:
+            _append(found, pieces[0], limit)
+            found += pieces[1:]
+    if run:
+        _append(found, _run(run), limit)
+    return tuple(found)
+
+
+def _inside(factor: Node, limit: float) -> Chunks:
+    """A factor broken inside; nothing where it is a short bracket, or cannot be broken."""
+    if isinstance(factor, Total) and width(factor) > _SHORT:
+        return _in_brackets(_terms(factor.terms, limit - 2))
+    return () if width(Product((factor,))) <= limit else _factor(factor, limit)
+
+
+def _run(factors: tuple[Node, ...]) -> Node:
+    """Factors that stand on one line."""
+    if len(factors) > 1:
+        return Product(factors)
+    return Row((Sign("("), *factors, Sign(")"))) if is_compound(factors[0]) else factors[0]
+
+
+def _append(found: list[Node], piece: Node, limit: float) -> None:
+    """The next piece of a product: on the same line at a bracket, or behind a point."""
+    if not found:
+        found.append(piece)
+    elif _meet(found[-1], piece) and width(found[-1]) + width(piece) <= limit:
+        found[-1] = _joined(found[-1], piece)
+    else:
+        found.append(_joined(Sign("·"), piece))
+
+
+def _meet(left: Node, right: Node) -> bool:
+    """Whether two pieces side by side are read as a product: a bracket ends or begins there."""
+    last = left.items[-1] if isinstance(left, Row) else left
+    first = right.items[0] if isinstance(right, Row) else right
+    raised = isinstance(last, Power) and last.base == Row(())
+    return last == Sign(")") or raised or first == Sign("(")
+
+
 def _factor(node: Node, limit: float) -> Chunks:
     return _bracketed(node, limit) if is_compound(node) else chunks(node, limit)
 
@@ -104,6 +182,10 @@ def _bracketed(node: Node, limit: float) -> Chunks:
     inner = chunks(node, limit - 2)
     if isinstance(node, Number | Symbol):
         return inner
+    return _in_brackets(inner)
+
+
+def _in_brackets(inner: Chunks) -> Chunks:
     if len(inner) == 1:
         return (Row((Sign("("), inner[0], Sign(")"))),)
     return (_joined(Sign("("), inner[0]), *inner[1:-1], _joined(inner[-1], Sign(")")))
@@ -127,14 +209,3 @@ def _joined(*items: Node) -> Node:
     for item in items:
         flat += item.items if isinstance(item, Row) else (item,)
     return Row(tuple(flat))
-
-
-def _packed(pieces: Sequence[Node], limit: float) -> Chunks:
-    """Neighbours put together as long as they fit."""
-    found: list[Node] = []
-    for piece in pieces:
-        if found and width(found[-1]) + width(piece) <= limit:
-            found[-1] = _joined(found[-1], piece)
-        else:
-            found.append(piece)
-    return tuple(found)

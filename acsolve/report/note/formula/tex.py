@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from itertools import pairwise
 
+from acsolve.report.drawing.name import split_name
 from acsolve.report.note.formula.tree import (
     Call,
     Matrix,
@@ -15,12 +16,12 @@ from acsolve.report.note.formula.tree import (
     Ratio,
     Row,
     Sign,
+    StandIn,
     Symbol,
     Total,
     Words,
     is_compound,
     needs_brackets_below_power,
-    split_name,
 )
 
 _GREEK = {
@@ -51,6 +52,8 @@ def tex(node: Node) -> str:  # noqa: PLR0912 - one case for each kind of node
             return _number(text)
         case Symbol(name):
             return _symbol(name)
+        case StandIn(letter):
+            return _symbol(letter)
         case Total(terms):
             return "".join(_term(place, *term) for place, term in enumerate(terms))
         case Product(factors):

@@ -6,7 +6,11 @@ Widths are in digits of the running text, estimated on the wide side.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TypeAlias
+from typing import Literal, TypeAlias
+
+from acsolve.report.drawing.name import split_name
+
+_STAND_IN = 2.6  # digits of N₁₂
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,6 +100,17 @@ class Matrix:
     rows: tuple[tuple[Node, ...], ...]
 
 
+@dataclass(frozen=True, slots=True)
+class StandIn:
+    """A name for the top or the bottom of a quotient too wide to stand as it is.
+
+    The whole quotient tells it apart from others; `named.py` numbers it.
+    """
+
+    letter: Literal["N", "D"]
+    whole: Ratio
+
+
 Node: TypeAlias = (
     Number
     | Symbol
@@ -109,6 +124,7 @@ Node: TypeAlias = (
     | Words
     | Row
     | Matrix
+    | StandIn
 )
 
 
@@ -139,13 +155,15 @@ def needs_brackets_below_power(node: Node) -> bool:
     return not isinstance(node, Number | Symbol) or (isinstance(node, Number) and "e" in node.text)
 
 
-def width(node: Node) -> float:
+def width(node: Node) -> float:  # noqa: PLR0912 - one case for each kind of node
     """How wide it will stand, in digits."""
     match node:
         case Number(text):
             return len(text) + 0.5
         case Symbol(name):
             return symbol_width(name)
+        case StandIn():
+            return _STAND_IN
         case Total(terms):
             return sum(width(item) + 2 for _, item in terms) - 1
         case Product(factors):
@@ -174,55 +192,3 @@ def symbol_width(name: str) -> float:
     """Width of a name: its head large, what is lowered small."""
     head, lowered = split_name(name)
     return len(head) + 0.7 * len(lowered) + 0.2
-
-
-_GREEK = {
-    "tau": "τ",
-    "omega": "ω",
-    "pi": "π",
-    "phi": "φ",
-    "alpha": "α",
-    "beta": "β",
-    "gamma": "γ",
-    "delta": "δ",
-    "zeta": "ζ",
-    "mu": "μ",
-    "sigma": "σ",
-    "lambda": "λ",
-}
-
-
-def split_name(name: str) -> tuple[str, str]:
-    """The head of a name and what is written below the line: `R1` -> R, 1; `tau_z` -> τ, z.
-
-    Names of the trade have a letter or two and a number or a word; `w0` is ω₀. Whatever does
-    not look so stays whole.
-    """
-    if name == "w":
-        return "ω", ""
-    letters = name.rstrip("0123456789")
-    digits = name[len(letters) :]
-    if letters == "w" and digits:
-        return "ω", digits
-    if letters in _GREEK:
-        return _GREEK[letters], digits
-    head, underscore, rest = name.partition("_")
-    if underscore and head in _GREEK and rest:
-        return _GREEK[head], rest
-    if head == "w" and rest:
-        return "ω", rest
-    if name == "wd":
-        return "ω", "d"
-    if underscore and len(head) == 1 and rest and (head in "VI" or name.count("_") == 1):
-        return head, rest
-    if "[" in name:
-        return name, ""
-    if "." in name:
-        base, _, attribute = name.partition(".")
-        head, lowered = split_name(base)
-        return head, f"{lowered}, {attribute}".removeprefix(", ").replace("_", "\u00a0")
-    if digits and 1 <= len(letters) <= 2 and letters.isalpha():
-        return letters, digits
-    if len(name) > 1 and name[0] in "RLCGZXQ" and name[1:].isalnum() and name[1].islower():
-        return name[0], name[1:]
-    return name, ""

@@ -55,7 +55,7 @@ def _formulas(steps: tuple[Any, ...], answer: tuple[Chunks, ...] = ()) -> Formul
         written = equation(Symbol(step.name), _node(step.expression))
         lines += written
         meaning = step.meaning.removesuffix(_TAIL).removesuffix(" for a drive of one")
-        notes += [*((),) * (len(written) - 1), (meaning,)]
+        notes += [(meaning,), *((),) * (len(written) - 1)]
     return Formula(lines=(*lines, *answer), notes=(*notes, *((),) * len(answer)))
 
 
