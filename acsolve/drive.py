@@ -103,7 +103,7 @@ def band_share(given: Any) -> Fraction:
         return Fraction(text) / (100 if percent else 1)
     found = exact(given)
     if not 0 < found < 1:
-        raise refuse("option.value", f"{given} is no share below one", "Write, say, 2%.")
+        raise refuse("option.value", f"{given} is no share between 0 and 100 %", "Write, say, 2%.")
     return found
 
 

@@ -273,6 +273,12 @@ def reference_of(given: Any) -> ReferenceName | Fraction | None:
         word = given.strip()
         if word in _REFERENCES:
             return _REFERENCES[word]
+        if word.isalpha():
+            raise refuse(
+                "option.value",
+                f"{_shown(word)} is no reference",
+                "References are dc, infinity, peak, and a gain such as 0.5.",
+            )
         gain = _number(parse_gain(given), given)
     else:
         gain = exact(given)
@@ -295,7 +301,9 @@ def share_of(given: Any) -> float:
     except ValueError:
         found = -1.0
     if rest or not 0 < found < 1:
-        raise refuse("option.value", f"{_shown(given)} is no share below one", "Write, say, 1%.")
+        raise refuse(
+            "option.value", f"{_shown(given)} is no share between 0 and 100 %", "Write, say, 1%."
+        )
     return found
 
 

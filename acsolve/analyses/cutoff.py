@@ -423,10 +423,11 @@ def _float(value: Any) -> float:
 
 def no_reference(message: str) -> AnalysisError:
     """The error for a reference that is none, `message` saying why."""
+    other = "infinity" if "at 0 Hz" in message else "dc" if "infinit" in message else "dc, infinity"
     return _refuse(
         "question.no-reference",
         f"{message}: there is nothing to count the level from",
-        "Choose another reference: --reference dc, infinity, peak, or a gain such as 0.5.",
+        f"Choose another reference: --reference {other}, peak, or a gain such as 0.5.",
     )
 
 

@@ -135,8 +135,7 @@ def _asymptotes(groups: list[Group], options: Options) -> tuple[Any, ...]:
     from acsolve.report.plot_asymptotes import asymptotes_of
 
     path, entry = groups[0][0]
-    storing = sum(part.kind != "resistor" for part in path.circuit.netlist.parts)
-    if _kind(options) != "gain" or len(groups) > 1 or storing > _MOST_STORING:
+    if _kind(options) != "gain" or len(groups) > 1 or _storing(path) > _MOST_STORING:
         return ()
     try:
         return asymptotes_of(entry.transfer or path.transfer())
@@ -163,16 +162,29 @@ def _swept(groups: list[Group], marks: list[tuple[float, ...]], options: Options
 
 
 def _marks(group: Group) -> tuple[float, ...]:
-    """The cutoffs to mark, in hertz: those answered, or those at half power."""
+    """The cutoffs to mark, in hertz: those answered, or those at half power.
+
+    A sweep of many parts goes without: it may be wanted long before its cutoffs are found.
+    """
     path, entry = group[0]
     found = [item.cutoff for _, item in group]
-    if entry.kind == "transfer":
+    if entry.kind == "transfer" or (entry.kind == "sweep" and _storing(path) <= _MOST_STORING):
         try:
             found = [path.cutoffs()]
         except (AnalysisError, EquationError):
             return ()
     marks = [item.hertz for answer in found if answer is not None for item in answer.cutoffs]
-    return tuple(sorted(mark for mark in marks if mark is not None))
+    return tuple(sorted(mark for mark in marks if mark is not None and _is_shown(mark, entry)))
+
+
+def _is_shown(mark: float, entry: Entry) -> bool:
+    if entry.sweep is None:
+        return True
+    return bool(entry.sweep.hertz.min() <= mark <= entry.sweep.hertz.max())
+
+
+def _storing(path: Path) -> int:
+    return sum(part.kind != "resistor" for part in path.circuit.netlist.parts)
 
 
 def _level(entries: list[Entry]) -> float | None:

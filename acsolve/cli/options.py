@@ -109,7 +109,9 @@ class Options:
         except ValueError:
             found = 0.0
         if rest or not 0 < found < 1:
-            raise refused(f"--within {self.within} is no share below one", "Write, say, 1%.")
+            raise refused(
+                f"--within {self.within} is no share between 0 and 100 %", "Write, say, 1%."
+            )
         if self.band is None:
             raise refused("--within needs to know where", "Add --band, say 10Hz..1MHz.")
         return found

@@ -71,11 +71,12 @@ def _is_fitted(draft: Draft, book: Book) -> bool:
 
 
 def _unstated(draft: Draft, book: Book) -> None:
+    kind = "opamp(…)" if draft.ends is None else "impedance(…)"  # no op-amp stands in a chain
     book.problems.add(
         "kind.unstated",
         f"the kind of {draft.local} is not stated",
         draft.span,
-        hint=f"State it: {draft.local} : opamp(…); only names that start with R, L or C "
+        hint=f"State it: {draft.local} : {kind}; only names that start with R, L or C "
         "are resistors, inductors and capacitors without a word.",
     )
 
