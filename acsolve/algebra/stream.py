@@ -14,8 +14,6 @@ import numpy as np
 from acsolve.algebra.lu import Element, Factors, Vector, reciprocal
 from acsolve.algebra.plan import Plan
 
-_NORMAL = 1e-290  # a product of two entries that is still good to its last digit
-
 
 def streamed(
     plan: Plan,
@@ -44,12 +42,12 @@ def streamed(
                 late[slot], values[slot] = 0, entry(slot)
         pushed, at = forward[row], 0
         for number, slot in enumerate(below):
-            minus = _Multiplier(inverse, entry(slot) if late[slot] else values[slot])
+            minus = _minus(inverse, entry(slot) if late[slot] else values[slot])
             late[slot], values[slot] = 0, None
             for right_slot in rights:
                 target = targets[at]
                 at += 1
-                term = minus.times(values[right_slot])
+                term = minus * values[right_slot]
                 if late[target]:
                     late[target] = 0
                     term += entry(target)
@@ -58,7 +56,7 @@ def streamed(
                 values[target] = term
             if pushed is not None:
                 other = below_rows[number]
-                term = minus.times(pushed)
+                term = minus * pushed
                 if forward[other] is not None:
                     term += forward[other]
                 forward[other] = term
@@ -68,26 +66,6 @@ def streamed(
             for slot in (pivot, *rights):
                 values[slot] = None
     return Factors(plan, values, forward)
-
-
-class _Multiplier:
-    """-inverse·element, worked out only where that is not put off with advantage."""
-
-    __slots__ = ("_element", "_inverse", "_product")
-
-    def __init__(self, inverse: Element, element: Element) -> None:
-        self._inverse = inverse
-        self._element = element
-        self._product: Element | None = None
-
-    def times(self, other: Element) -> Element:
-        """Its product with another element; two numbers are multiplied before a vector is."""
-        element = self._element
-        if type(element) is float is type(other) and abs(element * other) > _NORMAL:
-            return self._inverse * -(element * other)
-        if self._product is None:
-            self._product = _minus(self._inverse, element)
-        return self._product * other
 
 
 def _minus(inverse: Element, element: Element) -> Element:

@@ -8,7 +8,7 @@ of vectors, and entries without s stay scalars.
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from itertools import accumulate
 from math import isfinite
@@ -184,29 +184,6 @@ class Numbers:
         """The derivatives by s, by place; None where zero."""
         values = [entry.slope(s) for entry in self.distinct]
         return [values[item] for item in self.which]
-
-    def late(self, s: Element) -> Callable[[int], Element]:
-        """The element at a place, worked out when asked for; shared ones once."""
-        counts, all_which = Counter(self.which), self.which
-        known = {which: self.distinct[which].at(s) for which, count in counts.items() if count > 1}
-        lines = [
-            entry.coefficients if isinstance(entry, PolynomialEntry) else ()
-            for entry in self.distinct
-        ]
-
-        def element(place: int) -> Element:
-            which = all_which[place]
-            if which in known:
-                return known[which]
-            line = lines[which]
-            if len(line) != 2:  # written out below: a long ladder asks a million times
-                return self.distinct[which].at(s)
-            found = line[1] * s
-            if line[0]:
-                found += line[0]
-            return found
-
-        return element
 
     def scaled(self, s: Vector) -> tuple[list[Element], list[Element | None]]:
         """Elements and derivatives by place, with powers of two where these may matter."""

@@ -34,6 +34,7 @@ from acsolve.algebra.scaled import Exponent, Scaled, aligned, power_of_two
 from acsolve.algebra.stream import streamed
 from acsolve.equations.balance import Balance
 from acsolve.equations.element_row import element_places, scaled_row
+from acsolve.equations.late import Late
 from acsolve.equations.numeric import ElementEntry, Numbers
 from acsolve.equations.system import Functional
 
@@ -109,18 +110,21 @@ def replay_quick(
     observed: Sequence[Functional],
     s: NDArray[np.complex128],
     *,
-    fronts: Fronts | None = None,
+    route: Fronts | Late,
 ) -> NDArray[np.complex128]:
-    """Plain values, shape (observed, points), from the steps they need; nothing is checked."""
+    """Plain values, shape (observed, points), from the steps they need; nothing is checked.
+
+    Its heavy part is solved in blocks, or all of it streams.
+    """
     wanted = {column for c in observed for column in c}
     with np.errstate(all="ignore"):  # as in `replay`
         right = {numbers.size - 1: 1.0}
-        if fronts is None:
+        if isinstance(route, Late):
             steps = needed_steps(plan, wanted)
-            x = backward(streamed(plan, numbers.late(s), right, steps), steps)
+            x = backward(streamed(plan, route.at(s), right, steps), steps)
         else:
-            steps = needed_steps(fronts.light, wanted)
-            x = backward_cut(factor_cut(fronts, numbers.at(s), right, len(s), kept=steps), steps)
+            steps = needed_steps(route.light, wanted)
+            x = backward_cut(factor_cut(route, numbers.at(s), right, len(s), kept=steps), steps)
         found = np.zeros((len(observed), len(s)), dtype=complex)
         for row, c in zip(found, observed, strict=True):
             value = _value(c, x)

@@ -18,6 +18,7 @@ from acsolve.algebra.plan import Plan, plan_elimination
 from acsolve.algebra.route import Route, choose_route
 from acsolve.equations.balance import Balance, balances
 from acsolve.equations.evaluate import Evaluator
+from acsolve.equations.late import Late
 from acsolve.equations.numeric import Numbers, numbers
 from acsolve.equations.precise import Local, Precise
 from acsolve.equations.replay import Replayed, replay, replay_quick, replay_scaled
@@ -49,6 +50,7 @@ class Solver:
     precise: Precise
     route: Route
     balances: Callable[[], Mapping[int, Balance]]  # rows to be checked part by part
+    late: Callable[[], Late]  # elements for what is not checked
 
     def solve(self, hertz: Array) -> Solution:
         """Answers at frequencies in hertz, shape (points,), each checked.
@@ -94,12 +96,13 @@ class Solver:
         hertz = np.asarray(hertz, dtype=float)
         values = np.empty((len(self.observed), len(hertz)), dtype=complex)
         fronts = self.route.fronts
+        route = fronts or self.late()
         length = _block_length(self.plan, fronts) if fronts else self._streamed_length()
         _steady_memory()
         for start in range(0, len(hertz), length):
             here = slice(start, start + length)
             s = 2j * pi * hertz[here]
-            values[:, here] = replay_quick(self.numbers, self.plan, self.observed, s, fronts=fronts)
+            values[:, here] = replay_quick(self.numbers, self.plan, self.observed, s, route=route)
         size = np.abs(values)
         bad = np.flatnonzero(~((size > 1 / _RANGE) & (size < _RANGE)).all(axis=0))
         if len(bad):
@@ -208,7 +211,8 @@ def prepare(
         tuple(observed),
     )
     by_parts = cache(partial(balances, system, entries, values))
-    return Solver(entries, plan, tuple(observed), precise, route, by_parts)
+    late = cache(partial(Late, entries))
+    return Solver(entries, plan, tuple(observed), precise, route, by_parts, late)
 
 
 _GENERIC = np.array([0.0137, 13.7, 13.7e3, 13.7e6])  # hertz, where nothing better is known
